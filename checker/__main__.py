@@ -1,0 +1,5 @@
+"""Run the command: python -m checker."""
+
+from checker.cli import main
+
+raise SystemExit(main())

@@ -1,0 +1,1 @@
+"""Assemble hulls: parts, class, options and as-built changes to frozen boats."""

@@ -1,0 +1,236 @@
+"""Read the yard's parts catalogue into part records."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from typing import Any
+
+from checker.boat.entry import Entry
+from checker.boat.parts import (
+    Battery,
+    Bus,
+    Cable,
+    Load,
+    Metal,
+    Overcurrent,
+    Part,
+    Shunt,
+    Source,
+    Switch,
+    Terminals,
+)
+from checker.boat.patch import Patched
+from checker.reading.document import Document, Fault
+from checker.reading.quantity import Dimension
+
+Catalogue = dict[str, Part]
+
+
+def read_catalogue(documents: Sequence[Document]) -> tuple[Catalogue, list[Fault]]:
+    """Return all parts by id, and what is wrong with them."""
+    parts: Catalogue = {}
+    faults: list[Fault] = []
+    for document in documents:
+        source = Patched(document.data, (document.places,))
+        for entry in Entry(source, (), document.data or {}, faults).entries("parts"):
+            if entry.id in parts:
+                entry.fault("repeated-key", entry.at(), f"part “{entry.id}” is written twice",
+                            f"the other one stands in {parts[entry.id].at}")  # fmt: skip
+                continue
+            part = _READERS[entry.text("kind")](entry)
+            if part is not None:
+                parts[entry.id] = part
+    return parts, faults
+
+
+def _battery(entry: Entry) -> Part | None:
+    voltage_v = entry.needed_number("voltage", Dimension.VOLTAGE)
+    capacity_ah = entry.needed_number("capacity", Dimension.CAPACITY)
+    if voltage_v is None or capacity_ah is None:
+        return None
+    return Battery(
+        id=entry.id,
+        at=entry.at(),
+        voltage_v=voltage_v,
+        capacity_ah=capacity_ah,
+        chemistry=entry.text("chemistry"),
+        emf_full_v=entry.number("emf_full", Dimension.VOLTAGE),
+        emf_low_v=entry.number("emf_low", Dimension.VOLTAGE),
+        resistance_full_ohm=entry.number("resistance_full", Dimension.RESISTANCE),
+        resistance_low_ohm=entry.number("resistance_low", Dimension.RESISTANCE),
+        short_circuit_a=entry.number("short_circuit", Dimension.CURRENT),
+    )
+
+
+def _overcurrent(entry: Entry) -> Part | None:
+    """Read a fuse or breaker, or a series of them that differ in rating and resistance only."""
+    voltage_v = entry.needed_number("voltage", Dimension.VOLTAGE)
+    if voltage_v is None:
+        return None
+
+    def one(rating_a: float, resistance_ohm: float | None, series: tuple[Overcurrent, ...] = ()) -> Overcurrent:
+        return Overcurrent(
+            id=entry.id,
+            at=entry.at(),
+            is_breaker=entry.text("kind") == "breaker",
+            rating_a=rating_a,
+            voltage_v=voltage_v,
+            interrupting_a=entry.number("interrupting", Dimension.CURRENT),
+            resistance_ohm=resistance_ohm,
+            band=entry.text("band"),
+            trip_free=entry.flag("trip_free", default=True),
+            resets_itself=entry.text("reset") == "automatic",
+            polarised=entry.flag("polarised"),
+            ignition_protected=entry.flag("ignition_protected"),
+            series=series,
+        )
+
+    resistance_ohm = entry.number("resistance", Dimension.RESISTANCE)
+    if not entry.has("ratings"):
+        rating_a = entry.needed_number("rating", Dimension.CURRENT)
+        return None if rating_a is None else one(rating_a, resistance_ohm)
+    made: list[Overcurrent] = []
+    for key, facts in entry.fields("ratings").items():
+        rating = entry.quantity_at(("ratings", key), key, Dimension.CURRENT)
+        stated = (facts or {}).get("resistance")
+        resistance = entry.quantity_at(("ratings", key, "resistance"), stated, Dimension.RESISTANCE)
+        if rating is not None:
+            made.append(one(rating, resistance if stated else resistance_ohm))
+    made.sort(key=lambda device: device.rating_a)
+    return one(made[-1].rating_a, resistance_ohm, tuple(made)) if made else None
+
+
+def _bus(entry: Entry) -> Part | None:
+    rating_a = entry.needed_number("rating", Dimension.CURRENT)
+    return None if rating_a is None else Bus(id=entry.id, at=entry.at(), rating_a=rating_a)
+
+
+def _metal(entry: Entry) -> Part | None:
+    return Metal(id=entry.id, at=entry.at())
+
+
+def _switch(entry: Entry) -> Part | None:
+    posts = entry.items("posts")
+    states: list[tuple[str, tuple[tuple[str, str], ...]]] = []
+    for name, pairs in sorted(entry.fields("states").items()):
+        for index, pair in enumerate(pairs):
+            for post in (post for post in pair if post not in posts):
+                entry.unknown(f"post on {entry.id}", post, entry.at("states", name, index), posts)
+        states.append((name, tuple((str(pair[0]), str(pair[1])) for pair in pairs)))
+    return Switch(
+        id=entry.id,
+        at=entry.at(),
+        posts=posts,
+        states=tuple(states),
+        by_hand=entry.text("operated", "hand") == "hand",
+        continuous_a=entry.number("continuous", Dimension.CURRENT),
+        intermittent_a=entry.number("intermittent", Dimension.CURRENT),
+        contact_ohm=entry.number("contact_resistance", Dimension.RESISTANCE),
+        ignition_protected=entry.flag("ignition_protected"),
+    )
+
+
+def _shunt(entry: Entry) -> Part | None:
+    rating_a = entry.needed_number("rating", Dimension.CURRENT)
+    if rating_a is None:
+        return None
+    short = entry.fields("short_time")
+    return Shunt(
+        id=entry.id,
+        at=entry.at(),
+        rating_a=rating_a,
+        continuous_a=entry.number("continuous", Dimension.CURRENT),
+        short_time_a=entry.quantity_at(("short_time", "current"), short.get("current"), Dimension.CURRENT),
+        short_time_s=entry.quantity_at(("short_time", "time"), short.get("time"), Dimension.TIME),
+        resistance_ohm=entry.number("resistance", Dimension.RESISTANCE),
+    )
+
+
+def _load(entry: Entry) -> Part | None:
+    voltage_v = entry.needed_number("voltage", Dimension.VOLTAGE)
+    current_a = entry.needed_number("current", Dimension.CURRENT)
+    if voltage_v is None or current_a is None:
+        return None
+    return Load(
+        id=entry.id,
+        at=entry.at(),
+        voltage_v=voltage_v,
+        current_a=current_a,
+        peak_a=entry.number("peak", Dimension.CURRENT),
+        min_voltage_v=entry.number("min_voltage", Dimension.VOLTAGE),
+        max_device_a=entry.number("max_device", Dimension.CURRENT),
+        standby_a=entry.number("standby", Dimension.CURRENT),
+        is_motor=entry.flag("motor"),
+        ignition_protected=entry.flag("ignition_protected"),
+        feed_post=entry.text("feed_post", "pos"),
+        return_post=entry.text("return_post", "neg"),
+        case_post=entry.text("case_post"),
+    )
+
+
+def _terminals(entry: Entry, name: str) -> tuple[Terminals, ...]:
+    found: list[Terminals] = []
+    for row in entry.entries(name):
+        max_a = row.needed_number("max", Dimension.CURRENT)
+        voltage_v = row.needed_number("voltage", Dimension.VOLTAGE)
+        if max_a is not None and voltage_v is not None:
+            found.append(
+                Terminals(
+                    post=row.id,
+                    return_post=row.text("return"),
+                    max_a=max_a,
+                    voltage_v=voltage_v,
+                    limited=row.flag("limited"),
+                )
+            )
+    return tuple(found)
+
+
+def _source(entry: Entry) -> Part | None:
+    outputs = _terminals(entry, "outputs")
+    if not outputs:
+        return None
+    joined: list[tuple[str, str]] = []
+    for row in entry.data.get("joined", ()):
+        pair: list[Any] = row.get("between", [])
+        joined.append((str(pair[0]), str(pair[1])))
+    return Source(
+        id=entry.id,
+        at=entry.at(),
+        outputs=outputs,
+        inputs=_terminals(entry, "inputs"),
+        joined=tuple(joined),
+        case_post=entry.text("case_post"),
+        ignition_protected=entry.flag("ignition_protected"),
+    )
+
+
+def _cable(entry: Entry) -> Part | None:
+    insulation_c = entry.needed_number("insulation", Dimension.TEMPERATURE)
+    if insulation_c is None:
+        return None
+    return Cable(
+        id=entry.id,
+        at=entry.at(),
+        insulation_c=insulation_c,
+        material=entry.text("material", "copper"),
+        is_stranded=entry.text("strands", "stranded") == "stranded",
+        is_insulated=entry.flag("insulated", default=True),
+        is_sheathed=entry.flag("sheathed"),
+        cores=entry.whole("cores", 1),
+        is_welding=entry.flag("welding"),
+    )
+
+
+_READERS: dict[str, Callable[[Entry], Part | None]] = {
+    "battery": _battery,
+    "fuse": _overcurrent,
+    "breaker": _overcurrent,
+    "bus": _bus,
+    "metal": _metal,
+    "switch": _switch,
+    "shunt": _shunt,
+    "load": _load,
+    "source": _source,
+    "cable": _cable,
+}

@@ -1,0 +1,176 @@
+"""Hold the facts of parts, one frozen record a kind.
+
+Posts are the places of a part where conductors land; nothing else can be named by a
+conductor. All quantities are SI; None means that the yard did not give the figure.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+
+from checker.finding import NOWHERE, Span
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Battery:
+    """Describe a battery: EMF and internal resistance at full and low charge."""
+
+    id: str
+    voltage_v: float
+    capacity_ah: float
+    chemistry: str
+    emf_full_v: float | None = None
+    emf_low_v: float | None = None
+    resistance_full_ohm: float | None = None
+    resistance_low_ohm: float | None = None
+    short_circuit_a: float | None = None
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
+
+    posts: tuple[str, ...] = ("pos", "neg")
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Overcurrent:
+    """Describe a fuse or a breaker. A series holds one record for each rating it is made at."""
+
+    id: str
+    is_breaker: bool
+    rating_a: float
+    voltage_v: float
+    interrupting_a: float | None = None
+    resistance_ohm: float | None = None
+    band: str = ""
+    trip_free: bool = True
+    resets_itself: bool = False
+    polarised: bool = False
+    ignition_protected: bool = False
+    series: tuple[Overcurrent, ...] = ()
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
+
+    posts: tuple[str, ...] = ("line", "load")
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Bus:
+    """Describe a bus bar, fuse block bar, panel bar or terminal stud: one electrical node."""
+
+    id: str
+    rating_a: float
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
+
+    posts: tuple[str, ...] = ("",)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Metal:
+    """Describe a metal part that can carry current: engine block, tank, keel bolt, mast."""
+
+    id: str
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
+
+    posts: tuple[str, ...] = ("",)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Switch:
+    """Describe a switch, relay or contactor by the contacts that each of its states closes."""
+
+    id: str
+    posts: tuple[str, ...]
+    states: tuple[tuple[str, tuple[tuple[str, str], ...]], ...]
+    by_hand: bool = True
+    continuous_a: float | None = None
+    intermittent_a: float | None = None
+    contact_ohm: float | None = None
+    ignition_protected: bool = False
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Shunt:
+    """Describe a monitoring shunt: `bat` faces the bank, `sys` the boat; `vbat`, `aux` are sense posts."""
+
+    id: str
+    rating_a: float
+    continuous_a: float | None = None
+    short_time_a: float | None = None
+    short_time_s: float | None = None
+    resistance_ohm: float | None = None
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
+
+    posts: tuple[str, ...] = ("bat", "sys", "vbat", "aux")
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Load:
+    """Describe a load between its feed post and its return post."""
+
+    id: str
+    voltage_v: float
+    current_a: float
+    peak_a: float | None = None
+    min_voltage_v: float | None = None
+    max_device_a: float | None = None
+    standby_a: float | None = None
+    is_motor: bool = False
+    ignition_protected: bool = False
+    feed_post: str = "pos"
+    return_post: str = "neg"
+    case_post: str = ""
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
+
+    @property
+    def posts(self) -> tuple[str, ...]:
+        """Return the posts of the load."""
+        return tuple(post for post in (self.feed_post, self.return_post, self.case_post) if post)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Terminals:
+    """Describe one output or input of a source: its post, the post it returns to, and its limits."""
+
+    post: str
+    return_post: str
+    max_a: float
+    voltage_v: float
+    limited: bool = False
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Source:
+    """Describe a charge source or converter: outputs that feed, inputs that draw, posts joined inside."""
+
+    id: str
+    outputs: tuple[Terminals, ...]
+    inputs: tuple[Terminals, ...] = ()
+    joined: tuple[tuple[str, str], ...] = ()
+    case_post: str = ""
+    ignition_protected: bool = False
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
+
+    @property
+    def posts(self) -> tuple[str, ...]:
+        """Return the posts of the source, each once, in a fixed order."""
+        ends = [post for t in (*self.outputs, *self.inputs) for post in (t.post, t.return_post)]
+        ends += [post for pair in self.joined for post in pair]
+        return tuple(dict.fromkeys([*ends, *([self.case_post] if self.case_post else [])]))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Cable:
+    """Describe a type of cable: its insulation and what it is made of."""
+
+    id: str
+    insulation_c: float
+    material: str
+    is_stranded: bool
+    is_insulated: bool
+    is_sheathed: bool
+    cores: int = 1
+    is_welding: bool = False
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
+
+    posts: tuple[str, ...] = ()
+
+
+Part = Battery | Overcurrent | Bus | Metal | Switch | Shunt | Load | Source | Cable

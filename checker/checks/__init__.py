@@ -1,0 +1,1 @@
+"""Hold studies against limits: one function a check, one file a family."""

@@ -1,0 +1,162 @@
+"""Decide for every ungrounded conductor, over all states, how it stands to what could feed it.
+
+Three checks tell three kinds of trouble from this one study: nothing opens a fault; the
+device that does stands too far off; what stands there lets more through than the conductor
+allows.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass, replace
+from enum import Enum
+
+from checker.boat.hull import Conductor
+from checker.checks.check import Case
+from checker.checks.roles import BANK, protection_exemption
+from checker.network.exposure import ExposureStudy
+from checker.network.graph import Edge, EdgeKind
+from checker.network.potentials import Potentials
+from checker.network.runs import Run, unprotected_runs
+from checker.network.states import SwitchState, live_edges
+from checker.network.walk import groups
+
+UNKNOWN_ALLOWED_A = 1e12
+"""Stands for "finite" where the table has no row: only an unlimited feed is then a fault."""
+
+
+class Kind(Enum):
+    """Say how a conductor stands to its feeds, the worst last."""
+
+    EXEMPT = 0
+    PROTECTED = 1
+    SHORT = 2  # ahead of a device, near enough
+    NO_FIGURE = 3
+    NO_REASON = 4  # near enough only if the reason were written
+    RATING = 5
+    STEP = 6
+    DOUBLE = 7
+    FAR = 8
+    OPEN = 9
+
+
+@dataclass(frozen=True, slots=True)
+class Feeding:
+    """Hold the verdict on one conductor under one limit set, in the state where it is worst."""
+
+    kind: Kind
+    conductor: Conductor
+    reaching_a: float
+    allowed_a: float
+    state: SwitchState
+    terms: tuple[tuple[str, float], ...] = ()
+    run: Run | None = None
+    limit_m: float = 0.0
+    note: str = ""
+
+
+def feedings(case: Case) -> list[Feeding]:
+    """Return the verdict on every conductor that is not at the reference's potential, in order."""
+    if "feedings" not in case.memo:
+        case.memo["feedings"] = _feedings(case)
+    found: list[Feeding] = case.memo["feedings"]
+    return found
+
+
+def _feedings(case: Case) -> list[Feeding]:
+    worst: dict[str, Feeding] = {}
+    exempt = {c.id: told for c in case.boat.conductors.values() if (told := protection_exemption(case, c))}
+    allowed = {
+        c.id: UNKNOWN_ALLOWED_A if (a := case.bearings.allowed_a(c)) is None else a
+        for c in case.boat.conductors.values()
+    }
+    for potentials, study in zip(case.studies.potentials, case.studies.exposures, strict=True):
+        view = _State(case, potentials, study, allowed, exempt)
+        for edge in case.studies.network.edges:
+            if edge.kind in (EdgeKind.CONDUCTOR, EdgeKind.BOND) and edge.index in study.exposures:
+                found = view.feeding(edge)
+                known = worst.get(edge.part)
+                if known is None or _rank(found) > _rank(known):
+                    worst[edge.part] = found
+    return [worst[part] for part in sorted(worst)]
+
+
+def _rank(feeding: Feeding) -> tuple[int, float, float]:
+    return (feeding.kind.value, feeding.run.length_m if feeding.run else 0.0, feeding.reaching_a)
+
+
+class _State:
+    """Judge conductors in one switch state."""
+
+    def __init__(
+        self, case: Case, potentials: Potentials, study: ExposureStudy, allowed: dict[str, float], exempt: dict[str, str]
+    ) -> None:
+        self._case = case
+        self._state = potentials.state
+        self._study = study
+        self._allowed = allowed
+        self._exempt = exempt
+        self._runs = unprotected_runs(case.studies.network, potentials, study, allowed, exempt)
+        # Pieces ahead of others: they are judged where their run ends.
+        self._onward = {name for run in self._runs.values() if run.device for name in run.conductors[:-1]}
+        network = case.studies.network
+        edges = (network.edges[i] for i in live_edges(network, potentials.state))
+        zero_length = (EdgeKind.CONTACT, EdgeKind.JOINT, EdgeKind.SHUNT)
+        self._place = groups(len(network.posts), ((e.a, e.b) for e in edges if e.kind in zero_length))
+
+    def feeding(self, edge: Edge) -> Feeding:
+        """Return how one conductor stands."""
+        conductor = self._case.boat.conductors[edge.part]
+        exposure = self._study.exposures[edge.index]
+        found = Feeding(Kind.PROTECTED, conductor, exposure.worst_a, self._allowed[edge.part], self._state)
+        if edge.part in self._exempt:
+            return replace(found, kind=Kind.EXEMPT, note=self._exempt[edge.part])
+        if exposure.worst_a <= found.allowed_a * (1 + 1e-9):
+            return replace(found, kind=Kind.NO_FIGURE) if found.allowed_a == UNKNOWN_ALLOWED_A else found
+        if conductor.role == BANK:
+            return replace(found, kind=Kind.EXEMPT, note="part of its bank: its length counts into what leaves the bank")
+        return self._beyond(edge, found)
+
+    def _beyond(self, edge: Edge, found: Feeding) -> Feeding:
+        """Judge a conductor that more can reach than it may stand behind."""
+        run = self._runs[edge.part]
+        limit_m = self._limit_m(run)
+        if run.device:
+            if run.length_m <= limit_m * (1 + 1e-9):
+                return self._near(run, limit_m, found)
+        elif edge.part in self._onward:
+            return replace(found, kind=Kind.SHORT, run=run, note="its length is judged at the device it leads to")
+        exposure = self._study.exposures[edge.index]
+        node = edge.a if exposure.at_a >= exposure.at_b else edge.b
+        terms = tuple(self._study.terms(edge, node))
+        found = replace(found, run=run, limit_m=limit_m, terms=terms)
+        if math.isinf(found.reaching_a):
+            return replace(found, kind=Kind.FAR if run.device else Kind.OPEN)
+        return replace(found, kind=self._finite_kind(node, terms, found.allowed_a))
+
+    def _near(self, run: Run, limit_m: float, found: Feeding) -> Feeding:
+        rule = self._case.limits.distance
+        reason = any(self._case.boat.conductors[name].place_reason for name in run.conductors)
+        near = replace(found, kind=Kind.SHORT, run=run, limit_m=limit_m)
+        if rule.needs_reason and run.length_m > rule.open_m * (1 + 1e-9) and not reason:
+            return replace(near, kind=Kind.NO_REASON)
+        return near
+
+    def _limit_m(self, run: Run) -> float:
+        """Return how long a run may be: longer where all of it lies in a sheath or enclosure."""
+        rule = self._case.limits.distance
+        conductors = [self._case.boat.conductors[name] for name in run.conductors]
+        if not all(c.enclosed_m >= c.length_m * (1 - 1e-9) for c in conductors):
+            return rule.open_m
+        if run.is_from_battery and rule.battery_enclosed_m is not None:
+            return rule.battery_enclosed_m
+        return rule.enclosed_m
+
+    def _finite_kind(self, node: int, terms: tuple[tuple[str, float], ...], allowed_a: float) -> Kind:
+        """Tell one device too large from several that add up, and from a step to a thinner size."""
+        if len(terms) > 1 and terms[0][1] <= allowed_a * (1 + 1e-9):
+            return Kind.DOUBLE
+        device = terms[0][0] if terms else ""
+        posts = [self._case.studies.network.index.get(f"{device}.{post}") for post in ("line", "load")]
+        at_device = any(post is not None and self._place[post] == self._place[node] for post in posts)
+        return Kind.RATING if at_device or not device else Kind.STEP

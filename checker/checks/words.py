@@ -1,0 +1,52 @@
+"""Print figures as an electrician reads them: few digits, and more where a limit is nearly met."""
+
+from __future__ import annotations
+
+from checker.finding import Measure
+from checker.units import foot_from_metre, inch_from_metre
+
+
+def ampere(value_a: float) -> str:
+    """Print a current: 7.5 A, 250 A, unlimited."""
+    return "unlimited" if value_a == float("inf") else f"{plain(value_a)} A"
+
+
+def plain(value: float) -> str:
+    """Print a number with at most two decimals, without a tail of zeros."""
+    text = f"{value:.2f}".rstrip("0").rstrip(".")
+    return "0" if text == "-0" else text
+
+
+def length(value_m: float, unit: str = "m") -> str:
+    """Print a length in the yard's unit, with inches beside short ones."""
+    if unit == "ft":
+        return f"{foot_from_metre(value_m):.1f} ft" if value_m >= 1 else f"{inch_from_metre(value_m):.1f} in"
+    return f"{value_m:.2f} m"
+
+
+def short_length(value_m: float) -> str:
+    """Print a short length in both units, since limits on it are printed in inches."""
+    return f"{value_m:.3f} m ({inch_from_metre(value_m):.1f} in)"
+
+
+def percent(fraction: float) -> str:
+    """Print a fraction as per cent with two decimals."""
+    return f"{fraction * 100:.2f} %"
+
+
+def measured(measure: Measure) -> tuple[str, str]:
+    """Print value and limit with the same digits, and with more where they would look equal but are not."""
+    for decimals in (2, 3, 4, 6, 9):
+        value, limit = (_with_unit(x, measure.unit, decimals) for x in (measure.value, measure.limit))
+        if value != limit or measure.value == measure.limit:
+            break
+    return value, limit
+
+
+def _with_unit(value: float, unit: str, decimals: int) -> str:
+    if value == float("inf"):
+        return "unlimited"
+    if unit == "":
+        return f"{value * 100:.{decimals}f} %"
+    text = f"{value:.{decimals}f}".rstrip("0").rstrip(".") if decimals == 2 else f"{value:.{decimals}f}"
+    return f"{text} {unit}"

@@ -1,0 +1,167 @@
+"""Turn a boat into a graph: posts are nodes, whatever joins two posts is an edge.
+
+The posts of one bus are one node. Batteries, loads and sources are not edges: they hang
+between two nodes and each study says what it makes of them. Nodes and edges are numbered in
+the order of their ids; all studies work on the numbers and tell ids only where they report.
+Two conductors in parallel are two edges.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from enum import Enum
+from functools import cached_property
+
+from checker.boat.hull import Boat
+from checker.boat.parts import Battery, Load, Overcurrent, Shunt, Source, Switch
+
+
+class EdgeKind(Enum):
+    """Say what joins two posts."""
+
+    CONDUCTOR = "conductor"
+    BOND = "bond"
+    DEVICE = "device"
+    CONTACT = "contact"
+    SHUNT = "shunt"
+    JOINT = "joint"
+    SHIELD = "shield"
+
+
+@dataclass(frozen=True, slots=True)
+class Edge:
+    """Join two nodes. `rating_a` limits what passes: an overcurrent device's rating, else infinite."""
+
+    index: int
+    kind: EdgeKind
+    a: int
+    b: int
+    part: str
+    rating_a: float = math.inf
+    length_m: float = 0.0
+
+    def other(self, node: int) -> int:
+        """Return the far node."""
+        return self.b if node == self.a else self.a
+
+
+@dataclass(frozen=True, slots=True)
+class BatteryTie:
+    """Place a battery between its nodes."""
+
+    device: str
+    pos: int
+    neg: int
+    voltage_v: float
+    bank: str
+
+
+@dataclass(frozen=True, slots=True)
+class LoadTie:
+    """Place a load, or the input of a converter, between its nodes."""
+
+    device: str
+    feed: int
+    back: int
+    voltage_v: float
+    current_a: float
+
+
+@dataclass(frozen=True, slots=True)
+class SourceTie:
+    """Place an output of a source between its nodes."""
+
+    device: str
+    post: str
+    out: int
+    back: int
+    max_a: float
+    voltage_v: float
+    is_limited: bool
+
+
+@dataclass(frozen=True)
+class Network:
+    """Hold the graph of one boat; built once, never changed."""
+
+    posts: tuple[str, ...]
+    edges: tuple[Edge, ...]
+    batteries: tuple[BatteryTie, ...]
+    loads: tuple[LoadTie, ...]
+    sources: tuple[SourceTie, ...]
+    reference: int
+
+    @cached_property
+    def index(self) -> dict[str, int]:
+        """Return the number of each post."""
+        return {post: number for number, post in enumerate(self.posts)}
+
+    @cached_property
+    def edges_of(self) -> dict[str, tuple[Edge, ...]]:
+        """Return the edges that each part makes."""
+        found: dict[str, list[Edge]] = {}
+        for edge in self.edges:
+            found.setdefault(edge.part, []).append(edge)
+        return {part: tuple(edges) for part, edges in found.items()}
+
+
+def build_network(boat: Boat) -> Network:
+    """Build the graph of a boat. Contacts of all switch states are in it; a state says which are closed."""
+    posts = sorted(
+        f"{device.id}.{post}" if post else device.id for device in boat.devices.values() for post in device.part.posts
+    )
+    index = {post: number for number, post in enumerate(posts)}
+    edges: list[Edge] = []
+
+    def join(kind: EdgeKind, a: str, b: str, part: str, rating_a: float = math.inf, length_m: float = 0.0) -> None:
+        edges.append(Edge(len(edges), kind, index[a], index[b], part, rating_a, length_m))
+
+    for conductor in boat.conductors.values():
+        kind = EdgeKind.BOND if conductor.is_bond else EdgeKind.CONDUCTOR
+        join(kind, conductor.start, conductor.end, conductor.id, length_m=conductor.length_m)
+    for device in boat.devices.values():
+        name, part = device.id, device.part
+        if isinstance(part, Overcurrent):
+            join(EdgeKind.DEVICE, f"{name}.line", f"{name}.load", name, part.rating_a)
+        elif isinstance(part, Switch):
+            for a, b in sorted({pair for _, pairs in part.states for pair in pairs}):
+                join(EdgeKind.CONTACT, f"{name}.{a}", f"{name}.{b}", name)
+        elif isinstance(part, Shunt):
+            join(EdgeKind.SHUNT, f"{name}.bat", f"{name}.sys", name)
+        elif isinstance(part, Source):
+            for a, b in part.joined:
+                join(EdgeKind.JOINT, f"{name}.{a}", f"{name}.{b}", name)
+        for own, other in device.mounts:
+            join(EdgeKind.JOINT, f"{name}.{own}" if own else name, other, name)
+    for joint in boat.joints:
+        join(EdgeKind.JOINT, joint.start, joint.end, joint.id)
+    for shield in boat.shields or ():
+        joins = shield.joins or ()
+        for a, b in zip(joins, joins[1:], strict=False):
+            join(EdgeKind.SHIELD, a, b, shield.id)
+    return Network(tuple(posts), tuple(edges), *_ties(boat, index), index[boat.reference])
+
+
+def _ties(
+    boat: Boat, index: dict[str, int]
+) -> tuple[tuple[BatteryTie, ...], tuple[LoadTie, ...], tuple[SourceTie, ...]]:
+    batteries: list[BatteryTie] = []
+    loads: list[LoadTie] = []
+    sources: list[SourceTie] = []
+    for device in boat.devices.values():
+        name, part = device.id, device.part
+        if isinstance(part, Battery):
+            ends = index[f"{name}.pos"], index[f"{name}.neg"]
+            batteries.append(BatteryTie(name, *ends, part.voltage_v, device.bank))
+        elif isinstance(part, Load):
+            ends = index[f"{name}.{part.feed_post}"], index[f"{name}.{part.return_post}"]
+            loads.append(LoadTie(name, *ends, part.voltage_v, part.current_a))
+        elif isinstance(part, Source):
+            for end in part.outputs:
+                ends = index[f"{name}.{end.post}"], index[f"{name}.{end.return_post}"]
+                sources.append(SourceTie(name, end.post, *ends, end.max_a, end.voltage_v, end.limited))
+            for end in part.inputs:
+                ends = index[f"{name}.{end.post}"], index[f"{name}.{end.return_post}"]
+                loads.append(LoadTie(name, *ends, end.voltage_v, end.max_a))
+    return tuple(batteries), tuple(loads), tuple(sources)

@@ -1,0 +1,118 @@
+"""Take the shunt out and see what is still connected to its bank.
+
+What is still joined to the bank's posts on the shunt's side is not metered: it is named, with
+the path that shows it. Loads and sources do not conduct here; shields, bonds and engine
+blocks do.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from checker.boat.hull import Boat
+from checker.boat.parts import Load, Metal, Shunt, Source
+from checker.network.graph import Edge, EdgeKind, Network
+from checker.network.states import SwitchState, live_edges
+from checker.network.walk import neighbours, path_between, path_words
+
+
+@dataclass(frozen=True, slots=True)
+class Unmetered:
+    """Name a post that stays joined to the bank with the shunt out, what it is, and by which path.
+
+    `last` is the conductor by which the post's device lands there: the one to move.
+    """
+
+    device: str
+    what: str
+    last: str
+    path: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Metering:
+    """Hold what one shunt meters in one switch state.
+
+    `is_beside_bank`, `is_turned`: which stud the bank's own links reach. `bypass` is a path
+    from stud to stud beside the shunt, if there is one; then nothing else is named.
+    """
+
+    shunt: str
+    state: SwitchState
+    is_beside_bank: bool
+    is_turned: bool
+    bypass: tuple[str, ...]
+    bypass_parts: tuple[str, ...]
+    unmetered: tuple[Unmetered, ...]
+
+
+def study_metering(boat: Boat, network: Network, state: SwitchState) -> tuple[Metering, ...]:
+    """Study every shunt aboard in one switch state."""
+    return tuple(
+        _metering(boat, network, state, device.id, device.measures)
+        for device in boat.devices.values()
+        if isinstance(device.part, Shunt)
+    )
+
+
+def _metering(boat: Boat, network: Network, state: SwitchState, shunt: str, bank: str) -> Metering:
+    live = [i for i in live_edges(network, state) if network.edges[i].part != shunt or _is_mount(network.edges[i])]
+    at = neighbours(network, live)
+    bat, sys = (network.index[f"{shunt}.{post}"] for post in ("bat", "sys"))
+    bank_posts = {post for b in network.batteries if b.bank == bank for post in (b.pos, b.neg)}
+    bypass = path_between(at, bat, [sys])
+    reaches_bat = path_between(at, bat, bank_posts) is not None
+    reaches_sys = path_between(at, sys, bank_posts) is not None
+    if bypass is not None:
+        words, parts = path_words(network, bat, bypass), tuple(edge.part for edge in bypass)
+        return Metering(shunt, state, reaches_bat or reaches_sys, False, words, parts, ())
+    turned = reaches_sys and not reaches_bat
+    found = () if turned else _unmetered(boat, network, at, bat, shunt, bank)
+    return Metering(shunt, state, reaches_bat or reaches_sys, turned, (), (), found)
+
+
+def _is_mount(edge: Edge) -> bool:
+    return edge.kind is not EdgeKind.SHUNT
+
+
+def _unmetered(
+    boat: Boat, network: Network, at: list[list[Edge]], bat: int, shunt: str, bank: str
+) -> tuple[Unmetered, ...]:
+    """Name the loads, sources, metal parts and shields on the bank's side of the shunt."""
+    found: list[Unmetered] = []
+    joined = _reach(at, bat)
+    for device in boat.devices.values():
+        if device.id == shunt or device.belongs_to == shunt or not isinstance(device.part, (Load, Source, Metal)):
+            continue
+        what = {Load: "load", Source: "charge source", Metal: "metal part"}[type(device.part)]
+        posts = [network.index[f"{device.id}.{p}" if p else device.id] for p in device.part.posts]
+        landed = [post for post in posts if post in joined]
+        if landed:
+            path = path_between(at, bat, landed) or []
+            last = path[-1].part if path else device.id
+            found.append(Unmetered(device.id, what, last, path_words(network, bat, path)))
+    for shield in boat.shields or ():
+        landed = [network.index[post] for post in shield.joins or () if network.index[post] in joined]
+        if landed and not _is_of_known_device(boat, network, landed, found):
+            path = path_between(at, bat, landed) or []
+            found.append(Unmetered(shield.id, "shield", shield.id, path_words(network, bat, path)))
+    return tuple(found)
+
+
+def _is_of_known_device(boat: Boat, network: Network, posts: list[int], found: list[Unmetered]) -> bool:
+    """Tell whether a shield hangs on a device that is named already; it then adds nothing."""
+    named = {item.device for item in found}
+    owners = [boat.device_of(network.posts[post]) for post in posts]
+    return all(owner is not None and owner.id in named for owner in owners)
+
+
+def _reach(at: list[list[Edge]], start: int) -> set[int]:
+    seen = {start}
+    waiting = [start]
+    while waiting:
+        for edge in at[node := waiting.pop()]:
+            far = edge.other(node)
+            if far not in seen:
+                seen.add(far)
+                waiting.append(far)
+    return seen

@@ -1,0 +1,157 @@
+"""Find the nets and their voltages, with loads and sources taken out.
+
+Batteries fix how far apart the potentials of their posts are; everything else that conducts
+makes its posts equal. A loop that says two things at once, or a battery whose two posts are
+one net, cannot be wired as drawn. Sources that hold a voltage (a solar array, an isolated
+converter) fix a net only where no battery does.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from checker.network.graph import BatteryTie, Network, SourceTie
+from checker.network.states import SwitchState, live_edges
+from checker.network.walk import groups, neighbours, path_between, path_words
+
+SAME_V = 0.5
+"""Two potentials closer than this are one nominal voltage: 6 V steps are the smallest aboard."""
+
+
+@dataclass(frozen=True, slots=True)
+class Conflict:
+    """Tell a battery that cannot be where it is: shorted, or in a loop that disagrees."""
+
+    battery: str
+    is_short: bool
+    drawn_v: float
+    path: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Potentials:
+    """Hold the net of each post and its voltage above the reference.
+
+    `net` has shape (posts,): the number of the net. `value_v` has shape (posts,): volts above
+    the root of the post's island. `island` has shape (posts,): posts of one island have a
+    known voltage between them.
+    """
+
+    state: SwitchState
+    net: tuple[int, ...]
+    island: tuple[int, ...]
+    value_v: tuple[float, ...]
+    reference: int
+    conflicts: tuple[Conflict, ...]
+
+    def between(self, first: int, second: int) -> float | None:
+        """Return the voltage of the first post above the second, or None if nothing fixes it."""
+        if self.island[first] != self.island[second]:
+            return None
+        return self.value_v[first] - self.value_v[second]
+
+    def above_reference(self, post: int) -> float | None:
+        """Return the voltage of a post above the DC reference, or None if nothing fixes it."""
+        return self.between(post, self.reference)
+
+    def is_return(self, post: int) -> bool:
+        """Tell whether a post is at the reference's potential."""
+        volts = self.above_reference(post)
+        return volts is not None and abs(volts) < SAME_V
+
+
+def study_potentials(network: Network, state: SwitchState) -> Potentials:
+    """Find nets, islands and voltages in one switch state."""
+    live = live_edges(network, state)
+    size = len(network.posts)
+    net = groups(size, ((network.edges[i].a, network.edges[i].b) for i in live))
+    islands = _Islands(size)
+    for post in range(size):
+        islands.tie(post, net[post], 0.0)
+    conflicts: list[Conflict] = []
+    placed: list[BatteryTie] = []
+    for battery in network.batteries:
+        known = islands.between(battery.pos, battery.neg)
+        if net[battery.pos] == net[battery.neg]:
+            conflicts.append(Conflict(battery.device, True, 0.0, _loop(network, live, placed, battery)))
+        elif known is not None and abs(known - battery.voltage_v) >= SAME_V:
+            conflicts.append(Conflict(battery.device, False, known, _loop(network, live, placed, battery)))
+        else:
+            islands.tie(battery.pos, battery.neg, battery.voltage_v)
+            placed.append(battery)
+    for source in _held_last(network):
+        if islands.between(source.out, source.back) is None:
+            islands.tie(source.out, source.back, source.voltage_v)
+    roots = [islands.root(post) for post in range(size)]
+    return Potentials(
+        state=state,
+        net=tuple(net),
+        island=tuple(root for root, _ in roots),
+        value_v=tuple(value for _, value in roots),
+        reference=network.reference,
+        conflicts=tuple(conflicts),
+    )
+
+
+def _held_last(network: Network) -> list[SourceTie]:
+    """Return the sources in the order of their ids."""
+    return sorted(network.sources, key=lambda source: (source.device, source.post))
+
+
+def _loop(network: Network, live: list[int], placed: list[BatteryTie], battery: BatteryTie) -> tuple[str, ...]:
+    """Tell the loop that a battery closes: over conductors, and over other batteries where needed."""
+    at = neighbours(network, live)
+    path = path_between(at, battery.pos, [battery.neg])
+    if path is not None:
+        return path_words(network, battery.pos, path)
+    # The loop passes through other batteries: go from one to the next.
+    steps = {battery.pos: (network.posts[battery.pos],)}
+    waiting = [battery.pos]
+    used: set[str] = set()
+    while waiting:
+        here = waiting.pop(0)
+        last = path_between(at, here, [battery.neg])
+        if last is not None:
+            return (*steps[here][:-1], *path_words(network, here, last))
+        for other in placed:
+            for enter, leave in ((other.pos, other.neg), (other.neg, other.pos)):
+                way = None if other.device in used else path_between(at, here, [enter])
+                if way is not None:
+                    used.add(other.device)
+                    told = (*steps[here][:-1], *path_words(network, here, way), other.device, network.posts[leave])
+                    steps[leave] = told
+                    waiting.append(leave)
+    return (battery.device,)
+
+
+class _Islands:
+    """Union-find whose links carry a voltage."""
+
+    def __init__(self, size: int) -> None:
+        self._parent = list(range(size))
+        self._above = [0.0] * size
+
+    def root(self, post: int) -> tuple[int, float]:
+        """Return the root of a post and the post's voltage above it."""
+        trail: list[int] = []
+        while self._parent[post] != post:
+            trail.append(post)
+            post = self._parent[post]
+        total = 0.0
+        for step in reversed(trail):
+            total += self._above[step]
+            self._above[step] = total
+            self._parent[step] = post
+        return post, total if trail else 0.0
+
+    def between(self, first: int, second: int) -> float | None:
+        """Return the voltage of the first above the second if they are tied."""
+        (root_a, volts_a), (root_b, volts_b) = self.root(first), self.root(second)
+        return volts_a - volts_b if root_a == root_b else None
+
+    def tie(self, upper: int, lower: int, voltage_v: float) -> None:
+        """Say that the upper post stands `voltage_v` above the lower one; they must not be tied yet."""
+        (root_a, volts_a), (root_b, volts_b) = self.root(upper), self.root(lower)
+        if root_a != root_b:
+            self._parent[root_a] = root_b
+            self._above[root_a] = voltage_v + volts_b - volts_a

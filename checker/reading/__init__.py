@@ -1,0 +1,1 @@
+"""Read a yard's files: text to data with positions, quantities, schemas."""

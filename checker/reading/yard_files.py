@@ -1,0 +1,137 @@
+"""Find and read all files of a yard's repository.
+
+Where a file lies says what kind of document it is. Files are taken in the order of their
+paths, never of the directory, so that reports do not depend on the machine.
+"""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterator
+from dataclasses import dataclass, field
+from pathlib import Path
+
+from checker.errors import FleetNotFoundError
+from checker.finding import Span
+from checker.reading.document import Document, Fault, compose
+from checker.reading.schema import schema_faults
+from checker.reading.words import nearest
+
+YARD_FILE = "yard.yaml"
+WAIVERS_FILE = "waivers.yaml"
+_PLACES = (
+    ("yard", re.compile(r"yard\.yaml\Z")),
+    ("waivers", re.compile(r"waivers\.yaml\Z")),
+    ("parts", re.compile(r"parts/[^/]+\.yaml\Z")),
+    ("option", re.compile(r"classes/([^/]+)/options/[^/]+\.yaml\Z")),
+    ("class", re.compile(r"classes/([^/]+)/[^/]+\.yaml\Z")),
+    ("hull", re.compile(r"hulls/[^/]+\.yaml\Z")),
+)
+_FOLDERS = ("parts", "classes", "hulls")
+_PLAIN_ID = re.compile(r"[A-Za-z0-9][A-Za-z0-9_-]{0,39}\Z")
+
+
+@dataclass(slots=True)
+class YardFiles:
+    """Hold every document of a yard by kind, in the order of their paths.
+
+    A document with faults stays here, so that others can still be read; `faulty` names the
+    files that cannot be trusted.
+    """
+
+    yard: Document | None = None
+    parts: list[Document] = field(default_factory=list)
+    classes: dict[str, list[Document]] = field(default_factory=dict)
+    options: dict[str, list[Document]] = field(default_factory=dict)
+    hulls: list[Document] = field(default_factory=list)
+    waivers: Document | None = None
+    faults: list[Fault] = field(default_factory=list)
+    bytes_read: int = 0
+
+    @property
+    def faulty(self) -> frozenset[str]:
+        """Return the paths of the files that have a fault."""
+        return frozenset(fault.at.file for fault in self.faults)
+
+
+def read_yard(folder: Path) -> YardFiles:
+    """Read the yard in a folder; all faults of all files are collected.
+
+    Raises:
+        FleetNotFoundError: If the folder holds no yard file.
+    """
+    if not (folder / YARD_FILE).is_file():
+        raise FleetNotFoundError(f"no {YARD_FILE} in {folder}: give the folder of a yard's repository")
+    files = YardFiles()
+    for name, path in _yaml_files(folder, files):
+        kind, owner = _kind_of(name)
+        if kind is None:
+            files.faults.append(_misplaced(name))
+            continue
+        content = _content(folder, path, name, files)
+        if content is None:
+            continue
+        files.bytes_read += len(content)
+        document = compose(content, name)
+        faults = document.faults or schema_faults(document, kind)
+        files.faults += faults
+        _file_in(files, kind, owner, document)
+    return files
+
+
+def _yaml_files(folder: Path, files: YardFiles) -> Iterator[tuple[str, Path]]:
+    """Yield name and path of each YAML file of the yard, sorted by name."""
+    found = [path for path in folder.iterdir() if path.suffix in (".yaml", ".yml") and not path.name.startswith(".")]
+    for sub in _FOLDERS:
+        if (folder / sub).is_dir():
+            found += [path for path in (folder / sub).rglob("*") if path.suffix in (".yaml", ".yml")]
+    yield from sorted((path.relative_to(folder).as_posix(), path) for path in found)
+
+
+def _kind_of(name: str) -> tuple[str | None, str]:
+    for kind, place in _PLACES:
+        match = place.match(name)
+        if match:
+            return kind, match[1] if match.groups() else ""
+    return None, ""
+
+
+def _misplaced(name: str) -> Fault:
+    if name.endswith(".yml"):
+        return Fault("unreadable-file", Span(name, 1, 1), "files of a yard end in .yaml", f"rename it to {name[:-4]}.yaml")
+    meant = nearest(name, (YARD_FILE, WAIVERS_FILE))
+    remedy = f"did you mean {meant}?" if meant else (
+        "a yard keeps yard.yaml, waivers.yaml, parts/*.yaml, classes/ID/*.yaml, classes/ID/options/*.yaml, hulls/*.yaml"
+    )
+    return Fault("unreadable-file", Span(name, 1, 1), "no kind of document is kept at this place", remedy)
+
+
+def _content(folder: Path, path: Path, name: str, files: YardFiles) -> bytes | None:
+    """Return a file's bytes, or None with a fault where it is not ours to read."""
+    at = Span(name, 1, 1)
+    if not path.resolve().is_relative_to(folder.resolve()):
+        files.faults.append(Fault("unreadable-file", at, "the file is a link that leaves the repository", "copy the file in"))
+        return None
+    try:
+        return path.read_bytes()
+    except OSError as error:
+        files.faults.append(Fault("unreadable-file", at, f"the file cannot be read: {error.strerror}"))
+        return None
+
+
+def _file_in(files: YardFiles, kind: str, owner: str, document: Document) -> None:
+    if owner and not _PLAIN_ID.match(owner):
+        files.faults.append(Fault("bad-value", Span(document.file, 1, 1), f"folder “{owner}” is not a plain id"))
+    match kind:
+        case "yard":
+            files.yard = document
+        case "waivers":
+            files.waivers = document
+        case "parts":
+            files.parts.append(document)
+        case "class":
+            files.classes.setdefault(owner, []).append(document)
+        case "option":
+            files.options.setdefault(owner, []).append(document)
+        case _:
+            files.hulls.append(document)
