@@ -72,13 +72,18 @@ class Basis(Enum):
 
 @dataclass(frozen=True, slots=True)
 class Measure:
-    """Hold a value against its limit. Both are in `unit`; a fraction has unit ""."""
+    """Hold a value against its limit. Both are in `unit`; a fraction has unit "".
+
+    `is_stepped` marks what is chosen from a row of sizes, where standing at the limit is
+    the ordinary case and no thin margin: a gauge, a rating, a class of insulation.
+    """
 
     quantity: str
     value: float
     limit: float
     unit: str
     at_least: bool = False
+    is_stepped: bool = False
 
     @property
     def holds(self) -> bool:
@@ -142,3 +147,9 @@ class Card:
     exemptions: str = ""
     caution: str = ""
     catalogue: tuple[str, ...] = ()
+    can_be_waived: bool = False
+
+    @property
+    def rests_on(self) -> str:
+        """Return basis and citation, without saying the same twice."""
+        return self.citation if self.basis.value in self.citation else f"{self.basis.value}: {self.citation}"

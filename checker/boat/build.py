@@ -83,6 +83,7 @@ def _build_places(shop: _Workshop) -> None:
             is_engine_space=row.flag("engine_space"),
             has_petrol_vapour=row.flag("petrol_vapour"),
             has_cooking_gas=row.flag("cooking_gas"),
+            at_petrol=row.at("petrol_vapour"),
         )
     for row in shop.top.entries("ways"):
         length_m = row.needed_number("length", Dimension.LENGTH)

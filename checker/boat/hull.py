@@ -24,6 +24,7 @@ class Zone:
     is_engine_space: bool = False
     has_petrol_vapour: bool = False
     has_cooking_gas: bool = False
+    at_petrol: Span = field(default=NOWHERE, compare=False, repr=False)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -150,7 +150,7 @@ def check(
     def decorate(function: Callable[[Case], Iterator[Outcome]]) -> Check:
         card = Card(
             id=function.__name__.replace("_", "-"), title=title, level=level, basis=basis, citation=citation, why=why,
-            text=inspect.cleandoc(function.__doc__ or ""), exemptions=exemptions, caution=caution, catalogue=catalogue,
+            text=inspect.cleandoc(function.__doc__ or ""), exemptions=exemptions, caution=caution, catalogue=catalogue, can_be_waived=True,
         )  # fmt: skip
         return Check(card, function, per_set)
 
@@ -164,7 +164,7 @@ def at_conductor(conductor: Conductor, at: Span | None = None, state: str = "") 
 
 def is_thin(measure: Measure | None) -> bool:
     """Tell whether a limit is kept with little to spare."""
-    if measure is None or not measure.holds:
+    if measure is None or measure.is_stepped or not measure.holds:
         return False
     headroom = measure.headroom_fraction
     return headroom is not None and headroom < thin_margin_fraction()

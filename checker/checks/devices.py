@@ -50,7 +50,7 @@ def device_voltage(case: Case) -> Iterator[Outcome]:
         if volts is None:
             yield device_voltage.not_assessed(case, _at(device), "no battery fixes the voltage of its net", "a feed")
             continue
-        measure = Measure("voltage rating", part.voltage_v, volts * factor, "V", at_least=True)
+        measure = Measure("voltage rating", part.voltage_v, volts * factor, "V", at_least=True, is_stepped=True)
         told = Told(
             fault=f"{part.id} is rated {plain(part.voltage_v)} V in a net of {plain(volts)} V",
             remedy=f"fit a device rated for at least {plain(volts * factor)} V DC",
@@ -201,7 +201,7 @@ def maker_device(case: Case) -> Iterator[Outcome]:
             remedy=f"fit {ampere(load.max_device_a)} or less",
             inputs=(("device", ampere(device.part.rating_a)), ("maker", ampere(load.max_device_a))),
         )
-        measure = Measure("device rating", device.part.rating_a, load.max_device_a, "A")
+        measure = Measure("device rating", device.part.rating_a, load.max_device_a, "A", is_stepped=True)
         yield maker_device.judge(case, place, measure, lambda told=told: told)  # type: ignore[misc]
 
 
@@ -250,7 +250,8 @@ def ignition_protection(case: Case) -> Iterator[Outcome]:
     if case.limits.ignition is None:
         return
     for device in case.boat.devices.values():
-        if not case.boat.zones[device.zone].has_petrol_vapour:
+        zone = case.boat.zones[device.zone]
+        if not zone.has_petrol_vapour:
             continue
         if not isinstance(device.part, (Load, Source, Switch, Overcurrent)):
             continue
@@ -259,7 +260,8 @@ def ignition_protection(case: Case) -> Iterator[Outcome]:
             yield ignition_protection.passed(case, place)
             continue
         told = Told(
-            fault=f"{device.part.id} is not ignition protected and stands in {device.zone}, which has petrol vapour",
+            fault=f"{device.part.id} is not ignition protected and stands in {device.zone}, which has petrol vapour "
+            f"(written at {zone.at_petrol})",
             remedy="use an ignition-protected part, move it, or keep the petrol out of this zone",
             inputs=(("part", device.part.id), ("zone", device.zone)),
         )

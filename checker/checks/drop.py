@@ -99,7 +99,7 @@ def _told_drop(case: Case, circuit: Circuit, drop: Drop, limit: DropLimit, from_
     return Told(
         fault=f"{lost}: {percent(drop.fraction)} ({limit.words})",
         remedy=_drop_remedy(case, circuit, conductors, drop, limit),
-        path=tuple(f"{name} {volts:.3f} V" for name, volts in drop.terms),
+        path=(" + ".join(f"{name} {volts:.3f} V" for name, volts in drop.terms),),
         inputs=tuple(facts),
     )
 
@@ -193,7 +193,7 @@ def return_size(case: Case) -> Iterator[Outcome]:
             continue
         least = min(feeds, key=lambda c: (c.size.area_mm2, c.id))
         for back in backs:
-            measure = Measure("area", back.size.area_mm2, least.size.area_mm2, "mm2", at_least=True)
+            measure = Measure("area", back.size.area_mm2, least.size.area_mm2, "mm2", at_least=True, is_stepped=True)
             told = Told(
                 fault=f"return of {back.size.text} is thinner than its feed {least.id} of {least.size.text}",
                 remedy=f"use {least.size.text} back",

@@ -97,7 +97,7 @@ def minimum_size(case: Case) -> Iterator[Outcome]:
         exempt = size_exemption(case, conductor)
         in_sheath = conductor.cable.is_sheathed and conductor.cable.cores > 1
         least = rule.sheathed_awg if in_sheath else rule.single_awg
-        measure = Measure("area", conductor.size.area_mm2, awg_area_mm2(least), "mm2", at_least=True)
+        measure = Measure("area", conductor.size.area_mm2, awg_area_mm2(least), "mm2", at_least=True, is_stepped=True)
         if exempt and not measure.holds:
             yield minimum_size.passed(case, place, exempt)
         elif conductor.size.awg is None and not case.house.next_smaller_awg:
@@ -183,7 +183,7 @@ def insulation_rating(case: Case) -> Iterator[Outcome]:
         engine = next((z for z in conductor.zones if case.boat.zones[z].is_engine_space), None)
         least_c = rule.elsewhere_min_c if engine is None else rule.engine_space_min_c
         hottest_c = max((case.boat.zones[z].ambient_c for z in conductor.zones), default=0.0)
-        measure = Measure("insulation", conductor.cable.insulation_c, max(least_c, hottest_c), "C", at_least=True)
+        measure = Measure("insulation", conductor.cable.insulation_c, max(least_c, hottest_c), "C", at_least=True, is_stepped=True)
         yield _judge_insulation(case, conductor, measure, engine)
 
 

@@ -16,7 +16,12 @@ def nearest(word: str, known: Iterable[str]) -> str | None:
     return lowered[close[0]] if close else None
 
 
+def flat(text: str) -> str:
+    """Return text so that it stays on its line and steers no terminal: what cannot be printed is spelled."""
+    return text if text.isprintable() else "".join(c if c.isprintable() else f"\\u{ord(c):04x}" for c in text)
+
+
 def shown(text: str) -> str:
-    """Return text from a yard's file so that it stays on its line and prints as itself."""
-    flat = "".join(c if c.isprintable() else f"\\u{ord(c):04x}" for c in text)
-    return flat if len(flat) <= LONGEST_SHOWN else flat[: LONGEST_SHOWN - 1] + "…"
+    """Return text from a yard's file for a message: on one line, cut where it is long."""
+    printed = flat(text)
+    return printed if len(printed) <= LONGEST_SHOWN else printed[: LONGEST_SHOWN - 1] + "…"

@@ -1,0 +1,1 @@
+"""Render a result; judge nothing."""

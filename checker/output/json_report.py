@@ -1,0 +1,140 @@
+"""Write the result as one JSON document; schemas/result.json describes it.
+
+Each outcome stands on one line, so that the document diffs like the text reports.
+"""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Mapping
+from typing import Any
+
+from checker.finding import Card, Outcome, Verdict
+from checker.result.gather import fingerprint
+from checker.result.model import FleetResult, SetUse, Study, SubjectResult, tally
+
+SCHEMA_VERSION = "1"
+
+
+def json_report(result: FleetResult, cards: Mapping[str, Card]) -> str:
+    """Return the result as JSON text: keys in a fixed order, numbers rounded to nine digits."""
+    study_outcomes = {study.name: set(study.outcomes) for study in result.studies}
+    document: dict[str, Any] = {
+        "schema_version": SCHEMA_VERSION,
+        "tool": {"name": "fairloom", "version": result.tool_version},
+        "yard": result.yard,
+        "clean": result.is_clean,
+        "open_errors": result.open_errors,
+        "checks": [_Line(_card(card)) for card in cards.values()],
+        "subjects": [_subject(subject, study_outcomes[subject.study]) for subject in result.subjects],
+        "studies": [_study(study) for study in result.studies],
+        "file_findings": [_Line(_outcome(outcome)) for outcome in result.file_outcomes],
+        "not_studied": list(result.unstudied),
+    }
+    return _written(document, 0) + "\n"
+
+
+class _Line(dict[str, Any]):
+    """Mark a mapping that is written on one line."""
+
+
+def _card(card: Card) -> dict[str, Any]:
+    return {"id": card.id, "title": card.title, "level": card.level.value, "basis": card.basis.value,
+            "citation": card.citation, "why": card.why}  # fmt: skip
+
+
+def _set_use(use: SetUse) -> _Line:
+    return _Line(id=use.id, title=use.title, why=use.why, figures_from_memory=use.from_memory)
+
+
+def _counts(outcomes: tuple[Outcome, ...]) -> _Line:
+    counts = tally(outcomes)
+    return _Line({verdict.value.replace(" ", "_"): counts[verdict] for verdict in Verdict})
+
+
+def _subject(subject: SubjectResult, of_study: set[Outcome]) -> dict[str, Any]:
+    accepted = [
+        _Line(
+            fingerprint=mark, waiver=a.waiver, reason=a.reason, approved_by=a.approved_by, expires=a.expires,
+            **({"evidence": a.evidence} if a.evidence else {}),
+        )
+        for mark, a in sorted(subject.accepted.items())
+    ]  # fmt: skip
+    own = [o for o in subject.outcomes if o not in of_study and o.verdict is not Verdict.ACCEPTED]
+    return {
+        "id": subject.id,
+        "kind": "hull" if subject.is_hull else "option set",
+        "class": subject.class_id,
+        "revision": subject.revision,
+        "class_revision": subject.class_revision,
+        "options": list(subject.options),
+        "status": subject.status,
+        "changes": list(subject.changes),
+        "study": subject.study,
+        "open_errors": subject.open_errors,
+        "counts": _counts(subject.outcomes),
+        "accepted": accepted,
+        "own_findings": [_Line(_outcome(outcome)) for outcome in own],
+    }
+
+
+def _study(study: Study) -> dict[str, Any]:
+    return {
+        "name": study.name,
+        "limit_sets": [_set_use(use) for use in study.sets],
+        "outcomes": [_Line(_outcome(outcome)) for outcome in study.outcomes],
+    }
+
+
+def _outcome(outcome: Outcome) -> dict[str, Any]:
+    """Return an outcome's facts; empty ones are left out."""
+    facts: dict[str, Any] = {"verdict": outcome.verdict.value, "check": outcome.check, "part": outcome.part}
+    if outcome.limit_set:
+        facts["limit_set"] = outcome.limit_set
+    if outcome.circuit:
+        facts["circuit"] = outcome.circuit
+    measure = outcome.measure
+    if measure is not None:
+        facts |= {"quantity": measure.quantity, "value": _number(measure.value), "limit": _number(measure.limit),
+                  "unit": measure.unit or "fraction", "sense": "at least" if measure.at_least else "at most",
+                  "headroom": _number(measure.headroom_fraction)}  # fmt: skip
+    if outcome.verdict is Verdict.PASSED:
+        return facts | ({"note": outcome.note} if outcome.note and measure is None else {})
+    facts |= {"level": outcome.level.value, "fault": outcome.fault}
+    if outcome.at.file:
+        facts |= {"file": outcome.at.file, "line": outcome.at.line, "column": outcome.at.column}
+    for name in ("remedy", "state", "missing"):
+        value = getattr(outcome, name)
+        if value:
+            facts[name] = value
+    if outcome.path:
+        facts["path"] = list(outcome.path)
+    if outcome.verdict is not Verdict.NOT_ASSESSED:
+        facts["fingerprint"] = fingerprint(outcome)
+    return facts
+
+
+def _number(value: float | None) -> float | str | None:
+    """Round a figure so that it prints alike on every machine; JSON has no infinity."""
+    if value is None:
+        return None
+    if value in (float("inf"), float("-inf")):
+        return "unlimited"
+    rounded = float(f"{value:.9g}")
+    return int(rounded) if rounded.is_integer() and abs(rounded) < 1e15 else rounded
+
+
+_compact = json.JSONEncoder(ensure_ascii=False, separators=(", ", ": ")).encode
+
+
+def _written(value: Any, depth: int) -> str:
+    """Write nested values indented, and marked mappings on one line."""
+    if isinstance(value, _Line) or not isinstance(value, (dict, list)) or not value:
+        return _compact(value)
+    pad, end = "  " * (depth + 1), "  " * depth
+    if isinstance(value, list):
+        if not any(isinstance(item, (dict, list)) for item in value):
+            return _compact(value)
+        return "[\n" + ",\n".join(pad + _written(item, depth + 1) for item in value) + f"\n{end}]"
+    rows = (f"{pad}{_compact(key)}: {_written(item, depth + 1)}" for key, item in value.items())
+    return "{\n" + ",\n".join(rows) + f"\n{end}}}"

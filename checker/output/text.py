@@ -1,0 +1,200 @@
+"""Write the reports that are committed and diffed: one a hull, one for the fleet."""
+
+from __future__ import annotations
+
+from collections import Counter
+from collections.abc import Iterator, Mapping
+
+from checker.checks.check import is_thin
+from checker.finding import Card, Level, Outcome, Verdict
+from checker.output.lines import finding_lines, measure_words, set_lines
+from checker.reading.words import flat
+from checker.result.gather import fingerprint, natural
+from checker.result.model import Acceptance, FleetResult, SubjectResult, tally
+
+CAUTION = (
+    "This report holds wiring data against the limits it names. It certifies nothing: local codes, the licensed "
+    "edition of a standard and the surveyor decide. Disconnect before working; batteries are for qualified people."
+)
+Cards = Mapping[str, Card]
+
+
+def verdict_words(subject: SubjectResult) -> str:
+    """Tell how a hull or option set came out, in a few words."""
+    if subject.open_errors:
+        return f"FAILS with {count(subject.open_errors, 'open error')}"
+    counts = tally(subject.outcomes)
+    extras = [
+        count(n, word)
+        for n, word in (
+            (sum(o.verdict is Verdict.FINDING for o in subject.outcomes), "warning or note"),
+            (counts[Verdict.ACCEPTED], "accepted finding"),
+            (counts[Verdict.NOT_ASSESSED], "place not assessed"),
+            (thin_count(subject), "thin margin"),
+        )
+        if n
+    ]
+    return "passes" + (f" with {', '.join(extras)}" if extras else "")
+
+
+def count(number: int, word: str) -> str:
+    """Print a number with its word, in the plural where it is due."""
+    if number == 1:
+        return f"1 {word}"
+    plurals = {"warning or note": "warnings or notes", "place not assessed": "places not assessed",
+               "hull": "hulls"}  # fmt: skip
+    return f"{number} {plurals.get(word, word + 's')}"
+
+
+def thin_count(subject: SubjectResult) -> int:
+    """Count the passes with little headroom."""
+    return sum(o.verdict is Verdict.PASSED and is_thin(o.measure) for o in subject.outcomes)
+
+
+def hull_report(subject: SubjectResult, cards: Cards) -> str:
+    """Return the text report of one hull or option set."""
+    return "\n".join([*_head(subject), "", *_body(subject, cards), ""])
+
+
+def _head(subject: SubjectResult) -> Iterator[str]:
+    kind = "hull" if subject.is_hull else "option set"
+    yield f"{kind}: {subject.id}"
+    yield f"class: {subject.class_id} ({flat(subject.class_name)}), revision {subject.revision} of {subject.class_revision}"
+    yield f"options: {', '.join(subject.options) or 'none'}"
+    yield f"as-built changes: {', '.join(subject.changes) or 'none'}"
+    yield f"status: {subject.status}"
+    yield f"same wiring: {', '.join(subject.alike) or 'no other'}"
+    yield from set_lines(subject.sets)
+    yield f"verdict: {verdict_words(subject)}"
+    yield f"caution: {CAUTION}"
+
+
+def _body(subject: SubjectResult, cards: Cards) -> Iterator[str]:
+    counts = tally(subject.outcomes)
+    yield "totals"
+    for verdict in Verdict:
+        yield f"  {verdict.value}: {counts[verdict]}"
+    yield f"  passed with thin margin: {thin_count(subject)}"
+    for verdict, heading in (
+        (Verdict.FINDING, "findings"), (Verdict.ACCEPTED, "accepted findings"), (Verdict.NOT_ASSESSED, "not assessed"),
+    ):  # fmt: skip
+        blocks = [o for o in subject.outcomes if o.verdict is verdict]
+        yield from ("", heading if blocks else f"{heading}: none")
+        for outcome in blocks:
+            acceptance = subject.accepted.get(fingerprint(outcome)) if verdict is Verdict.ACCEPTED else None
+            yield from finding_lines(outcome, cards[outcome.check], "", acceptance)
+    passes = [o for o in subject.outcomes if o.verdict is Verdict.PASSED]
+    yield from _exemptions(passes)
+    yield from _looked_at(passes)
+    yield from _measured(passes)
+
+
+def _exemptions(passes: list[Outcome]) -> Iterator[str]:
+    """Print every exemption used: what it frees from which rule, and by which clause."""
+    used = sorted(
+        {(natural(o.part), o.part, o.check, o.limit_set, o.note) for o in passes if o.measure is None and o.note}
+    )
+    yield from ("", "exemptions used" if used else "exemptions used: none")
+    for _, part, check, limit_set, note in used:
+        yield f"  {flat(part)} {check} {limit_set}: {flat(note)}"
+
+
+def _looked_at(passes: list[Outcome]) -> Iterator[str]:
+    """Count the passes that have no figure, by check."""
+    counts = Counter((o.check, o.limit_set) for o in passes if o.measure is None)
+    yield from ("", "passed without a figure, by check")
+    for (check, limit_set), number in sorted(counts.items()):
+        yield f"  {check}{' ' + limit_set if limit_set else ''}: {number}"
+
+
+def _measured(passes: list[Outcome]) -> Iterator[str]:
+    """Print every measured pass: part, check, value of limit, headroom."""
+    yield from ("", "passed with headroom, by part")
+    for outcome in passes:
+        if outcome.measure is not None:
+            limit_set = f" {outcome.limit_set}" if outcome.limit_set else ""
+            yield f"  {flat(outcome.part)} {outcome.check}{limit_set}: {measure_words(outcome)}"
+
+
+def fleet_report(result: FleetResult, cards: Cards) -> str:
+    """Return the text report of the fleet: what is open first, then each hull in a line."""
+    lines = [
+        f"yard: {flat(result.yard)}",
+        f"fairloom: {result.tool_version}",
+        f"verdict: {fleet_verdict(result)}",
+        f"caution: {CAUTION}",
+        "",
+        *fleet_totals(result),
+        "",
+        *summary_lines(result),
+    ]
+    for verdict, heading in (
+        (Verdict.FINDING, "findings"), (Verdict.ACCEPTED, "accepted findings"), (Verdict.NOT_ASSESSED, "not assessed"),
+    ):  # fmt: skip
+        blocks = list(grouped(result, verdict))
+        lines += ["", heading if blocks else f"{heading}: none"]
+        for outcome, who, acceptance in blocks:
+            lines += finding_lines(outcome, cards[outcome.check], who, acceptance)
+    return "\n".join([*lines, ""])
+
+
+def fleet_verdict(result: FleetResult) -> str:
+    """Tell the outcome of the run in one line."""
+    hulls = [s for s in result.subjects if s.is_hull]
+    failing = [s.id for s in hulls if s.open_errors]
+    sets = [s.id for s in result.subjects if not s.is_hull and s.open_errors]
+    words = [f"{count(len(failing), 'hull')} of {len(hulls)} {'has' if len(failing) == 1 else 'have'} open errors"]
+    if failing:
+        words[0] += f" ({', '.join(failing)})"
+    if sets:
+        words.append(f"{count(len(sets), 'option set')} with open errors ({', '.join(sets)})")
+    if result.file_outcomes:
+        words.append(f"{count(len(result.file_outcomes), 'fault')} in the yard's files")
+    if result.unstudied:
+        words.append(f"NOT STUDIED: {', '.join(result.unstudied)}")
+    return "; ".join(words)
+
+
+def fleet_totals(result: FleetResult) -> Iterator[str]:
+    """Print what was looked at, over all hulls and option sets, alike ones counted once each."""
+    outcomes = [o for s in result.subjects for o in s.outcomes] + list(result.file_outcomes)
+    counts = tally(outcomes)
+    errors = sum(o.verdict is Verdict.FINDING and o.level is Level.ERROR for o in outcomes)
+    yield f"hulls: {sum(s.is_hull for s in result.subjects)}"
+    yield f"option sets: {sum(not s.is_hull for s in result.subjects)}"
+    yield f"distinct boats studied: {len(result.studies)}"
+    yield f"open errors: {errors}"
+    yield f"open warnings and notes: {counts[Verdict.FINDING] - errors}"
+    yield f"accepted findings: {counts[Verdict.ACCEPTED]}"
+    yield f"places not assessed: {counts[Verdict.NOT_ASSESSED]}"
+    yield f"places passed: {counts[Verdict.PASSED]}"
+    yield f"of these with thin margin: {sum(thin_count(s) for s in result.subjects)}"
+    uses = sorted({use for s in result.subjects for use in s.sets}, key=lambda use: (use.id, use.why))
+    yield from set_lines(uses)
+
+
+def summary_lines(result: FleetResult) -> Iterator[str]:
+    """Print each hull and option set in one line."""
+    for subject in (s for s in result.subjects if s.is_hull):
+        options = " + ".join(subject.options) or "no options"
+        yield f"hull {subject.id} ({subject.status}, {options}): {verdict_words(subject)}"
+    for subject in (s for s in result.subjects if not s.is_hull):
+        yield f"option set {subject.id}: {verdict_words(subject)}"
+
+
+def grouped(result: FleetResult, verdict: Verdict) -> Iterator[tuple[Outcome, str, Acceptance | None]]:
+    """Yield each finding once, with the hulls and option sets that it is on, worst first."""
+    groups: dict[tuple[object, ...], tuple[Outcome, list[str], Acceptance | None]] = {}
+    for outcome in result.file_outcomes:
+        if outcome.verdict is verdict:
+            groups[(outcome,)] = (outcome, [], None)
+    for subject in result.subjects:
+        for outcome in subject.outcomes:
+            if outcome.verdict is verdict:
+                acceptance = subject.accepted.get(fingerprint(outcome)) if verdict is Verdict.ACCEPTED else None
+                entry = groups.setdefault((outcome, acceptance), (outcome, [], acceptance))
+                entry[1].append(subject.id)
+    order = sorted(groups.values(), key=lambda g: (g[0].level.rank, g[0].at, g[0].check, natural(g[0].part), g[1]))
+    for outcome, names, acceptance in order:
+        yield outcome, ", ".join(names), acceptance
+

@@ -1,0 +1,367 @@
+"""Run the stages in order: the one module that knows them all."""
+
+from __future__ import annotations
+
+import contextlib
+import datetime
+import gc
+from collections.abc import Callable, Collection, Iterator, Sequence
+from dataclasses import replace
+from pathlib import Path
+
+from checker import __version__
+from checker.boat.assemble import Assembly, ClassDesign, Subject, assemble
+from checker.boat.build import build_boat
+from checker.boat.catalogue import Catalogue, read_catalogue
+from checker.boat.hull import Boat
+from checker.checks.catalogue import CHECKS
+from checker.checks.check import Case, Check, House
+from checker.errors import UsageError
+from checker.finding import NOWHERE, Card, Level, Outcome, Verdict
+from checker.limits.limit_set import LimitSet, limit_set_ids, load_limit_set
+from checker.network.studies import Studies
+from checker.reading.cards import FILE_CARDS
+from checker.reading.document import Fault
+from checker.reading.words import nearest
+from checker.reading.yard_files import YardFiles, read_yard
+from checker.result.cards import CLASS_REVISION, NOT_STUDIED, RESULT_CARDS
+from checker.result.gather import report_order
+from checker.result.model import FleetResult, SetUse, Study, SubjectResult
+from checker.result.waiver_file import read_waivers
+from checker.result.waivers import Waiver, apply_waivers, unmatched
+
+Progress = Callable[[int, int], None]
+StudyKey = str
+Studied = tuple[tuple[Outcome, ...], tuple[SetUse, ...], tuple[Fault, ...]]
+
+FEWEST_FOR_WORKERS = 24
+"""Distinct boats below which starting worker processes costs more than it saves."""
+
+
+def all_cards() -> tuple[Card, ...]:
+    """Return the cards of everything that can be found, in report order."""
+    return (*FILE_CARDS, *(check.card for check in CHECKS), *RESULT_CARDS)
+
+
+def check_fleet(
+    folder: Path,
+    *,
+    today: datetime.date,
+    only: Collection[str] = (),
+    workers: int = 1,
+    progress: Progress | None = None,
+) -> FleetResult:
+    """Check a yard's fleet: every hull, and every legal option set of every class.
+
+    Args:
+        folder: The yard's repository.
+        today: The day on which waivers are judged.
+        only: Ids of the hulls to check; empty for the whole fleet.
+        workers: How many processes study boats side by side; the result does not depend on it.
+        progress: Called with the number of boats studied and their total.
+
+    Raises:
+        FleetNotFoundError: If the folder holds no yard.
+        UsageError: If `only` names a hull that is not in the fleet.
+    """
+    with _collector_off():
+        files = read_yard(folder)
+        assembly = assemble(files)
+        catalogue, part_faults = _catalogue(files)
+        subjects = _chosen(assembly, files, only)
+        bench = _Bench(assembly, catalogue, _house(files), _adopted(files))
+        keys = list(dict.fromkeys(subject.key for subject in subjects))
+        if part_faults:
+            keys = []
+        studied = dict(zip(keys, _study_all(bench, keys, workers, progress), strict=True))
+        faults = [*files.faults, *assembly.faults, *part_faults]
+        return _Gatherer(files, assembly, subjects, studied, faults, today, only).result()
+
+
+@contextlib.contextmanager
+def _collector_off() -> Iterator[None]:
+    """Keep the garbage collector out: everything built here lives to the end of the run."""
+    was_on = gc.isenabled()
+    gc.disable()
+    try:
+        yield
+    finally:
+        if was_on:
+            gc.enable()
+
+
+def _catalogue(files: YardFiles) -> tuple[Catalogue, list[Fault]]:
+    faulty = files.faulty
+    if any(document.file in faulty for document in files.parts):
+        return {}, []  # told already; whatever rests on the parts was not assembled
+    return read_catalogue(files.parts)
+
+
+def _house(files: YardFiles) -> House:
+    data = files.yard.data if files.yard and isinstance(files.yard.data, dict) else {}
+    house = data.get("house", {}) if isinstance(data.get("house", {}), dict) else {}
+    critical = house.get("drop_critical", ())
+    return House(
+        drop_critical=tuple(critical) if isinstance(critical, list) else (),
+        next_smaller_awg=house.get("metric_sizes") == "next-smaller-awg",
+    )
+
+
+def _adopted(files: YardFiles) -> tuple[str, ...]:
+    data = files.yard.data if files.yard and isinstance(files.yard.data, dict) else {}
+    named = data.get("limit_sets", [])
+    return tuple(name for name in limit_set_ids() if isinstance(named, list) and name in named)
+
+
+def _chosen(assembly: Assembly, files: YardFiles, only: Collection[str]) -> list[Subject]:
+    if not only:
+        return assembly.subjects
+    hulls = {subject.id for subject in assembly.subjects if subject.is_hull}
+    written = {str(d.data["hull"]) for d in files.hulls if isinstance(d.data, dict) and "hull" in d.data}
+    for name in only:
+        if name not in hulls | written:
+            meant = nearest(name, hulls | written)
+            raise UsageError(f"there is no hull {name}" + (f"; did you mean {meant}?" if meant else ""))
+    return [subject for subject in assembly.subjects if subject.is_hull and subject.id in only]
+
+
+class _Bench:
+    """Hold what is needed to study any boat of the fleet."""
+
+    def __init__(self, assembly: Assembly, catalogue: Catalogue, house: House, adopted: tuple[str, ...]) -> None:
+        self._content = assembly.content
+        self._class_of = {subject.key: subject.class_id for subject in assembly.subjects}
+        self._catalogue = catalogue
+        self._house = house
+        self._adopted = adopted
+
+    def study(self, key: StudyKey) -> Studied:
+        """Build one boat, study it, and hold it against every limit set that it is judged by."""
+        boat, faults = build_boat(self._content[key], self._class_of[key], self._catalogue)
+        if boat is None:
+            return (), (), tuple(faults)
+        sets = _judged_by(boat, self._adopted)
+        limits = tuple(load_limit_set(use.id) for use in sets)
+        outcomes = run_checks(boat, limits, self._house)
+        return report_order(outcomes), sets, ()
+
+
+def run_checks(
+    boat: Boat, limits: tuple[LimitSet, ...], house: House, checks: Sequence[Check] = CHECKS
+) -> list[Outcome]:
+    """Hold one boat against limit sets; checks that rest on none run once."""
+    studies = Studies(boat)
+    if not limits:
+        return []
+    first = Case(studies, limits[0], limits, house)
+    outcomes: list[Outcome] = []
+    for check in checks:
+        for one in limits if check.is_per_set else limits[:1]:
+            outcomes += check.run(first.under(one))
+    return outcomes
+
+
+def _judged_by(boat: Boat, adopted: tuple[str, ...]) -> tuple[SetUse, ...]:
+    """Return the limit sets that bind a boat by its own facts, and those its yard adopts."""
+    uses: list[SetUse] = []
+    for name in limit_set_ids():
+        limits = load_limit_set(name)
+        petrol = [e.id for e in boat.engines if e.fuel == "petrol" and e.mounting != "outboard"]
+        if boat.generator_fuel == "petrol":
+            petrol.append("generator")
+        if limits.applies.binds_petrol_inboard and petrol:
+            why = f"binds: petrol engine aboard that is no outboard ({', '.join(petrol)})"
+        elif name in adopted:
+            why = "adopted by the yard"
+        else:
+            continue
+        uses.append(SetUse(name, limits.title, why, limits.from_memory_count, limits.caution))
+    return tuple(uses)
+
+
+def _study_all(bench: _Bench, keys: list[StudyKey], workers: int, progress: Progress | None) -> list[Studied]:
+    found: list[Studied] = []
+    for studied in _studies(bench, keys, workers):
+        found.append(studied)
+        if progress is not None:
+            progress(len(found), len(keys))
+    return found
+
+
+def _studies(bench: _Bench, keys: list[StudyKey], workers: int) -> Iterator[Studied]:
+    if workers <= 1 or len(keys) < FEWEST_FOR_WORKERS:
+        yield from map(bench.study, keys)
+        return
+    import multiprocessing
+    from concurrent.futures import ProcessPoolExecutor
+
+    # A forked worker has the assembled fleet already; elsewhere it is sent once to each.
+    method = "fork" if "fork" in multiprocessing.get_all_start_methods() else None
+    context = multiprocessing.get_context(method)
+    with ProcessPoolExecutor(workers, context, _enter_worker, (bench,)) as pool:
+        yield from pool.map(_study_in_worker, keys, chunksize=max(1, len(keys) // (workers * 4)))
+
+
+_bench_of_worker: _Bench | None = None
+"""Set once in each worker process, which has no other way to keep what its parent gave it."""
+
+
+def _enter_worker(bench: _Bench) -> None:
+    global _bench_of_worker
+    gc.disable()
+    _bench_of_worker = bench
+
+
+def _study_in_worker(key: StudyKey) -> Studied:
+    assert _bench_of_worker is not None
+    return _bench_of_worker.study(key)
+
+
+class _Gatherer:
+    """Bring studies, waivers and file faults together into one result."""
+
+    def __init__(
+        self,
+        files: YardFiles,
+        assembly: Assembly,
+        subjects: list[Subject],
+        studied: dict[StudyKey, Studied],
+        faults: list[Fault],
+        today: datetime.date,
+        only: Collection[str],
+    ) -> None:
+        self._files = files
+        self._assembly = assembly
+        self._studied = studied
+        self._today = today
+        self._only = only
+        self._faults = [*faults, *(fault for _, _, some in studied.values() for fault in some)]
+        self._subjects = [s for s in subjects if s.key in studied and not studied[s.key][2]]
+        self._lost = [s for s in subjects if s not in self._subjects]
+        self._cards = {card.id: card for card in FILE_CARDS}
+
+    def result(self) -> FleetResult:
+        """Return the result of the run."""
+        waivers = self._waivers()
+        alike: dict[StudyKey, list[str]] = {}
+        for subject in self._subjects:
+            alike.setdefault(subject.key, []).append(subject.id)
+        results: list[SubjectResult] = []
+        matched: set[str] = set()
+        hull_files = self._file_outcomes_of_hulls()
+        for subject in self._subjects:
+            outcomes, sets, _ = self._studied[subject.key]
+            design = self._assembly.classes[subject.class_id]
+            mine = [w for w in waivers if w.concerns(subject.id, subject.class_id)]
+            waived = apply_waivers(outcomes, mine, self._today)
+            matched |= waived.matched
+            own = [*waived.outcomes, *hull_files.get(subject.id, ()), *_behind(subject, design)]
+            own += [unmatched(w) for w in mine if w.hull and w.id not in waived.matched]
+            results.append(
+                SubjectResult(
+                    id=subject.id, is_hull=subject.is_hull, class_id=subject.class_id,
+                    class_name=str(design.base.data["class"].get("name", "")), revision=subject.revision,
+                    class_revision=design.revision, options=subject.options, status=subject.status,
+                    changes=subject.changes, study=alike[subject.key][0],
+                    alike=tuple(name for name in alike[subject.key] if name != subject.id), sets=sets,
+                    outcomes=report_order(own), accepted=waived.accepted,
+                )  # fmt: skip
+            )
+        return FleetResult(
+            yard=self._yard_name(),
+            tool_version=__version__,
+            subjects=tuple(results),
+            studies=tuple(
+                Study(names[0], self._studied[key][0], self._studied[key][1]) for key, names in alike.items()
+            ),
+            file_outcomes=self._fleet_outcomes(waivers, matched),
+            unstudied=self._unstudied(),
+        )
+
+    def _yard_name(self) -> str:
+        data = self._files.yard.data if self._files.yard else None
+        name = data.get("name", "") if isinstance(data, dict) else ""
+        return name if isinstance(name, str) else ""
+
+    def _waivers(self) -> list[Waiver]:
+        document = self._files.waivers
+        if document is None or document.file in self._files.faulty:
+            return []
+        hulls = {str(d.data.get("hull")) for d in self._files.hulls if isinstance(d.data, dict)}
+        waivers, faults = read_waivers(document, hulls, list(self._files.classes), [card.id for card in all_cards()])
+        self._faults += faults
+        return waivers
+
+    def _hull_of_file(self) -> dict[str, str]:
+        studied = {subject.id for subject in self._subjects if subject.is_hull}
+        named: dict[str, str] = {}
+        for document in self._files.hulls:
+            name = document.data.get("hull") if isinstance(document.data, dict) else None
+            if isinstance(name, str) and name in studied and name not in named.values():
+                named[document.file] = name
+        return named
+
+    def _file_outcomes_of_hulls(self) -> dict[str, list[Outcome]]:
+        """Return the file faults that belong to one hull that was studied all the same."""
+        owner = self._hull_of_file()
+        found: dict[str, list[Outcome]] = {}
+        for fault in sorted(set(self._faults), key=_fault_key):
+            if fault.at.file in owner:
+                found.setdefault(owner[fault.at.file], []).append(self._outcome(fault))
+        return found
+
+    def _fleet_outcomes(self, waivers: list[Waiver], matched: set[str]) -> tuple[Outcome, ...]:
+        owner = self._hull_of_file()
+        others = {document.file for document in self._files.hulls} if self._only else set()
+        lost_files = {s.at.file for s in self._lost}
+        outcomes = [
+            self._outcome(fault)
+            for fault in sorted(set(self._faults), key=_fault_key)
+            if fault.at.file not in owner and (fault.at.file not in others or fault.at.file in lost_files)
+        ]
+        if not self._only:
+            outcomes += [unmatched(w) for w in waivers if w.class_id and w.id not in matched]
+        outcomes += [
+            Outcome(verdict=Verdict.FINDING, check=NOT_STUDIED.id, level=Level.ERROR, part=name, at=NOWHERE,
+                    fault="could not be studied", remedy="mend the faults of its files first")
+            for name in self._unstudied()
+        ]  # fmt: skip
+        return report_order(outcomes)
+
+    def _unstudied(self) -> tuple[str, ...]:
+        lost = [f"hull {s.id}" if s.is_hull else f"option set {s.id}" for s in self._lost]
+        names = sorted({*self._assembly.unstudied, *lost})
+        if self._only:
+            names = [name for name in names if name.removeprefix("hull ") in self._only]
+        return tuple(names)
+
+    def _outcome(self, fault: Fault) -> Outcome:
+        card = self._cards[fault.check]
+        return Outcome(
+            verdict=Verdict.FINDING, check=card.id, level=card.level, part=fault.at.file, at=fault.at,
+            fault=fault.message, remedy=fault.remedy, inputs=(("fault", fault.message),),
+        )  # fmt: skip
+
+
+def _fault_key(fault: Fault) -> tuple[object, ...]:
+    return (fault.at, fault.check, fault.message, fault.remedy)
+
+
+def _behind(subject: Subject, design: ClassDesign) -> list[Outcome]:
+    """Return the finding that a hull is behind its class, if it is."""
+    if not subject.is_hull or subject.revision >= design.revision:
+        return []
+    missed = {n: row for n, row in sorted(design.revisions.items()) if n > subject.revision}
+    electrical = [n for n, (_, is_electrical) in missed.items() if is_electrical]
+    told = "; ".join(f"{n}: {what}" for n, (what, _) in missed.items())
+    level = Level.ERROR if electrical or not missed else Level.NOTE
+    outcome = Outcome(
+        verdict=Verdict.FINDING, check=CLASS_REVISION.id, level=level, part=subject.id, at=subject.at_revision,
+        fault=f"built to class revision {subject.revision}, the class is at {design.revision} ({told})",
+        remedy="retrofit it and raise its revision" if level is Level.ERROR else
+        "nothing electrical has changed since; raise its revision when the rest is done",
+        inputs=(("revision", str(subject.revision)), ("class", str(design.revision))),
+    )  # fmt: skip
+    return [replace(outcome, note="" if level is Level.ERROR else "nothing electrical changed")]
+
+

@@ -1,0 +1,45 @@
+"""Put outcomes in report order and give each finding its fingerprint."""
+
+from __future__ import annotations
+
+import hashlib
+import json
+import re
+from collections.abc import Iterable
+
+from checker.finding import Outcome
+
+FINGERPRINT_RECIPE = "1"
+"""Part of every fingerprint, so that a changed recipe shows as changed inputs, never as a match."""
+
+_NUMBER = re.compile(r"([0-9]+)")
+
+
+def fingerprint(outcome: Outcome) -> str:
+    """Return twelve hexadecimal digits made of the check, the part and the inputs of a finding.
+
+    Not of lines, wording, file names or order: a finding keeps its fingerprint when a file is
+    renamed or a neighbour is edited.
+    """
+    made_of = [FINGERPRINT_RECIPE, outcome.check, outcome.limit_set, outcome.part, [list(i) for i in outcome.inputs]]
+    text = json.dumps(made_of, ensure_ascii=True, separators=(",", ":"))
+    return hashlib.sha256(text.encode()).hexdigest()[:12]
+
+
+def natural(text: str) -> tuple[tuple[int, int, str], ...]:
+    """Return a sort key that puts P9 before P10."""
+    return tuple((1, int(piece), "") if piece.isdigit() else (0, 0, piece) for piece in _NUMBER.split(text) if piece)
+
+
+def report_order(outcomes: Iterable[Outcome]) -> tuple[Outcome, ...]:
+    """Sort: worst news first, then by place, check, part and limit set; passes by part."""
+    return tuple(sorted(outcomes, key=_key))
+
+
+def _key(outcome: Outcome) -> tuple[object, ...]:
+    if outcome.verdict.rank == 3:
+        return (3, 0, natural(outcome.circuit or outcome.part), natural(outcome.part), outcome.check, outcome.limit_set)
+    return (
+        outcome.verdict.rank, outcome.level.rank, outcome.at, outcome.check, natural(outcome.part),
+        outcome.limit_set, outcome.fault,
+    )  # fmt: skip

@@ -1,0 +1,105 @@
+"""Hold the result of a run: one study for each distinct boat, and every hull and option set with it."""
+
+from __future__ import annotations
+
+from collections import Counter
+from collections.abc import Iterable
+from dataclasses import dataclass
+
+from checker.finding import Level, Outcome, Span, Verdict
+
+
+@dataclass(frozen=True, slots=True)
+class SetUse:
+    """Tell a limit set that a boat is judged by, why, and how many of its figures are from memory."""
+
+    id: str
+    title: str
+    why: str
+    from_memory: int
+    caution: str
+
+
+@dataclass(frozen=True, slots=True)
+class Study:
+    """Hold what was found on one distinct boat, in report order, before any waiver.
+
+    `name` is the first subject that has this content.
+    """
+
+    name: str
+    outcomes: tuple[Outcome, ...]
+    sets: tuple[SetUse, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Acceptance:
+    """Tell the waiver that accepts a finding."""
+
+    waiver: str
+    reason: str
+    approved_by: str
+    expires: str
+    evidence: str
+    at: Span
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class SubjectResult:
+    """Hold the result of one hull or option set.
+
+    `outcomes` are the study's with waivers applied, then what is found of this subject alone,
+    in report order. `alike` are the other subjects with the same content.
+    """
+
+    id: str
+    is_hull: bool
+    class_id: str
+    class_name: str
+    revision: int
+    class_revision: int
+    options: tuple[str, ...]
+    status: str
+    changes: tuple[str, ...]
+    study: str
+    alike: tuple[str, ...]
+    sets: tuple[SetUse, ...]
+    outcomes: tuple[Outcome, ...]
+    accepted: dict[str, Acceptance]
+
+    @property
+    def open_errors(self) -> int:
+        """Count the findings at error level that no waiver accepts."""
+        return count_open_errors(self.outcomes)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class FleetResult:
+    """Hold everything a run found; every output renders this and judges nothing."""
+
+    yard: str
+    tool_version: str
+    subjects: tuple[SubjectResult, ...]
+    studies: tuple[Study, ...]
+    file_outcomes: tuple[Outcome, ...]
+    unstudied: tuple[str, ...]
+
+    @property
+    def open_errors(self) -> int:
+        """Count all open errors: each hull's and option set's, and those of files."""
+        return count_open_errors(self.file_outcomes) + sum(subject.open_errors for subject in self.subjects)
+
+    @property
+    def is_clean(self) -> bool:
+        """Tell whether nothing is open at error level and everything was studied."""
+        return self.open_errors == 0 and not self.unstudied
+
+
+def count_open_errors(outcomes: Iterable[Outcome]) -> int:
+    """Count findings at error level."""
+    return sum(o.verdict is Verdict.FINDING and o.level is Level.ERROR for o in outcomes)
+
+
+def tally(outcomes: Iterable[Outcome]) -> Counter[Verdict]:
+    """Count outcomes by verdict."""
+    return Counter(outcome.verdict for outcome in outcomes)
