@@ -76,6 +76,8 @@ def _check(options: argparse.Namespace) -> int:
     from checker.output.screen import screen_report
     from checker.pipeline import all_cards, check_fleet
 
+    if options.reports and options.only:
+        raise UsageError("--reports writes the reports of the whole fleet: leave out --only")
     try:
         # The only place that reads the clock.
         today = datetime.date.fromisoformat(options.today) if options.today else datetime.date.today()

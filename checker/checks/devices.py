@@ -12,8 +12,8 @@ from checker.checks.words import ampere, plain
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.limit_set import surge_s
 from checker.network.graph import EdgeKind
-from checker.network.states import live_edges
-from checker.network.walk import groups, neighbours, path_between, path_words
+from checker.network.states import live_edges, places
+from checker.network.walk import neighbours, path_between, path_words
 
 
 def _overcurrent(case: Case) -> Iterator[tuple[Device, Overcurrent]]:
@@ -155,9 +155,8 @@ def device_bypass(case: Case) -> Iterator[Outcome]:
     network = case.studies.network
     reported: dict[str, Outcome] = {}
     for state in case.studies.states.kept:
-        live = live_edges(network, state)
-        free = [i for i in live if network.edges[i].kind is not EdgeKind.DEVICE]
-        place = groups(len(network.posts), ((network.edges[i].a, network.edges[i].b) for i in free))
+        free = [i for i in live_edges(network, state) if network.edges[i].kind is not EdgeKind.DEVICE]
+        place = places(network, state, (EdgeKind.DEVICE,))
         for device, _ in _overcurrent(case):
             ends = [network.index[f"{device.id}.{post}"] for post in ("line", "load")]
             if place[ends[0]] != place[ends[1]]:

@@ -17,9 +17,8 @@ from checker.checks.roles import BANK, protection_exemption
 from checker.network.exposure import ExposureStudy
 from checker.network.graph import Edge, EdgeKind
 from checker.network.potentials import Potentials
-from checker.network.runs import Run, unprotected_runs
-from checker.network.states import SwitchState, live_edges
-from checker.network.walk import groups
+from checker.network.runs import HAS_LENGTH_OR_OPENS, Run, unprotected_runs
+from checker.network.states import SwitchState, places
 
 UNKNOWN_ALLOWED_A = 1e12
 """Stands for "finite" where the table has no row: only an unlimited feed is then a fault."""
@@ -99,10 +98,7 @@ class _State:
         self._runs = unprotected_runs(case.studies.network, potentials, study, allowed, exempt)
         # Pieces ahead of others: they are judged where their run ends.
         self._onward = {name for run in self._runs.values() if run.device for name in run.conductors[:-1]}
-        network = case.studies.network
-        edges = (network.edges[i] for i in live_edges(network, potentials.state))
-        zero_length = (EdgeKind.CONTACT, EdgeKind.JOINT, EdgeKind.SHUNT)
-        self._place = groups(len(network.posts), ((e.a, e.b) for e in edges if e.kind in zero_length))
+        self._place = places(case.studies.network, potentials.state, HAS_LENGTH_OR_OPENS)
 
     def feeding(self, edge: Edge) -> Feeding:
         """Return how one conductor stands."""

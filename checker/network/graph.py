@@ -12,6 +12,7 @@ import math
 from dataclasses import dataclass
 from enum import Enum
 from functools import cached_property
+from typing import Any
 
 from checker.boat.hull import Boat
 from checker.boat.parts import Battery, Load, Overcurrent, Shunt, Source, Switch
@@ -96,6 +97,11 @@ class Network:
     def index(self) -> dict[str, int]:
         """Return the number of each post."""
         return {post: number for number, post in enumerate(self.posts)}
+
+    @cached_property
+    def memo(self) -> dict[Any, Any]:
+        """Return what several studies of this graph reckon once, keyed by the reckoning and its state."""
+        return {}
 
     @cached_property
     def edges_of(self) -> dict[str, tuple[Edge, ...]]:

@@ -9,10 +9,11 @@ converter) fix a net only where no battery does.
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cached_property
 
 from checker.network.graph import BatteryTie, Network, SourceTie
-from checker.network.states import SwitchState, live_edges
-from checker.network.walk import groups, neighbours, path_between, path_words
+from checker.network.states import SwitchState, live_edges, places
+from checker.network.walk import neighbours, path_between, path_words
 
 SAME_V = 0.5
 """Two potentials closer than this are one nominal voltage: 6 V steps are the smallest aboard."""
@@ -28,7 +29,7 @@ class Conflict:
     path: tuple[str, ...]
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Potentials:
     """Hold the net of each post and its voltage above the reference.
 
@@ -56,38 +57,41 @@ class Potentials:
 
     def is_return(self, post: int) -> bool:
         """Tell whether a post is at the reference's potential."""
-        volts = self.above_reference(post)
-        return volts is not None and abs(volts) < SAME_V
+        return self.returns[post]
+
+    @cached_property
+    def returns(self) -> list[bool]:
+        """Return for each post whether it is at the reference's potential, shape (posts,)."""
+        island, level = self.island[self.reference], self.value_v[self.reference]
+        return [i == island and abs(v - level) < SAME_V for i, v in zip(self.island, self.value_v, strict=True)]
 
 
 def study_potentials(network: Network, state: SwitchState) -> Potentials:
     """Find nets, islands and voltages in one switch state."""
     live = live_edges(network, state)
-    size = len(network.posts)
-    net = groups(size, ((network.edges[i].a, network.edges[i].b) for i in live))
-    islands = _Islands(size)
-    for post in range(size):
-        islands.tie(post, net[post], 0.0)
+    net = places(network, state, ())
+    islands = _Islands()
     conflicts: list[Conflict] = []
     placed: list[BatteryTie] = []
     for battery in network.batteries:
-        known = islands.between(battery.pos, battery.neg)
-        if net[battery.pos] == net[battery.neg]:
+        pos, neg = net[battery.pos], net[battery.neg]
+        known = islands.between(pos, neg)
+        if pos == neg:
             conflicts.append(Conflict(battery.device, True, 0.0, _loop(network, live, placed, battery)))
         elif known is not None and abs(known - battery.voltage_v) >= SAME_V:
             conflicts.append(Conflict(battery.device, False, known, _loop(network, live, placed, battery)))
         else:
-            islands.tie(battery.pos, battery.neg, battery.voltage_v)
+            islands.tie(pos, neg, battery.voltage_v)
             placed.append(battery)
     for source in _held_last(network):
-        if islands.between(source.out, source.back) is None:
-            islands.tie(source.out, source.back, source.voltage_v)
-    roots = [islands.root(post) for post in range(size)]
+        if islands.between(net[source.out], net[source.back]) is None:
+            islands.tie(net[source.out], net[source.back], source.voltage_v)
+    roots = {number: islands.root(number) for number in set(net)}
     return Potentials(
         state=state,
         net=tuple(net),
-        island=tuple(root for root, _ in roots),
-        value_v=tuple(value for _, value in roots),
+        island=tuple(roots[number][0] for number in net),
+        value_v=tuple(roots[number][1] for number in net),
         reference=network.reference,
         conflicts=tuple(conflicts),
     )
@@ -125,24 +129,19 @@ def _loop(network: Network, live: list[int], placed: list[BatteryTie], battery: 
 
 
 class _Islands:
-    """Union-find whose links carry a voltage."""
+    """Union-find of nets whose links carry a voltage; few nets are ever linked, so that no path is shortened."""
 
-    def __init__(self, size: int) -> None:
-        self._parent = list(range(size))
-        self._above = [0.0] * size
+    def __init__(self) -> None:
+        self._parent: dict[int, int] = {}
+        self._above: dict[int, float] = {}
 
-    def root(self, post: int) -> tuple[int, float]:
-        """Return the root of a post and the post's voltage above it."""
-        trail: list[int] = []
-        while self._parent[post] != post:
-            trail.append(post)
-            post = self._parent[post]
+    def root(self, net: int) -> tuple[int, float]:
+        """Return the root of a net and the net's voltage above it."""
         total = 0.0
-        for step in reversed(trail):
-            total += self._above[step]
-            self._above[step] = total
-            self._parent[step] = post
-        return post, total if trail else 0.0
+        while net in self._parent:
+            total += self._above[net]
+            net = self._parent[net]
+        return net, total
 
     def between(self, first: int, second: int) -> float | None:
         """Return the voltage of the first above the second if they are tied."""
@@ -150,7 +149,7 @@ class _Islands:
         return volts_a - volts_b if root_a == root_b else None
 
     def tie(self, upper: int, lower: int, voltage_v: float) -> None:
-        """Say that the upper post stands `voltage_v` above the lower one; they must not be tied yet."""
+        """Say that the upper net stands `voltage_v` above the lower one; they must not be tied yet."""
         (root_a, volts_a), (root_b, volts_b) = self.root(upper), self.root(lower)
         if root_a != root_b:
             self._parent[root_a] = root_b

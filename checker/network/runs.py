@@ -15,8 +15,10 @@ from dataclasses import dataclass
 from checker.network.exposure import ExposureStudy
 from checker.network.graph import Edge, EdgeKind, Network
 from checker.network.potentials import Potentials
-from checker.network.states import live_edges
-from checker.network.walk import groups, path_words
+from checker.network.states import live_edges, places
+from checker.network.walk import path_words
+
+HAS_LENGTH_OR_OPENS = (EdgeKind.CONDUCTOR, EdgeKind.BOND, EdgeKind.DEVICE)
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,8 +69,7 @@ class _Walk:
     ) -> None:
         self._network = network
         edges = [network.edges[i] for i in live_edges(network, potentials.state)]
-        conducting = (EdgeKind.CONDUCTOR, EdgeKind.BOND, EdgeKind.DEVICE)
-        self._place = groups(len(network.posts), ((e.a, e.b) for e in edges if e.kind not in conducting))
+        self._place = places(network, potentials.state, HAS_LENGTH_OR_OPENS)
         self._device_at: dict[int, str] = {}
         self._leaving: dict[int, list[tuple[Edge, int]]] = {}
         entered: set[int] = set()

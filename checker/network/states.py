@@ -13,6 +13,7 @@ from dataclasses import dataclass
 from checker.boat.hull import Boat, SwitchRow
 from checker.boat.parts import Switch
 from checker.network.graph import EdgeKind, Network
+from checker.network.walk import groups
 
 MOST_STATES = 256
 
@@ -110,10 +111,27 @@ def _unlisted(boat: Boat, switches: dict[str, Switch]) -> list[str]:
 
 
 def live_edges(network: Network, state: SwitchState) -> list[int]:
-    """Return the indexes of the edges that conduct in a state."""
-    closed = {(part, network.index[f"{part}.{a}"], network.index[f"{part}.{b}"]) for part, a, b in state.closed}
-    return [
-        edge.index
-        for edge in network.edges
-        if edge.kind is not EdgeKind.CONTACT or (edge.part, edge.a, edge.b) in closed
-    ]
+    """Return the indexes of the edges that conduct in a state; not to be changed."""
+    key = ("live", state.closed)
+    if key not in network.memo:
+        closed = {(part, network.index[f"{part}.{a}"], network.index[f"{part}.{b}"]) for part, a, b in state.closed}
+        network.memo[key] = [
+            edge.index
+            for edge in network.edges
+            if edge.kind is not EdgeKind.CONTACT or (edge.part, edge.a, edge.b) in closed
+        ]
+    found: list[int] = network.memo[key]
+    return found
+
+
+def places(network: Network, state: SwitchState, apart: tuple[EdgeKind, ...]) -> list[int]:
+    """Return for each post the place it is at, shape (posts,): what no edge of the given kinds parts is one place.
+
+    Not to be changed.
+    """
+    key = ("places", state.closed, apart)
+    if key not in network.memo:
+        live = (network.edges[i] for i in live_edges(network, state))
+        network.memo[key] = groups(len(network.posts), ((e.a, e.b) for e in live if e.kind not in apart))
+    found: list[int] = network.memo[key]
+    return found

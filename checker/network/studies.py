@@ -13,9 +13,8 @@ from checker.network.graph import EdgeKind, Network, build_network
 from checker.network.metering import Metering, study_metering
 from checker.network.potentials import Potentials, study_potentials
 from checker.network.returns import ReturnExposure, study_returns
-from checker.network.states import States, SwitchState, live_edges, study_states
+from checker.network.states import States, SwitchState, places, study_states
 from checker.network.supply import SupplyWay, study_supply
-from checker.network.walk import groups
 
 
 class Studies:
@@ -78,10 +77,7 @@ class Studies:
     @cached_property
     def places(self) -> list[int]:
         """Return for each post the place it is at: posts with no conductor between them share one."""
-        network = self.network
-        live = (network.edges[i] for i in live_edges(network, self.usual.state))
-        conductors = (EdgeKind.CONDUCTOR, EdgeKind.BOND, EdgeKind.SHIELD)
-        return groups(len(network.posts), ((e.a, e.b) for e in live if e.kind not in conductors))
+        return places(self.network, self.usual.state, (EdgeKind.CONDUCTOR, EdgeKind.BOND, EdgeKind.SHIELD))
 
     @property
     def usual(self) -> Potentials:

@@ -1,4 +1,7 @@
-"""Write all reports of a run into a folder, and take away those of hulls that are no more."""
+"""Write all reports of a run into a folder, and take away those of hulls that are no more.
+
+Option sets are told in the fleet's report and in the JSON result; a file each is for what exists.
+"""
 
 from __future__ import annotations
 
@@ -11,31 +14,31 @@ from checker.output.json_report import json_report
 from checker.output.text import fleet_report, hull_report
 from checker.result.model import FleetResult
 
-FLEET_FILE, JSON_FILE, HULL_FOLDER, SET_FOLDER = "fleet.txt", "result.json", "hulls", "option-sets"
+FLEET_FILE, JSON_FILE, HULL_FOLDER = "fleet.txt", "result.json", "hulls"
 
 
 def report_files(result: FleetResult, cards: Mapping[str, Card]) -> dict[str, str]:
     """Return the text of every report by its name under the folder."""
     files = {FLEET_FILE: fleet_report(result, cards), JSON_FILE: json_report(result, cards)}
     for subject in result.subjects:
-        folder = HULL_FOLDER if subject.is_hull else SET_FOLDER
-        files[f"{folder}/{subject.id.replace(' + ', '+')}.txt"] = hull_report(subject, cards)
+        if subject.is_hull:
+            files[f"{HULL_FOLDER}/{subject.id}.txt"] = hull_report(subject, cards)
     return files
 
 
 def write_reports(result: FleetResult, cards: Mapping[str, Card], folder: Path) -> int:
-    """Write the reports; return how many. Reports of hulls and option sets that are gone are removed.
+    """Write the reports; return how many. Reports of hulls that are gone are removed.
 
     Raises:
         UsageError: If the folder cannot be written.
     """
     files = report_files(result, cards)
     try:
-        for sub in (HULL_FOLDER, SET_FOLDER):
-            (folder / sub).mkdir(parents=True, exist_ok=True)
-            for old in sorted((folder / sub).glob("*.txt")):
-                if f"{sub}/{old.name}" not in files:
-                    old.unlink()
+        hulls = folder / HULL_FOLDER
+        hulls.mkdir(parents=True, exist_ok=True)
+        for old in sorted(hulls.glob("*.txt")):
+            if f"{HULL_FOLDER}/{old.name}" not in files:
+                old.unlink()
         for name, text in sorted(files.items()):
             (folder / name).write_bytes(text.encode("utf-8"))
     except OSError as error:

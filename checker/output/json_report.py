@@ -82,12 +82,37 @@ def _study(study: Study) -> dict[str, Any]:
     return {
         "name": study.name,
         "limit_sets": [_set_use(use) for use in study.sets],
-        "outcomes": [_Line(_outcome(outcome)) for outcome in study.outcomes],
+        "found": [_Line(_outcome(o)) for o in study.outcomes if o.verdict is not Verdict.PASSED],
+        "passed": _passes(study),
     }
 
 
+def _passes(study: Study) -> list[dict[str, Any]]:
+    """Return the passes by check, limit set and quantity; a place is [value, limit, headroom], or a note."""
+    groups: dict[tuple[str, str, str, str, bool], dict[str, Any]] = {}
+    for outcome in study.outcomes:
+        if outcome.verdict is not Verdict.PASSED:
+            continue
+        measure = outcome.measure
+        if measure is None:
+            groups.setdefault((outcome.check, outcome.limit_set, "", "", False), {})[outcome.part] = outcome.note
+        else:
+            key = (outcome.check, outcome.limit_set, measure.quantity, measure.unit or "fraction", measure.at_least)
+            figures = [_number(x) for x in (measure.value, measure.limit, measure.headroom_fraction)]
+            groups.setdefault(key, {})[outcome.part] = figures
+    return [
+        {
+            "check": check,
+            "limit_set": limit_set,
+            **({"quantity": quantity, "unit": unit, "sense": "at least" if at_least else "at most"} if unit else {}),
+            "places": places,
+        }
+        for (check, limit_set, quantity, unit, at_least), places in sorted(groups.items())
+    ]
+
+
 def _outcome(outcome: Outcome) -> dict[str, Any]:
-    """Return an outcome's facts; empty ones are left out."""
+    """Return the facts of an outcome that is no pass; empty ones are left out."""
     facts: dict[str, Any] = {"verdict": outcome.verdict.value, "check": outcome.check, "part": outcome.part}
     if outcome.limit_set:
         facts["limit_set"] = outcome.limit_set
@@ -98,8 +123,6 @@ def _outcome(outcome: Outcome) -> dict[str, Any]:
         facts |= {"quantity": measure.quantity, "value": _number(measure.value), "limit": _number(measure.limit),
                   "unit": measure.unit or "fraction", "sense": "at least" if measure.at_least else "at most",
                   "headroom": _number(measure.headroom_fraction)}  # fmt: skip
-    if outcome.verdict is Verdict.PASSED:
-        return facts | ({"note": outcome.note} if outcome.note and measure is None else {})
     facts |= {"level": outcome.level.value, "fault": outcome.fault}
     if outcome.at.file:
         facts |= {"file": outcome.at.file, "line": outcome.at.line, "column": outcome.at.column}
@@ -134,7 +157,7 @@ def _written(value: Any, depth: int) -> str:
     pad, end = "  " * (depth + 1), "  " * depth
     if isinstance(value, list):
         if not any(isinstance(item, (dict, list)) for item in value):
-            return _compact(value)
+            return _compact(value)  # figures of one place, or a path
         return "[\n" + ",\n".join(pad + _written(item, depth + 1) for item in value) + f"\n{end}]"
     rows = (f"{pad}{_compact(key)}: {_written(item, depth + 1)}" for key, item in value.items())
     return "{\n" + ",\n".join(rows) + f"\n{end}}}"

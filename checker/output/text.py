@@ -100,18 +100,22 @@ def _exemptions(passes: list[Outcome]) -> Iterator[str]:
 
 
 def _looked_at(passes: list[Outcome]) -> Iterator[str]:
-    """Count the passes that have no figure, by check."""
-    counts = Counter((o.check, o.limit_set) for o in passes if o.measure is None)
-    yield from ("", "passed without a figure, by check")
+    """Count the passes without headroom to tell: those with no figure, and those on a row of sizes."""
+    counts = Counter((o.check, o.limit_set) for o in passes if not _has_headroom(o))
+    yield from ("", "passed without headroom to tell, by check")
     for (check, limit_set), number in sorted(counts.items()):
         yield f"  {check}{' ' + limit_set if limit_set else ''}: {number}"
+
+
+def _has_headroom(outcome: Outcome) -> bool:
+    return outcome.measure is not None and not outcome.measure.is_stepped
 
 
 def _measured(passes: list[Outcome]) -> Iterator[str]:
     """Print every measured pass: part, check, value of limit, headroom."""
     yield from ("", "passed with headroom, by part")
     for outcome in passes:
-        if outcome.measure is not None:
+        if _has_headroom(outcome):
             limit_set = f" {outcome.limit_set}" if outcome.limit_set else ""
             yield f"  {flat(outcome.part)} {outcome.check}{limit_set}: {measure_words(outcome)}"
 

@@ -37,18 +37,48 @@ def load_schema(name: str) -> dict[str, Any]:
 
 
 @cache
-def _validator(kind: str) -> Any:
-    # Imported here: these take longer to load than the rest of the program together, and
-    # `fairloom --version` must not wait for them.
-    from jsonschema import Draft202012Validator
-    from referencing import Registry
-    from referencing.jsonschema import DRAFT202012
+def self_contained(name: str) -> dict[str, Any]:
+    """Return a schema with every `$ref` replaced by what it refers to.
 
-    registry: Any = Registry()
-    for file in sorted(schema_folder().glob("*.json")):
-        schema = load_schema(file.stem)
-        registry = registry.with_resource(schema["$id"], DRAFT202012.create_resource(schema))
-    return Draft202012Validator(load_schema(kind), registry=registry)
+    The words beside a reference win over those of its target. Following references while
+    validating takes longer than all the rest; our schemas refer in no circle.
+    """
+    filled = _filled(load_schema(name), name, ())
+    assert isinstance(filled, dict)
+    return filled
+
+
+def _filled(here: Any, file: str, trail: tuple[str, ...]) -> Any:
+    if isinstance(here, list):
+        return [_filled(item, file, trail) for item in here]
+    if not isinstance(here, dict):
+        return here
+    rest = {key: _filled(value, file, trail) for key, value in here.items() if key not in ("$ref", "$defs")}
+    if "$ref" not in here:
+        return rest
+    other, _, pointer = here["$ref"].partition("#")
+    target = other.removesuffix(".json") or file
+    step_key = f"{target}#{pointer}"
+    if step_key in trail:
+        raise ValueError(f"schema {file} refers to itself by {here['$ref']}")
+    found = _pointed(target, pointer, (*trail, step_key))
+    return {**found, **rest}
+
+
+def _pointed(name: str, pointer: str, trail: tuple[str, ...]) -> Any:
+    here: Any = load_schema(name)
+    for step in filter(None, pointer.split("/")):
+        here = here[step]
+    return _filled(here, name, trail)
+
+
+@cache
+def _validator(kind: str) -> Any:
+    # Imported here: it takes longer to load than the rest of the program together, and
+    # `fairloom --version` must not wait for it.
+    from jsonschema import Draft202012Validator
+
+    return Draft202012Validator(self_contained(kind))
 
 
 def schema_faults(document: Document, kind: str) -> list[Fault]:
@@ -108,22 +138,7 @@ def _known_fields(schema: Any) -> set[str]:
         known |= set(here.get("properties", ()))
         waiting += [here.get(key) for key in ("then", "else")]
         waiting += [part for key in ("allOf", "anyOf", "oneOf") for part in here.get(key, ())]
-        if "$ref" in here:
-            waiting.append(_resolved(here["$ref"]))
     return known
-
-
-def _resolved(reference: str) -> Any:
-    """Follow a `$ref` inside our schemas; only the last name matters, names are unique."""
-    file, _, pointer = reference.partition("#")
-    names = [file.removesuffix(".json")] if file else ["class", "parts", "changes", "quantity"]
-    for name in names:
-        here: Any = load_schema(name)
-        for step in pointer.strip("/").split("/"):
-            here = here.get(step) if isinstance(here, dict) and step else here
-        if isinstance(here, dict):
-            return here
-    return {}
 
 
 def _missing_fields(document: Document, path: Path, error: Any) -> Iterator[Fault]:
@@ -136,7 +151,7 @@ def _missing_fields(document: Document, path: Path, error: Any) -> Iterator[Faul
 
 def _example_of(schema: Any, name: str) -> str:
     field = schema.get("properties", {}).get(name, {}) if isinstance(schema, dict) else {}
-    examples = field.get("examples") or _resolved(field.get("$ref", "")).get("examples")
+    examples = field.get("examples")
     return f", e.g. `{name}: {examples[0]}`" if examples and not isinstance(examples[0], (dict, list)) else ""
 
 

@@ -6,8 +6,9 @@ import hashlib
 import json
 import re
 from collections.abc import Iterable
+from functools import lru_cache
 
-from checker.finding import Outcome
+from checker.finding import Outcome, Verdict
 
 FINGERPRINT_RECIPE = "1"
 """Part of every fingerprint, so that a changed recipe shows as changed inputs, never as a match."""
@@ -26,6 +27,7 @@ def fingerprint(outcome: Outcome) -> str:
     return hashlib.sha256(text.encode()).hexdigest()[:12]
 
 
+@lru_cache(maxsize=50_000)
 def natural(text: str) -> tuple[tuple[int, int, str], ...]:
     """Return a sort key that puts P9 before P10."""
     return tuple((1, int(piece), "") if piece.isdigit() else (0, 0, piece) for piece in _NUMBER.split(text) if piece)
@@ -33,12 +35,18 @@ def natural(text: str) -> tuple[tuple[int, int, str], ...]:
 
 def report_order(outcomes: Iterable[Outcome]) -> tuple[Outcome, ...]:
     """Sort: worst news first, then by place, check, part and limit set; passes by part."""
-    return tuple(sorted(outcomes, key=_key))
+    news: list[Outcome] = []
+    passes: list[Outcome] = []
+    for outcome in outcomes:
+        (passes if outcome.verdict is Verdict.PASSED else news).append(outcome)
+    return (*sorted(news, key=_news_key), *sorted(passes, key=_pass_key))
 
 
-def _key(outcome: Outcome) -> tuple[object, ...]:
-    if outcome.verdict.rank == 3:
-        return (3, 0, natural(outcome.circuit or outcome.part), natural(outcome.part), outcome.check, outcome.limit_set)
+def _pass_key(outcome: Outcome) -> tuple[object, ...]:
+    return (natural(outcome.circuit or outcome.part), natural(outcome.part), outcome.check, outcome.limit_set)
+
+
+def _news_key(outcome: Outcome) -> tuple[object, ...]:
     return (
         outcome.verdict.rank, outcome.level.rank, outcome.at, outcome.check, natural(outcome.part),
         outcome.limit_set, outcome.fault,
