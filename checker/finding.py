@@ -76,6 +76,7 @@ class Measure:
 
     `is_stepped` marks what is chosen from a row of sizes, where standing at the limit is
     the ordinary case and no thin margin: a gauge, a rating, a class of insulation.
+    `shown_in` is the unit that the yard wrote, where it is another: "ft" for a length in m.
     """
 
     quantity: str
@@ -84,6 +85,7 @@ class Measure:
     unit: str
     at_least: bool = False
     is_stepped: bool = False
+    shown_in: str = ""
 
     @property
     def holds(self) -> bool:

@@ -52,8 +52,8 @@ def awg_number(name: str) -> int:
 
 def awg_area_mm2(name: str) -> float:
     """Return the copper area of a gauge, mm². Citation: ASTM B258, d = 0.005 in * 92^((36-n)/39)."""
-    diameter_mm = 0.005 * 92.0 ** ((36 - awg_number(name)) / 39) * METRE_PER_INCH * 1000
-    return math.pi / 4 * diameter_mm**2
+    diameter_mm: float = 0.005 * 92.0 ** ((36 - awg_number(name)) / 39) * METRE_PER_INCH * 1000
+    return math.pi / 4 * diameter_mm * diameter_mm
 
 
 def awg_text(name: str) -> str:

@@ -25,18 +25,23 @@ UNKNOWN_ALLOWED_A = 1e12
 
 
 class Kind(Enum):
-    """Say how a conductor stands to its feeds, the worst last."""
+    """Say how a conductor stands to its feeds; the first figure of the value is how grave that is."""
 
-    EXEMPT = 0
-    PROTECTED = 1
-    SHORT = 2  # ahead of a device, near enough
-    NO_FIGURE = 3
-    NO_REASON = 4  # near enough only if the reason were written
-    RATING = 5
-    STEP = 6
-    DOUBLE = 7
-    FAR = 8
-    OPEN = 9
+    EXEMPT = (0, 0)
+    PROTECTED = (1, 0)
+    SHORT = (1, 1)  # ahead of a device, near enough
+    NO_FIGURE = (2, 0)
+    NO_REASON = (2, 1)  # near enough only if the reason were written
+    RATING = (3, 0)
+    STEP = (3, 1)
+    DOUBLE = (3, 2)
+    FAR = (4, 0)
+    OPEN = (4, 1)
+
+    @property
+    def gravity(self) -> int:
+        """Return 3 or more for a fault."""
+        return self.value[0]
 
 
 @dataclass(frozen=True, slots=True)
@@ -80,8 +85,11 @@ def _feedings(case: Case) -> list[Feeding]:
     return [worst[part] for part in sorted(worst)]
 
 
-def _rank(feeding: Feeding) -> tuple[int, float, float]:
-    return (feeding.kind.value, feeding.run.length_m if feeding.run else 0.0, feeding.reaching_a)
+def _rank(feeding: Feeding) -> tuple[object, ...]:
+    """Order the verdicts of several states: a fault of normal operation is told before a worse abnormal one."""
+    length_m = feeding.run.length_m if feeding.run else 0.0
+    is_normal_fault = feeding.kind.gravity >= 3 and feeding.state.is_normal
+    return (feeding.kind.gravity, is_normal_fault, feeding.kind.value, length_m, feeding.reaching_a)
 
 
 class _State:

@@ -160,7 +160,7 @@ def _judge_exit(case: Case, conductor: Conductor, place: Place, bare_m: float) -
             inputs=(*_facts(conductor), ("bare tail", short_length(bare_m))),
         )
 
-    return sheath_exit.judge(case, place, Measure("bare length", bare_m, most_m, "m"), told)
+    return sheath_exit.judge(case, place, Measure("bare length", bare_m, most_m, "m", shown_in=conductor.length_unit), told)
 
 
 @check(

@@ -8,7 +8,7 @@ from checker.boat.hull import Conductor
 from checker.boat.parts import Overcurrent
 from checker.checks.check import Case, Place, Told, at_conductor, check
 from checker.checks.feeding import Feeding, Kind, feedings
-from checker.checks.remedy import highest_rating, smallest_gauge_words
+from checker.checks.remedy import highest_rating, smallest_gauge, smallest_gauge_words, together
 from checker.checks.roles import protection_exemption, role_holds
 from checker.checks.words import ampere, short_length
 from checker.finding import Basis, Level, Measure, Outcome
@@ -120,7 +120,10 @@ def protection_distance(case: Case) -> Iterator[Outcome]:
             fault = f"{short_length(run.length_m)} ahead of {run.device} is allowed only where nearer is impractical"
             yield protection_distance.not_assessed(case, place, fault, "place_reason")
         elif feeding.kind in (Kind.SHORT, Kind.FAR) and run is not None and run.device:
-            measure = Measure("length ahead of the device", run.length_m, feeding.limit_m, "m")
+            measure = Measure(
+                "length ahead of the device", run.length_m, feeding.limit_m, "m",
+                shown_in=feeding.conductor.length_unit,
+            )  # fmt: skip
             yield protection_distance.judge(
                 case, place, measure, lambda f=feeding: _told_far(case, f), note=f"{run.origin} to {run.device}"  # type: ignore[misc]
             )  # fmt: skip
@@ -223,16 +226,23 @@ def _told_rating(case: Case, feeding: Feeding) -> Told:
         Kind.STEP: f"{conductor.size.text} steps down behind {_sum(feeding)} with no device at the step, but {bears}",
         Kind.DOUBLE: f"{_sum(feeding)} reach {conductor.size.text} together, which {bears}",
     }.get(feeding.kind, f"{_sum(feeding)} protects {conductor.size.text}, which {bears}")
-    offers = [smallest_gauge_words(case, conductor)]
+    offers: list[str] = []
+    run = feeding.run
+    if run is not None and run.device:
+        where += f"; the next device {run.device} stands {short_length(run.length_m)} along"
+        offers.append(f"bring {run.device} to within {short_length(feeding.limit_m)} of {run.origin}")
     device = feeding.terms[0][0] if len(feeding.terms) == 1 else ""
     if device in case.boat.devices and feeding.kind is Kind.RATING:
         rating = highest_rating(case, device)
         if rating is not None:
             offers.append(f"fit {device} at {ampere(rating)} or less")
-    if feeding.kind is Kind.STEP:
+    if feeding.kind is Kind.STEP and not (run is not None and run.device):
         offers.append(f"fit a device of at most {ampere(feeding.allowed_a)} at the step")
     if feeding.kind is Kind.DOUBLE:
         offers.append("let one device feed it at a time, or put one device ahead of both")
+    size = smallest_gauge(case, together(case, conductor))
+    if size is not None or not offers:
+        offers.insert(0, smallest_gauge_words(case, conductor))
     return Told(where, ", or ".join(offers), feeding.run.path if feeding.run else (), _inputs(feeding))
 
 

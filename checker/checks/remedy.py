@@ -9,7 +9,7 @@ from checker.boat.parts import Overcurrent
 from checker.checks.check import Case
 from checker.checks.drops import circuit_drop, circuits_through, drop_limit
 from checker.checks.roles import continuous_a, exempt_as, size_exemption
-from checker.limits.limit_set import standard_ratings
+from checker.limits.limit_set import metric_sizes, standard_ratings
 from checker.units import Size, awg_area_mm2, awg_size
 
 
@@ -22,15 +22,18 @@ def together(case: Case, conductor: Conductor) -> tuple[str, ...]:
 
 
 def smallest_gauge(case: Case, names: tuple[str, ...], *, also_drop_of: str = "") -> Size | None:
-    """Return the smallest gauge at which these conductors pass every check of size, or None.
+    """Return the smallest size at which these conductors pass every check of size, or None.
+
+    It is taken from the gauges of the table, or from the metric sizes where the yard wrote those.
 
     Args:
         case: The boat; all its limit sets must be satisfied.
         names: The conductors that change together.
         also_drop_of: A circuit whose voltage drop must be kept too.
     """
-    gauges = [awg_size(name) for name in case.limits.ampacity.sizes]
-    return next((size for size in gauges if _passes(case, names, size, also_drop_of)), None)
+    is_metric = all(case.boat.conductors[name].size.awg is None for name in names)
+    sizes = metric_sizes() if is_metric else tuple(awg_size(name) for name in case.limits.ampacity.sizes)
+    return next((size for size in sizes if _passes(case, names, size, also_drop_of)), None)
 
 
 def smallest_gauge_words(case: Case, conductor: Conductor) -> str:

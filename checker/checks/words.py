@@ -35,12 +35,19 @@ def percent(fraction: float) -> str:
 
 
 def measured(measure: Measure) -> tuple[str, str]:
-    """Print value and limit with the same digits, and with more where they would look equal but are not."""
-    for decimals in (2, 3, 4, 6, 9):
-        value, limit = (_with_unit(x, measure.unit, decimals) for x in (measure.value, measure.limit))
+    """Print value and limit with the same digits, and with more where they would look equal but are not.
+
+    In the yard's unit where that is another; a length in feet and inches is printed in inches.
+    """
+    unit, factor = ("in", inch_from_metre(1.0)) if measure.shown_in == "ft" else (measure.unit, 1.0)
+    for decimals in (_DECIMALS.get(unit, 2), 3, 4, 6, 9):
+        value, limit = (_with_unit(x * factor, unit, decimals) for x in (measure.value, measure.limit))
         if value != limit or measure.value == measure.limit:
             break
     return value, limit
+
+
+_DECIMALS = {"m": 3, "in": 1}
 
 
 def _with_unit(value: float, unit: str, decimals: int) -> str:
@@ -48,5 +55,5 @@ def _with_unit(value: float, unit: str, decimals: int) -> str:
         return "unlimited"
     if unit == "":
         return f"{value * 100:.{decimals}f} %"
-    text = f"{value:.{decimals}f}".rstrip("0").rstrip(".") if decimals == 2 else f"{value:.{decimals}f}"
-    return f"{text} {unit}"
+    text = f"{value:.{decimals}f}"
+    return f"{text.rstrip('0').rstrip('.') if decimals == 2 else text} {unit}"

@@ -37,6 +37,7 @@ from checker.limits.rules import (
     SizeExemptions,
 )
 from checker.limits.table_file import TABLES, Table, common_table, read_table
+from checker.units import Size
 
 __all__ = [
     "LIMIT_SET_IDS",
@@ -65,6 +66,7 @@ __all__ = [
     "SizeExemptions",
     "limit_set_ids",
     "load_limit_set",
+    "metric_sizes",
     "read_limit_set",
     "standard_ratings",
     "standard_ratings_citations",
@@ -223,6 +225,14 @@ def thin_margin_fraction() -> float:
 def thin_margin_citation() -> Citation:
     """Return where the thin margin was taken from."""
     return common_table("thin_margin").citation()
+
+
+@cache
+def metric_sizes() -> tuple[Size, ...]:
+    """Return the metric sizes that cable is made in, small to large."""
+    table = common_table("metric_sizes")
+    table.expect(("citation", "sizes_mm2"))
+    return tuple(Size(f"{area_mm2:g} mm2", area_mm2) for area_mm2 in table.numbers("sizes_mm2"))
 
 
 @cache

@@ -14,6 +14,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass, field
+from typing import Any
 
 from checker.network.graph import Edge, EdgeKind, Network
 from checker.network.potentials import Potentials
@@ -255,7 +256,7 @@ def max_flow(feeds: dict[int, float], limits: list[tuple[int, int, float]], sink
         return own
     import networkx as nx  # 0.1 s to load, and few boats have a loop with a device in it
 
-    graph = nx.DiGraph()
+    graph: Any = nx.DiGraph()
     for node, amount in feeds.items():
         if node != sink and amount > 0:
             graph.add_edge("sources", node, **({} if math.isinf(amount) else {"capacity": amount}))

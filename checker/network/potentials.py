@@ -109,7 +109,7 @@ def _loop(network: Network, live: list[int], placed: list[BatteryTie], battery: 
     if path is not None:
         return path_words(network, battery.pos, path)
     # The loop passes through other batteries: go from one to the next.
-    steps = {battery.pos: (network.posts[battery.pos],)}
+    steps: dict[int, tuple[str, ...]] = {battery.pos: (network.posts[battery.pos],)}
     waiting = [battery.pos]
     used: set[str] = set()
     while waiting:

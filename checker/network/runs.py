@@ -114,9 +114,10 @@ class _Walk:
         is_battery = origin in self._battery_places
         found: list[tuple[Edge, Run]] = []
         done: set[int] = set()
-        waiting: list[tuple[float, int, tuple[Edge, ...]]] = [(0.0, origin, ())]
+        # The count parts two conductors side by side of one length, which cannot be ordered themselves.
+        waiting: list[tuple[float, int, int, tuple[Edge, ...]]] = [(0.0, origin, 0, ())]
         while waiting:
-            length_m, place, path = heapq.heappop(waiting)
+            length_m, place, _, path = heapq.heappop(waiting)
             if place in done:
                 continue
             done.add(place)
@@ -126,7 +127,7 @@ class _Walk:
                 total_m = length_m + edge.length_m
                 found.append((edge, self._run(start, is_battery, trail, total_m, self._device_at.get(far, ""))))
                 if far not in done:
-                    heapq.heappush(waiting, (total_m, far, trail))
+                    heapq.heappush(waiting, (total_m, far, len(found), trail))
         return found
 
     def _run(self, start: int, is_battery: bool, trail: tuple[Edge, ...], length_m: float, device: str) -> Run:

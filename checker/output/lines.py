@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 
 from checker.checks.check import is_thin
 from checker.checks.words import measured
@@ -35,38 +35,67 @@ def measure_words(outcome: Outcome) -> str:
     return f"{words}, {headroom}" if headroom else words
 
 
-def finding_lines(outcome: Outcome, card: Card, who: str, acceptance: Acceptance | None = None) -> Iterator[str]:
-    """Print one finding, accepted finding or place not assessed as a block of lines."""
+def same_fault(outcome: Outcome) -> tuple[object, ...]:
+    """Return what makes outcomes under several limit sets one fault to a reader."""
+    return (outcome.verdict, outcome.check, outcome.part, outcome.at, outcome.missing, outcome.state)
+
+
+def finding_lines(
+    outcomes: Sequence[Outcome], card: Card, who: str, acceptances: Mapping[str, Acceptance]
+) -> Iterator[str]:
+    """Print one fault as a block of lines: a finding, an accepted finding or a place not assessed.
+
+    Args:
+        outcomes: The same fault under each limit set that finds it; the first is told in full.
+        card: Of the check.
+        who: The hulls and option sets it is on, or nothing.
+        acceptances: The waivers by fingerprint.
+    """
+    first = outcomes[0]
     word = {
-        Verdict.FINDING: outcome.level.value,
-        Verdict.ACCEPTED: f"accepted {outcome.level.value}",
+        Verdict.FINDING: first.level.value,
+        Verdict.ACCEPTED: f"accepted {first.level.value}",
         Verdict.NOT_ASSESSED: "not assessed",
-    }[outcome.verdict]
-    subject = outcome.part if outcome.circuit in ("", outcome.part) else f"{outcome.part} of {outcome.circuit}"
-    yield f"{word}: {flat(subject)}: {flat(outcome.fault)} [{outcome.check}]"
+    }[first.verdict]
+    subject = first.part if first.circuit in ("", first.part) else f"{first.part} of {first.circuit}"
+    yield f"{word}: {flat(subject)}: {flat(first.fault)} [{first.check}]"
     if who:
         yield f"  on: {who}"
-    if outcome.at.file:
-        yield f"  at: {flat(str(outcome.at))}"
-    if outcome.measure is not None:
-        yield f"  measured: {measure_words(outcome)}"
-    if outcome.missing:
-        yield f"  fill in: {flat(outcome.missing)}"
-    if outcome.remedy:
-        yield f"  remedy: {flat(outcome.remedy)}"
+    if first.at.file:
+        yield f"  at: {flat(str(first.at))}"
+    for outcome in outcomes:
+        yield from _limit_lines(outcome, len(outcomes) > 1)
+    for missing in dict.fromkeys(o.missing for o in outcomes if o.missing):
+        yield f"  fill in: {flat(missing)}"
+    for remedy in dict.fromkeys(o.remedy for o in outcomes if o.remedy):
+        yield f"  remedy: {flat(remedy)}"
     yield f"  why: {card.why}"
-    yield f"  rests on: {outcome.limit_set + '; ' if outcome.limit_set else ''}{card.rests_on}"
-    if outcome.state:
-        yield f"  state: {flat(outcome.state)}"
-    if outcome.path:
-        yield f"  path: {shown_path(outcome.path)}"
-    if card.can_be_waived and outcome.verdict is not Verdict.NOT_ASSESSED:
-        yield f"  fingerprint: {fingerprint(outcome)}"
-    if acceptance is not None:
-        yield f"  accepted by: {flat(acceptance.approved_by)}, until {acceptance.expires} [{acceptance.waiver}]"
-        yield f"  reason: {flat(acceptance.reason)}"
-        if acceptance.evidence:
-            yield f"  evidence: {flat(acceptance.evidence)}"
+    sets = " and ".join(outcome.limit_set for outcome in outcomes if outcome.limit_set)
+    yield f"  rests on: {sets}{'; ' if sets else ''}{card.rests_on}"
+    if first.state:
+        yield f"  state: {flat(first.state)}"
+    if first.path:
+        yield f"  path: {shown_path(first.path)}"
+    if card.can_be_waived and first.verdict is not Verdict.NOT_ASSESSED:
+        for outcome in outcomes:
+            under = f" ({outcome.limit_set})" if len(outcomes) > 1 else ""
+            yield f"  fingerprint: {fingerprint(outcome)}{under}"
+    for outcome in outcomes:
+        yield from _acceptance_lines(acceptances.get(fingerprint(outcome)))
+
+
+def _limit_lines(outcome: Outcome, is_one_of_several: bool) -> Iterator[str]:
+    if outcome.measure is not None:
+        yield f"  {f'under {outcome.limit_set}' if is_one_of_several else 'measured'}: {measure_words(outcome)}"
+
+
+def _acceptance_lines(acceptance: Acceptance | None) -> Iterator[str]:
+    if acceptance is None:
+        return
+    yield f"  accepted by: {flat(acceptance.approved_by)}, until {acceptance.expires} [{acceptance.waiver}]"
+    yield f"  reason: {flat(acceptance.reason)}"
+    if acceptance.evidence:
+        yield f"  evidence: {flat(acceptance.evidence)}"
 
 
 def shown_path(path: Iterable[str]) -> str:

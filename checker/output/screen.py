@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
 
-from checker.finding import Card, Level, Outcome, Verdict
+from checker.finding import Card, Level, Verdict
 from checker.output.lines import finding_lines
 from checker.output.text import CAUTION, fleet_totals, fleet_verdict, grouped, summary_lines
 from checker.result.model import FleetResult
@@ -20,13 +20,10 @@ def screen_report(result: FleetResult, cards: Mapping[str, Card], *, colour: boo
 
 
 def _lines(result: FleetResult, cards: Mapping[str, Card]) -> Iterator[str]:
-    open_ones = list(grouped(result, Verdict.FINDING))
-    for outcome, who, acceptance in open_ones:
-        yield from finding_lines(outcome, cards[outcome.check], who, acceptance)
-        yield ""
-    for outcome, who, acceptance in grouped(result, Verdict.ACCEPTED):
-        yield from finding_lines(outcome, cards[outcome.check], who, acceptance)
-        yield ""
+    for verdict in (Verdict.FINDING, Verdict.ACCEPTED):
+        for block in grouped(result, verdict):
+            yield from finding_lines(block.outcomes, cards[block.outcomes[0].check], block.who, block.accepted)
+            yield ""
     yield from _not_assessed(result, cards)
     yield from fleet_totals(result)
     yield ""
@@ -38,9 +35,9 @@ def _lines(result: FleetResult, cards: Mapping[str, Card]) -> Iterator[str]:
 
 def _not_assessed(result: FleetResult, cards: Mapping[str, Card]) -> Iterator[str]:
     """Print the first places not assessed, and how many more there are."""
-    blocks: list[tuple[Outcome, str]] = [(o, who) for o, who, _ in grouped(result, Verdict.NOT_ASSESSED)]
-    for outcome, who in blocks[:MOST_NOT_ASSESSED]:
-        yield from finding_lines(outcome, cards[outcome.check], who)
+    blocks = grouped(result, Verdict.NOT_ASSESSED)
+    for block in blocks[:MOST_NOT_ASSESSED]:
+        yield from finding_lines(block.outcomes, cards[block.outcomes[0].check], block.who, {})
         yield ""
     if len(blocks) > MOST_NOT_ASSESSED:
         yield f"and {len(blocks) - MOST_NOT_ASSESSED} more places not assessed: see the reports (--reports FOLDER)"

@@ -4,10 +4,11 @@ from __future__ import annotations
 
 from collections import Counter
 from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
 
 from checker.checks.check import is_thin
 from checker.finding import Card, Level, Outcome, Verdict
-from checker.output.lines import finding_lines, measure_words, set_lines
+from checker.output.lines import finding_lines, measure_words, same_fault, set_lines
 from checker.reading.words import flat
 from checker.result.gather import fingerprint, natural
 from checker.result.model import Acceptance, FleetResult, SubjectResult, tally
@@ -78,11 +79,14 @@ def _body(subject: SubjectResult, cards: Cards) -> Iterator[str]:
     for verdict, heading in (
         (Verdict.FINDING, "findings"), (Verdict.ACCEPTED, "accepted findings"), (Verdict.NOT_ASSESSED, "not assessed"),
     ):  # fmt: skip
-        blocks = [o for o in subject.outcomes if o.verdict is verdict]
+        blocks: dict[tuple[object, ...], list[Outcome]] = {}
+        for outcome in subject.outcomes:
+            if outcome.verdict is verdict:
+                blocks.setdefault(same_fault(outcome), []).append(outcome)
         yield from ("", heading if blocks else f"{heading}: none")
-        for outcome in blocks:
-            acceptance = subject.accepted.get(fingerprint(outcome)) if verdict is Verdict.ACCEPTED else None
-            yield from finding_lines(outcome, cards[outcome.check], "", acceptance)
+        accepted = subject.accepted if verdict is Verdict.ACCEPTED else {}
+        for block in blocks.values():
+            yield from finding_lines(block, cards[block[0].check], "", accepted)
     passes = [o for o in subject.outcomes if o.verdict is Verdict.PASSED]
     yield from _exemptions(passes)
     yield from _looked_at(passes)
@@ -135,10 +139,10 @@ def fleet_report(result: FleetResult, cards: Cards) -> str:
     for verdict, heading in (
         (Verdict.FINDING, "findings"), (Verdict.ACCEPTED, "accepted findings"), (Verdict.NOT_ASSESSED, "not assessed"),
     ):  # fmt: skip
-        blocks = list(grouped(result, verdict))
+        blocks = grouped(result, verdict)
         lines += ["", heading if blocks else f"{heading}: none"]
-        for outcome, who, acceptance in blocks:
-            lines += finding_lines(outcome, cards[outcome.check], who, acceptance)
+        for block in blocks:
+            lines += finding_lines(block.outcomes, cards[block.outcomes[0].check], block.who, block.accepted)
     return "\n".join([*lines, ""])
 
 
@@ -186,19 +190,41 @@ def summary_lines(result: FleetResult) -> Iterator[str]:
         yield f"option set {subject.id}: {verdict_words(subject)}"
 
 
-def grouped(result: FleetResult, verdict: Verdict) -> Iterator[tuple[Outcome, str, Acceptance | None]]:
-    """Yield each finding once, with the hulls and option sets that it is on, worst first."""
-    groups: dict[tuple[object, ...], tuple[Outcome, list[str], Acceptance | None]] = {}
+@dataclass(frozen=True, slots=True)
+class Block:
+    """Hold one fault as a reader sees it: under all its limit sets, with the hulls it is on."""
+
+    outcomes: tuple[Outcome, ...]
+    who: str
+    accepted: dict[str, Acceptance]
+
+
+def grouped(result: FleetResult, verdict: Verdict) -> list[Block]:
+    """Return each fault once, with the hulls and option sets that it is on, worst first."""
+    on: dict[tuple[Outcome, Acceptance | None], list[str]] = {}
     for outcome in result.file_outcomes:
         if outcome.verdict is verdict:
-            groups[(outcome,)] = (outcome, [], None)
+            on[(outcome, None)] = []
     for subject in result.subjects:
         for outcome in subject.outcomes:
             if outcome.verdict is verdict:
                 acceptance = subject.accepted.get(fingerprint(outcome)) if verdict is Verdict.ACCEPTED else None
-                entry = groups.setdefault((outcome, acceptance), (outcome, [], acceptance))
-                entry[1].append(subject.id)
-    order = sorted(groups.values(), key=lambda g: (g[0].level.rank, g[0].at, g[0].check, natural(g[0].part), g[1]))
-    for outcome, names, acceptance in order:
-        yield outcome, ", ".join(names), acceptance
+                on.setdefault((outcome, acceptance), []).append(subject.id)
+    blocks: dict[tuple[object, ...], list[tuple[Outcome, Acceptance | None]]] = {}
+    for (outcome, acceptance), names in on.items():
+        key = (*same_fault(outcome), *((outcome.fault,) if not outcome.limit_set else ()), tuple(names))
+        blocks.setdefault(key, []).append((outcome, acceptance))
+    found = [
+        Block(
+            tuple(outcome for outcome, _ in rows),
+            ", ".join(on[rows[0]]),
+            {fingerprint(outcome): acceptance for outcome, acceptance in rows if acceptance},
+        )
+        for rows in blocks.values()
+    ]
+    return sorted(found, key=_block_order)
 
+
+def _block_order(block: Block) -> tuple[object, ...]:
+    first = block.outcomes[0]
+    return (first.level.rank, first.at, first.check, natural(first.part), block.who)
