@@ -80,7 +80,7 @@ def _check(options: argparse.Namespace) -> int:
         raise UsageError("--reports writes the reports of the whole fleet: leave out --only")
     try:
         # The only place that reads the clock.
-        today = datetime.date.fromisoformat(options.today) if options.today else datetime.date.today()
+        today = datetime.date.fromisoformat(options.today) if options.today is not None else datetime.date.today()
     except ValueError as error:
         raise UsageError(f"--today: “{options.today}” is no date; write e.g. 2028-05-29") from error
     progress = _Progress()

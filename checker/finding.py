@@ -70,8 +70,7 @@ class Basis(Enum):
     COMMON_PRACTICE = "common practice, no source"
 
 
-@dataclass(frozen=True, slots=True)
-class Measure:
+class Measure(NamedTuple):
     """Hold a value against its limit. Both are in `unit`; a fraction has unit "".
 
     `is_stepped` marks what is chosen from a row of sizes, where standing at the limit is
@@ -104,14 +103,14 @@ class Measure:
         return 0.0 if abs(fraction) < EQUAL_FRACTION else fraction
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Outcome:
+class Outcome(NamedTuple):
     """Tell how one check ended at one place of one part.
 
     `part` is the id the yard wrote or the derived one (`P11.out`). `limit_set` is empty where
     the verdict rests on physics or the yard's own data. `missing` names the field to fill in
     where the verdict is "not assessed". `inputs` are the facts that made a finding; a waiver
-    is bound to their fingerprint.
+    is bound to their fingerprint. A named tuple, since a fleet makes hundreds of thousands and
+    sends them between processes; always made by field names.
     """
 
     verdict: Verdict

@@ -6,7 +6,7 @@ import contextlib
 import datetime
 import gc
 from collections.abc import Callable, Collection, Iterator, Sequence
-from dataclasses import replace
+from dataclasses import dataclass
 from pathlib import Path
 
 from checker import __version__
@@ -15,24 +15,37 @@ from checker.boat.build import build_boat
 from checker.boat.catalogue import Catalogue, read_catalogue
 from checker.boat.hull import Boat
 from checker.checks.catalogue import CHECKS
-from checker.checks.check import Case, Check, House
+from checker.checks.check import Case, Check, House, is_thin
 from checker.errors import UsageError
 from checker.finding import NOWHERE, Card, Level, Outcome, Verdict
+from checker.limits.formulas import resistivity_ohm_mm2_per_m, study_figures
 from checker.limits.limit_set import LimitSet, limit_set_ids, load_limit_set
-from checker.network.studies import Studies
+from checker.network.flow import Copper
+from checker.network.studies import Coppers, Studies
 from checker.reading.cards import FILE_CARDS
 from checker.reading.document import Fault
 from checker.reading.words import nearest
 from checker.reading.yard_files import YardFiles, read_yard
 from checker.result.cards import CLASS_REVISION, NOT_STUDIED, RESULT_CARDS
-from checker.result.gather import report_order
+from checker.result.gather import news_order, pass_order
 from checker.result.model import FleetResult, SetUse, Study, SubjectResult
 from checker.result.waiver_file import read_waivers
 from checker.result.waivers import Waiver, apply_waivers, unmatched
 
 Progress = Callable[[int, int], None]
 StudyKey = str
-Studied = tuple[tuple[Outcome, ...], tuple[SetUse, ...], tuple[Fault, ...]]
+
+
+@dataclass(frozen=True, slots=True)
+class Studied:
+    """Hold what was found on one distinct boat, or why it could not be built."""
+
+    news: tuple[Outcome, ...] = ()
+    passes: tuple[Outcome, ...] = ()
+    thin: int = 0
+    sets: tuple[SetUse, ...] = ()
+    faults: tuple[Fault, ...] = ()
+
 
 FEWEST_FOR_WORKERS = 24
 """Distinct boats below which starting worker processes costs more than it saves."""
@@ -139,18 +152,22 @@ class _Bench:
         """Build one boat, study it, and hold it against every limit set that it is judged by."""
         boat, faults = build_boat(self._content[key], self._class_of[key], self._catalogue)
         if boat is None:
-            return (), (), tuple(faults)
+            return Studied(faults=tuple(faults))
         sets = _judged_by(boat, self._adopted)
         limits = tuple(load_limit_set(use.id) for use in sets)
         outcomes = run_checks(boat, limits, self._house)
-        return report_order(outcomes), sets, ()
+        passes = pass_order(outcomes)
+        thin = sum(is_thin(outcome.measure) for outcome in passes)
+        return Studied(news_order(outcomes), passes, thin, sets)
 
 
 def run_checks(
     boat: Boat, limits: tuple[LimitSet, ...], house: House, checks: Sequence[Check] = CHECKS
 ) -> list[Outcome]:
     """Hold one boat against limit sets; checks that rest on none run once."""
-    studies = Studies(boat)
+    figures = study_figures()
+    temperatures_c = (figures.flow_copper_c, figures.cold_copper_c, figures.hot_copper_c)
+    studies = Studies(boat, Coppers(*(Copper(resistivity_ohm_mm2_per_m(t)) for t in temperatures_c)))
     if not limits:
         return []
     first = Case(studies, limits[0], limits, house)
@@ -235,8 +252,8 @@ class _Gatherer:
         self._studied = studied
         self._today = today
         self._only = only
-        self._faults = [*faults, *(fault for _, _, some in studied.values() for fault in some)]
-        self._subjects = [s for s in subjects if s.key in studied and not studied[s.key][2]]
+        self._faults = [*faults, *(fault for study in studied.values() for fault in study.faults)]
+        self._subjects = [s for s in subjects if s.key in studied and not studied[s.key].faults]
         self._lost = [s for s in subjects if s not in self._subjects]
         self._cards = {card.id: card for card in FILE_CARDS}
 
@@ -250,12 +267,12 @@ class _Gatherer:
         matched: set[str] = set()
         hull_files = self._file_outcomes_of_hulls()
         for subject in self._subjects:
-            outcomes, sets, _ = self._studied[subject.key]
+            study = self._studied[subject.key]
             design = self._assembly.classes[subject.class_id]
             mine = [w for w in waivers if w.concerns(subject.id, subject.class_id)]
-            waived = apply_waivers(outcomes, mine, self._today)
+            waived = apply_waivers(study.news, mine, self._today)
             matched |= waived.matched
-            own = [*waived.outcomes, *hull_files.get(subject.id, ()), *_behind(subject, design)]
+            own = [*waived.extra, *hull_files.get(subject.id, ()), *_behind(subject, design)]
             own += [unmatched(w) for w in mine if w.hull and w.id not in waived.matched]
             results.append(
                 SubjectResult(
@@ -263,8 +280,9 @@ class _Gatherer:
                     class_name=str(design.base.data["class"].get("name", "")), revision=subject.revision,
                     class_revision=design.revision, options=subject.options, status=subject.status,
                     changes=subject.changes, study=alike[subject.key][0],
-                    alike=tuple(name for name in alike[subject.key] if name != subject.id), sets=sets,
-                    outcomes=report_order(own), accepted=waived.accepted,
+                    alike=tuple(name for name in alike[subject.key] if name != subject.id), sets=study.sets,
+                    news=news_order([*waived.outcomes, *own]), own=news_order(own), passes=study.passes,
+                    thin=study.thin, accepted=waived.accepted,
                 )  # fmt: skip
             )
         return FleetResult(
@@ -272,7 +290,9 @@ class _Gatherer:
             tool_version=__version__,
             subjects=tuple(results),
             studies=tuple(
-                Study(names[0], self._studied[key][0], self._studied[key][1]) for key, names in alike.items()
+                Study(names[0], study.news, study.passes, study.thin, study.sets)
+                for key, names in alike.items()
+                for study in (self._studied[key],)
             ),
             file_outcomes=self._fleet_outcomes(waivers, matched),
             unstudied=self._unstudied(),
@@ -288,7 +308,7 @@ class _Gatherer:
         if document is None or document.file in self._files.faulty:
             return []
         hulls = {str(d.data.get("hull")) for d in self._files.hulls if isinstance(d.data, dict)}
-        waivers, faults = read_waivers(document, hulls, list(self._files.classes), [card.id for card in all_cards()])
+        waivers, faults = read_waivers(document, hulls, list(self._files.classes), all_cards())
         self._faults += faults
         return waivers
 
@@ -313,7 +333,8 @@ class _Gatherer:
     def _fleet_outcomes(self, waivers: list[Waiver], matched: set[str]) -> tuple[Outcome, ...]:
         owner = self._hull_of_file()
         others = {document.file for document in self._files.hulls} if self._only else set()
-        lost_files = {s.at.file for s in self._lost}
+        asked = {d.file for d in self._files.hulls if isinstance(d.data, dict) and d.data.get("hull") in self._only}
+        lost_files = {s.at.file for s in self._lost} | asked
         outcomes = [
             self._outcome(fault)
             for fault in sorted(set(self._faults), key=_fault_key)
@@ -326,7 +347,7 @@ class _Gatherer:
                     fault="could not be studied", remedy="mend the faults of its files first")
             for name in self._unstudied()
         ]  # fmt: skip
-        return report_order(outcomes)
+        return news_order(outcomes)
 
     def _unstudied(self) -> tuple[str, ...]:
         lost = [f"hull {s.id}" if s.is_hull else f"option set {s.id}" for s in self._lost]
@@ -362,6 +383,6 @@ def _behind(subject: Subject, design: ClassDesign) -> list[Outcome]:
         "nothing electrical has changed since; raise its revision when the rest is done",
         inputs=(("revision", str(subject.revision)), ("class", str(design.revision))),
     )  # fmt: skip
-    return [replace(outcome, note="" if level is Level.ERROR else "nothing electrical changed")]
+    return [outcome._replace(note="" if level is Level.ERROR else "nothing electrical changed")]
 
 

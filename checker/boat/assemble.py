@@ -12,8 +12,9 @@ from typing import Any
 
 from checker.boat.entry import Entry
 from checker.boat.patch import Patched, Places, apply_patch, places_under, without_effect
-from checker.finding import Span
+from checker.finding import Path, Span
 from checker.reading.document import Document, Fault
+from checker.reading.words import shown
 from checker.reading.yard_files import YardFiles
 
 MOST_OPTION_SETS = 512
@@ -94,23 +95,29 @@ def assemble(files: YardFiles) -> Assembly:
     for class_id, documents in sorted(files.classes.items()):
         options = files.options.get(class_id, [])
         if shared_fault or any(document.file in faulty for document in (*documents, *options)):
-            assembly.unstudied.append(f"class {class_id}")
+            assembly.unstudied.append(f"class {shown(class_id)}")
             continue
         design = _design(class_id, documents, options, assembly.faults)
         assembly.classes[class_id] = design
         _add_designs(assembly, design)
+    for class_id in sorted(set(files.options) - set(files.classes)):
+        at = Span(files.options[class_id][0].file, 1, 1)
+        message = f"options of a class “{shown(class_id)}” that has no file of its own"
+        assembly.faults.append(Fault("unknown-reference", at, message, f"add classes/{shown(class_id)}/class.yaml"))
     for document in files.hulls:
         if document.file in faulty:
             assembly.unstudied.append(f"hull {_hull_name(document)}")
         else:
             _add_hull(assembly, document, class_ids=set(files.classes))
+    # By their ids, so that a hull keeps its place in the reports when its file is renamed.
+    assembly.subjects.sort(key=lambda subject: (subject.is_hull, subject.id if subject.is_hull else ""))
     return assembly
 
 
 def _hull_name(document: Document) -> str:
     data = document.data
     name = data.get("hull") if isinstance(data, dict) else None
-    return str(name) if isinstance(name, str) else document.file
+    return shown(name if isinstance(name, str) else document.file)
 
 
 def _design(class_id: str, documents: Sequence[Document], options: Sequence[Document], faults: list[Fault]) -> ClassDesign:
@@ -162,7 +169,7 @@ def _read_options(documents: Sequence[Document], base: Patched, faults: list[Fau
         patch = row.fields("changes")
         places = places_under(document.places, ("changes",))
         for path in without_effect(base.data, patch):
-            _no_effect(row, ("changes", *path), f"option {name}")
+            _no_effect(row, ("changes",), path, f"option {name}")
         options[name] = Option(name, row.text("name"), row.items("excludes"), patch, places, row.at("option"))
     for document in documents:
         row = Entry(Patched(document.data, (document.places,)), (), document.data, faults)
@@ -172,9 +179,9 @@ def _read_options(documents: Sequence[Document], base: Patched, faults: list[Fau
     return options
 
 
-def _no_effect(row: Entry, path: tuple[str | int, ...], who: str) -> None:
-    dotted = ".".join(str(step) for step in path[1:] if step != "set")
-    row.fault("patch-without-effect", row.key_at(*path), f"{who} changes {dotted} to what it already is, or removes nothing",
+def _no_effect(row: Entry, prefix: Path, path: Path, who: str) -> None:
+    message = f"{who} changes {'.'.join(str(step) for step in path)} to what it already is, or removes nothing"
+    row.fault("patch-without-effect", row.key_at(*prefix, *path), message,
               "correct the id or the value, or take the line out")  # fmt: skip
 
 
@@ -274,7 +281,7 @@ def _apply_changes(row: Entry, document: Document, target: Patched) -> Patched:
         patch = change.fields("set")
         prefix = ("changes", change.id, "set")
         for path in without_effect(target.data, patch):
-            _no_effect(row, (*prefix, *path), f"change {change.id}")
+            _no_effect(row, prefix, path, f"change {change.id}")
         if not patch:
             row.fault("patch-without-effect", change.at(), f"change {change.id} sets nothing", "write what was changed")
         target = apply_patch(target, patch, places_under(document.places, prefix))

@@ -177,7 +177,7 @@ def _of_series(row: Entry, part: Overcurrent, rating_a: float, at: Span) -> Over
     """Return the member of a series with a rating; a part of one rating stands for itself."""
     for member in part.series or (part,):
         if member.rating_a == rating_a:
-            return member
+            return replace(member, series=part.series)  # so that a remedy names a rating that is made
     made = ", ".join(f"{member.rating_a:g} A" for member in part.series or (part,))
     row.fault("unknown-reference", at, f"{part.id} is not made at {rating_a:g} A", f"made at: {made}")
     return None
@@ -249,8 +249,15 @@ def _add_branch(shop: _Workshop, row: Entry) -> None:
     )
 
 
+_LIKE_OUT = ("cable", "type", "bare_tail", "enclosed", "role", "reason", "place_reason")
+_LENGTHS = ("length", "route", "tail")
+
+
 def _cable_fields(row: Entry) -> dict[str, Any]:
-    return {name: row.data[name] for name in ("cable", "type") if name in row.data}
+    """Return what the way back has from the way out where it is not written: its length as a whole or not at all."""
+    own = row.fields("back")
+    names = _LIKE_OUT if any(name in own for name in _LENGTHS) else (*_LIKE_OUT, *_LENGTHS)
+    return {name: row.data[name] for name in names if name in row.data}
 
 
 def _branch_feed(shop: _Workshop, row: Entry, feed: str) -> tuple[str, str, str]:
@@ -316,7 +323,7 @@ def _conductor(
 ) -> Conductor | None:
     """Build a conductor between two posts from the fields of its own row or of its branch circuit."""
     is_branch = row.has("cable")
-    size = row.size("cable" if is_branch else "size")
+    size = row.size("cable" if is_branch and not row.has("size") else "size")
     cable = _cable_type(shop, row, "branch_cable" if is_branch else "single_conductor")
     ways = _ways(shop, row)
     length = _length(row, ways)
@@ -353,7 +360,7 @@ def _of_length(
         circuit=circuit,
         is_bond=is_bond,
         at=row.at(),
-        at_size=row.at("cable" if is_branch else "size"),
+        at_size=row.at("cable" if is_branch and not row.has("size") else "size"),
         at_length=row.at(length_field) if length_field else row.at(),
     )
 
@@ -484,7 +491,7 @@ def _finish(shop: _Workshop, class_id: str, bonds_recorded: bool) -> Boat:
         shields=_shields(shop),
         bonds_recorded=bonds_recorded,
         circuits=shop.circuits,
-        switch_rows=tuple(_switch_row(shop, row) for row in top.entries("states")),
+        switch_rows=_switch_rows(shop),
         conditions={row.id: _condition(shop, row) for row in top.entries("conditions")},
         engines=tuple(_engine(shop, row) for row in _facts_entry(top).entries("engines")),
         generator_fuel=str(facts.get("generator_fuel", "none")),
@@ -504,7 +511,8 @@ def _joint(shop: _Workshop, row: Entry) -> Joint:
     for name, post in zip(("from", "to"), ends, strict=True):
         if post not in shop.posts:
             _unknown_post(shop, post, row.at(name), row.id)
-    return Joint(id=row.id, start=ends[0], end=ends[1], at=row.at())
+    resistance_ohm = row.number("resistance", Dimension.RESISTANCE) or 0.0
+    return Joint(id=row.id, start=ends[0], end=ends[1], resistance_ohm=resistance_ohm, at=row.at())
 
 
 def _shields(shop: _Workshop) -> tuple[Shield, ...] | None:
@@ -536,6 +544,14 @@ def _positions_of(shop: _Workshop, row: Entry, name: str = "switches") -> tuple[
             continue
         found.append((switch, str(state)))
     return tuple(found)
+
+
+def _switch_rows(shop: _Workshop) -> tuple[SwitchRow, ...]:
+    rows = tuple(_switch_row(shop, row) for row in shop.top.entries("states"))
+    if rows and all(row.kind == "forbidden" for row in rows):
+        shop.top.fault("bad-value", shop.top.at("states"), "every state is forbidden, so the boat can be in none",
+                       "add a state of kind normal")  # fmt: skip
+    return rows
 
 
 def _switch_row(shop: _Workshop, row: Entry) -> SwitchRow:

@@ -2,11 +2,15 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Sequence
+from dataclasses import replace
 from typing import Any
 
 from checker.boat.entry import Entry
 from checker.boat.parts import (
+    Band,
+    BandPoint,
     Battery,
     Bus,
     Cable,
@@ -30,6 +34,11 @@ def read_catalogue(documents: Sequence[Document]) -> tuple[Catalogue, list[Fault
     """Return all parts by id, and what is wrong with them."""
     parts: Catalogue = {}
     faults: list[Fault] = []
+    bands: dict[str, Band] = {}
+    for document in documents:
+        source = Patched(document.data, (document.places,))
+        for entry in Entry(source, (), document.data or {}, faults).entries("bands"):
+            bands[entry.id] = _band(entry)
     for document in documents:
         source = Patched(document.data, (document.places,))
         for entry in Entry(source, (), document.data or {}, faults).entries("parts"):
@@ -38,6 +47,8 @@ def read_catalogue(documents: Sequence[Document]) -> tuple[Catalogue, list[Fault
                             f"the other one stands in {parts[entry.id].at}")  # fmt: skip
                 continue
             part = _READERS[entry.text("kind")](entry)
+            if isinstance(part, Overcurrent):
+                part = _with_band(entry, part, bands)
             if part is not None:
                 parts[entry.id] = part
     return parts, faults
@@ -77,7 +88,6 @@ def _overcurrent(entry: Entry) -> Part | None:
             voltage_v=voltage_v,
             interrupting_a=entry.number("interrupting", Dimension.CURRENT),
             resistance_ohm=resistance_ohm,
-            band=entry.text("band"),
             trip_free=entry.flag("trip_free", default=True),
             resets_itself=entry.text("reset") == "automatic",
             polarised=entry.flag("polarised"),
@@ -100,6 +110,34 @@ def _overcurrent(entry: Entry) -> Part | None:
     return one(made[-1].rating_a, resistance_ohm, tuple(made)) if made else None
 
 
+def _with_band(entry: Entry, part: Overcurrent, bands: dict[str, Band]) -> Overcurrent:
+    """Give a device, and each member of its series, the band that it names."""
+    name = entry.text("band")
+    if not name:
+        return part
+    if name not in bands:
+        entry.unknown("band", name, entry.at("band"), bands)
+        return part
+    band = bands[name]
+    return replace(part, band=band, series=tuple(replace(member, band=band) for member in part.series))
+
+
+def _band(entry: Entry) -> Band:
+    points: list[BandPoint] = []
+    for index, row in enumerate(entry.data.get("points", ())):
+        earliest_s = entry.quantity_at(("points", index, "earliest"), row.get("earliest"), Dimension.TIME)
+        latest = row.get("latest")
+        never = latest == "never"
+        latest_s = math.inf if never else entry.quantity_at(("points", index, "latest"), latest, Dimension.TIME)
+        point = BandPoint(float(row.get("multiple", 0)), earliest_s or 0.0, math.inf if latest_s is None else latest_s)
+        before = points[-1] if points else None
+        if point.latest_s < point.earliest_s or (before is not None and before.multiple >= point.multiple):
+            entry.fault("bad-value", entry.at("points", index), "points rise in their multiple, and open late after early")
+        points.append(point)
+    factor = entry.data.get("engine_space_factor", 1.0)
+    return Band(id=entry.id, points=tuple(points), engine_space_factor=float(factor), at=entry.at())
+
+
 def _bus(entry: Entry) -> Part | None:
     rating_a = entry.needed_number("rating", Dimension.CURRENT)
     return None if rating_a is None else Bus(id=entry.id, at=entry.at(), rating_a=rating_a)
@@ -117,6 +155,9 @@ def _switch(entry: Entry) -> Part | None:
             for post in (post for post in pair if post not in posts):
                 entry.unknown(f"post on {entry.id}", post, entry.at("states", name, index), posts)
         states.append((name, tuple((str(pair[0]), str(pair[1])) for pair in pairs)))
+    if not states:
+        entry.fault("bad-value", entry.at("states"), f"{entry.words} has no state", "add one, e.g. `open: []`")
+        return None
     return Switch(
         id=entry.id,
         at=entry.at(),
@@ -160,6 +201,8 @@ def _load(entry: Entry) -> Part | None:
         min_voltage_v=entry.number("min_voltage", Dimension.VOLTAGE),
         max_device_a=entry.number("max_device", Dimension.CURRENT),
         standby_a=entry.number("standby", Dimension.CURRENT),
+        model=entry.text("model", "constant-current"),
+        duty_s=entry.number("duty", Dimension.TIME),
         is_motor=entry.flag("motor"),
         ignition_protected=entry.flag("ignition_protected"),
         feed_post=entry.text("feed_post", "pos"),
@@ -190,10 +233,11 @@ def _source(entry: Entry) -> Part | None:
     outputs = _terminals(entry, "outputs")
     if not outputs:
         return None
-    joined: list[tuple[str, str]] = []
-    for row in entry.data.get("joined", ()):
+    joined: list[tuple[str, str, float]] = []
+    for index, row in enumerate(entry.data.get("joined", ())):
         pair: list[Any] = row.get("between", [])
-        joined.append((str(pair[0]), str(pair[1])))
+        ohm = entry.quantity_at(("joined", index, "resistance"), row.get("resistance"), Dimension.RESISTANCE)
+        joined.append((str(pair[0]), str(pair[1]), ohm or 0.0))
     return Source(
         id=entry.id,
         at=entry.at(),

@@ -74,7 +74,7 @@ class Entry:
     def whole(self, name: str, default: int = 0) -> int:
         """Return a whole-number field."""
         value = self.data.get(name, default)
-        return value if isinstance(value, int) else default
+        return int(value) if isinstance(value, (int, float)) else default  # 4.0 is a whole number too
 
     def items(self, name: str) -> tuple[str, ...]:
         """Return a field that is a list of texts."""

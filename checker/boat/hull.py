@@ -95,6 +95,7 @@ class Joint:
     id: str
     start: str
     end: str
+    resistance_ohm: float = 0.0
     at: Span = field(default=NOWHERE, compare=False, repr=False)
 
 

@@ -29,6 +29,31 @@ class Battery:
     posts: tuple[str, ...] = ("pos", "neg")
 
 
+@dataclass(frozen=True, slots=True)
+class BandPoint:
+    """Hold one point of a time-current band: the multiple of the rating, and the times it opens between, s.
+
+    `latest_s` is infinite where the device may never open.
+    """
+
+    multiple: float
+    earliest_s: float
+    latest_s: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Band:
+    """Describe when a device opens: points in rising order of the multiple of its rating.
+
+    `engine_space_factor` is taken on the rating of a device that stands in an engine space.
+    """
+
+    id: str
+    points: tuple[BandPoint, ...]
+    engine_space_factor: float = 1.0
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Overcurrent:
     """Describe a fuse or a breaker. A series holds one record for each rating it is made at."""
@@ -39,7 +64,7 @@ class Overcurrent:
     voltage_v: float
     interrupting_a: float | None = None
     resistance_ohm: float | None = None
-    band: str = ""
+    band: Band | None = None
     trip_free: bool = True
     resets_itself: bool = False
     polarised: bool = False
@@ -112,6 +137,8 @@ class Load:
     min_voltage_v: float | None = None
     max_device_a: float | None = None
     standby_a: float | None = None
+    model: str = "constant-current"
+    duty_s: float | None = None
     is_motor: bool = False
     ignition_protected: bool = False
     feed_post: str = "pos"
@@ -138,12 +165,12 @@ class Terminals:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Source:
-    """Describe a charge source or converter: outputs that feed, inputs that draw, posts joined inside."""
+    """Describe a charge source or converter: outputs that feed, inputs that draw, posts joined inside by a resistance in ohm."""
 
     id: str
     outputs: tuple[Terminals, ...]
     inputs: tuple[Terminals, ...] = ()
-    joined: tuple[tuple[str, str], ...] = ()
+    joined: tuple[tuple[str, str, float], ...] = ()
     case_post: str = ""
     ignition_protected: bool = False
     at: Span = field(default=NOWHERE, compare=False, repr=False)
@@ -152,7 +179,7 @@ class Source:
     def posts(self) -> tuple[str, ...]:
         """Return the posts of the source, each once, in a fixed order."""
         ends = [post for t in (*self.outputs, *self.inputs) for post in (t.post, t.return_post)]
-        ends += [post for pair in self.joined for post in pair]
+        ends += [post for pair in self.joined for post in pair[:2]]
         return tuple(dict.fromkeys([*ends, *([self.case_post] if self.case_post else [])]))
 
 

@@ -15,7 +15,15 @@ from checker.checks.devices import (
 )
 from checker.checks.drop import one_way_length, return_size, voltage_drop, voltage_drop_from_bank
 from checker.checks.gauge import ampacity, conductor_material, insulation_rating, minimum_size, sheath_exit
-from checker.checks.nets import bank_tap, battery_loop, dead_short, load_return, load_voltage, split_return
+from checker.checks.nets import (
+    bank_tap,
+    battery_loop,
+    dead_short,
+    load_return,
+    load_voltage,
+    loose_end,
+    split_return,
+)
 from checker.checks.protection import (
     device_rating,
     double_feed,
@@ -57,6 +65,7 @@ CHECKS: tuple[Check, ...] = (
     shunt_bypass,
     shunt_direction,
     shunt_rating,
+    loose_end,
     legend_rating,
     unlisted_state,
     role_claim,

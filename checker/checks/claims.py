@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from checker.checks.check import Case, Place, Told, at_conductor, check
-from checker.checks.roles import CRANKING, PIGTAIL, role_holds
+from checker.checks.roles import BANK, CRANKING, PIGTAIL, role_holds
 from checker.finding import Basis, Level, Outcome
 from checker.network.states import MOST_STATES
 
@@ -51,19 +51,21 @@ def unlisted_state(case: Case) -> Iterator[Outcome]:
 def role_claim(case: Case) -> Iterator[Outcome]:
     """Does the boat bear out the roles that conductors are given?
 
-    A cranking conductor lies between a battery and a motor; a pigtail is shorter than 7 in;
+    A cranking conductor lies between a battery and a motor, a bank conductor between batteries
+    of one bank or its collectors; a pigtail is shorter than 7 in;
     a role that the data cannot show has a reason written.
     """
     for conductor in case.boat.conductors.values():
-        if conductor.role not in (CRANKING, PIGTAIL, *NEEDS_REASON):
+        if conductor.role not in (BANK, CRANKING, PIGTAIL, *NEEDS_REASON):
             continue
         place = at_conductor(conductor, conductor.at)
         if conductor.role in NEEDS_REASON and not conductor.role_reason:
             told = Told(f"role {conductor.role} has no reason", "add “reason”", inputs=(("role", conductor.role),))
             yield role_claim.found(case, place, told)
-        elif not role_holds(case, conductor):
+        elif not role_holds(case, conductor) and conductor.id not in case.studies.take_offs:
             why = {
                 CRANKING: "it does not lie between a battery and a motor with nothing but switches between",
+                BANK: "it does not lie between batteries of one bank with nothing but such conductors between",
                 PIGTAIL: f"it is {conductor.length_m:.3f} m long",
             }[conductor.role]
             told = Told(f"role {conductor.role} does not hold: {why}", "take the role out",
@@ -71,3 +73,4 @@ def role_claim(case: Case) -> Iterator[Outcome]:
             yield role_claim.found(case, place, told)
         else:
             yield role_claim.passed(case, place)
+

@@ -163,8 +163,9 @@ def device_bypass(case: Case) -> Iterator[Outcome]:
                 reported.setdefault(device.id, device_bypass.passed(case, _at(device)))
                 continue
             path = path_between(neighbours(network, free), ends[0], [ends[1]]) or []
+            parts = ", ".join(dict.fromkeys(edge.part for edge in path if edge.part != device.id))
             told = Told(
-                fault=f"a path with no device leads round it: {', '.join(edge.part for edge in path)}",
+                fault=f"a path with no device leads round it: {parts}",
                 remedy="take the path out, or protect it by a device of its own",
                 path=path_words(network, ends[0], path),
                 inputs=(("path", " ".join(edge.part for edge in path)),),

@@ -8,7 +8,7 @@ from checker.boat.hull import Circuit, Conductor
 from checker.checks.check import Case, Place, Told, at_conductor, check
 from checker.checks.drops import Drop, DropLimit, circuit_drop, drop_limit
 from checker.checks.remedy import smallest_gauge
-from checker.checks.words import ampere, length, percent
+from checker.checks.words import ampere, cut_length, length, measured, percent
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.formulas import copper_temperature_c
 
@@ -89,6 +89,7 @@ def _told_drop(case: Case, circuit: Circuit, drop: Drop, limit: DropLimit, from_
     where = "from the bank" if from_bank else "along its own conductors"
     conductors = [case.boat.conductors[name] for name in circuit.conductors]
     lost = f"loses {drop.volts:.3f} V of {drop.nominal_v:g} V at {ampere(circuit.current_a or 0)} {where}"
+    told_fraction, _ = measured(Measure("drop", drop.fraction, limit.fraction, ""))
     facts = [("current", ampere(circuit.current_a or 0)), ("limit", percent(limit.fraction))]
     for conductor in conductors:
         facts += [(f"{conductor.id} size", conductor.size.text), (f"{conductor.id} length", f"{conductor.length_m:.3f} m")]
@@ -97,7 +98,7 @@ def _told_drop(case: Case, circuit: Circuit, drop: Drop, limit: DropLimit, from_
         own = {c.id for c in conductors}
         facts.append(("shared way", f"{sum(v for name, v in drop.terms if not own & set(name.split('+'))):.4f} V"))
     return Told(
-        fault=f"{lost}: {percent(drop.fraction)} ({limit.words})",
+        fault=f"{lost}: {told_fraction} ({limit.words})",
         remedy=_drop_remedy(case, circuit, conductors, drop, limit),
         path=(" + ".join(f"{name} {volts:.3f} V" for name, volts in drop.terms),),
         inputs=tuple(facts),
@@ -118,7 +119,7 @@ def _drop_remedy(
     if own_v > 0 and left_v > 0:
         longest = max(conductors, key=lambda c: (c.length_m, c.id))
         kept_m = longest.length_m * left_v / own_v
-        offers.append(f"make each conductor no longer than {length(kept_m - 0.005, longest.length_unit)} in proportion")
+        offers.append(f"make each conductor no longer than {cut_length(kept_m, longest.length_unit)} in proportion")
     return ", or ".join(offers) or "the shared way to the bank alone uses up the allowance: enlarge the feeder"
 
 

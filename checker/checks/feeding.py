@@ -13,7 +13,7 @@ from enum import Enum
 
 from checker.boat.hull import Conductor
 from checker.checks.check import Case
-from checker.checks.roles import BANK, protection_exemption
+from checker.checks.roles import BANK, PIGTAIL, protection_exemption, role_holds
 from checker.network.exposure import ExposureStudy
 from checker.network.graph import Edge, EdgeKind
 from checker.network.potentials import Potentials
@@ -103,7 +103,9 @@ class _State:
         self._study = study
         self._allowed = allowed
         self._exempt = exempt
-        self._runs = unprotected_runs(case.studies.network, potentials, study, allowed, exempt)
+        # A pigtail needs no device of its own, but its length counts into the run that it is a piece of.
+        freed = [name for name in exempt if case.boat.conductors[name].role != PIGTAIL]
+        self._runs = unprotected_runs(case.studies.network, potentials, study, allowed, freed)
         # Pieces ahead of others: they are judged where their run ends.
         self._onward = {name for run in self._runs.values() if run.device for name in run.conductors[:-1]}
         self._place = places(case.studies.network, potentials.state, HAS_LENGTH_OR_OPENS)
@@ -117,7 +119,7 @@ class _State:
             return replace(found, kind=Kind.EXEMPT, note=self._exempt[edge.part])
         if exposure.worst_a <= found.allowed_a * (1 + 1e-9):
             return replace(found, kind=Kind.NO_FIGURE) if found.allowed_a == UNKNOWN_ALLOWED_A else found
-        if conductor.role == BANK:
+        if conductor.role == BANK and role_holds(self._case, conductor):
             return replace(found, kind=Kind.EXEMPT, note="part of its bank: its length counts into what leaves the bank")
         return self._beyond(edge, found)
 
@@ -161,6 +163,8 @@ class _State:
         if len(terms) > 1 and terms[0][1] <= allowed_a * (1 + 1e-9):
             return Kind.DOUBLE
         device = terms[0][0] if terms else ""
+        if device not in self._case.boat.devices:
+            return Kind.RATING  # a source of limited output is too strong for its own lead
         posts = [self._case.studies.network.index.get(f"{device}.{post}") for post in ("line", "load")]
         at_device = any(post is not None and self._place[post] == self._place[node] for post in posts)
         return Kind.RATING if at_device or not device else Kind.STEP

@@ -8,7 +8,7 @@ from checker.boat.hull import Conductor
 from checker.checks.check import Case, Place, Told, at_conductor, check
 from checker.checks.remedy import smallest_gauge_words
 from checker.checks.roles import continuous_a, exempt_as, size_exemption
-from checker.checks.words import ampere, short_length
+from checker.checks.words import ampere, kept_length, short_length
 from checker.finding import Basis, Measure, Outcome
 from checker.units import awg_area_mm2, awg_text
 
@@ -155,7 +155,7 @@ def _judge_exit(case: Case, conductor: Conductor, place: Place, bare_m: float) -
     def told() -> Told:
         return Told(
             fault=f"{conductor.size.text} core is out of its sheath for {short_length(bare_m)}",
-            remedy=f"keep the sheath to within {short_length(most_m)} of the end, "
+            remedy=f"keep the sheath to within {kept_length(most_m)} of the end, "
             f"or use {awg_text(case.limits.minimum_size.single_awg)}",
             inputs=(*_facts(conductor), ("bare tail", short_length(bare_m))),
         )

@@ -6,10 +6,10 @@ from collections.abc import Iterator
 
 from checker.boat.hull import Device
 from checker.boat.parts import Bus, Source
-from checker.checks.check import Case, Place, Told, check
+from checker.checks.check import Case, Place, Told, at_conductor, check
 from checker.checks.words import plain
-from checker.finding import Basis, Outcome
-from checker.network.graph import LoadTie
+from checker.finding import Basis, Level, Outcome
+from checker.network.graph import EdgeKind, LoadTie
 from checker.network.potentials import SAME_V, Potentials
 
 
@@ -62,8 +62,12 @@ def _conflicts(case: Case, *, is_short: bool) -> Iterator[Outcome]:
         yield found.get(battery.device) or rule.passed(case, _at(case.boat.devices[battery.device]))
 
 
-def _has_conflict(case: Case) -> bool:
-    return any(potentials.conflicts for potentials in case.studies.potentials)
+def _sound_states(case: Case) -> list[Potentials]:
+    """Return the states whose batteries agree: only they have voltages to speak of."""
+    return [potentials for potentials in case.studies.potentials if not potentials.conflicts]
+
+
+NO_VOLTAGE = ("batteries disagree in every switch state, so that no net has a voltage", "the battery links")
 
 
 def _loads(case: Case) -> Iterator[tuple[LoadTie, Device]]:
@@ -72,8 +76,8 @@ def _loads(case: Case) -> Iterator[tuple[LoadTie, Device]]:
 
 
 def _known(case: Case, load: LoadTie) -> tuple[float, Potentials] | None:
-    """Return the voltage across a load in the first state that fixes it."""
-    for potentials in case.studies.potentials:
+    """Return the voltage across a load in the first sound state that fixes it."""
+    for potentials in _sound_states(case):
         volts = potentials.between(load.feed, load.back)
         if volts is not None:
             return volts, potentials
@@ -89,12 +93,13 @@ def _known(case: Case, load: LoadTie) -> tuple[float, Potentials] | None:
 )
 def load_voltage(case: Case) -> Iterator[Outcome]:
     """Do the batteries, or the source that holds the net, give every load its nominal voltage, right way round?"""
-    if _has_conflict(case):
-        return
     for load, device in _loads(case):
         known = _known(case, load)
-        if known is None:
+        if not _sound_states(case):
+            yield load_voltage.not_assessed(case, _at(device), *NO_VOLTAGE)
             continue
+        if known is None:
+            continue  # it floats, which is told by the check of feeds and returns
         volts, potentials = known
         place = _at(device, case.studies.state_words(potentials.state))
         if abs(volts - load.voltage_v) < SAME_V:
@@ -119,7 +124,7 @@ def load_voltage(case: Case) -> Iterator[Outcome]:
 def bank_tap(case: Case) -> Iterator[Outcome]:
     """Does any load take its feed or return at the middle of a string of batteries?"""
     network = case.studies.network
-    for potentials in case.studies.potentials[:1]:
+    for potentials in _sound_states(case)[:1]:
         ups = {potentials.net[b.pos] for b in network.batteries}
         downs = {potentials.net[b.neg] for b in network.batteries}
         middles = ups & downs
@@ -127,7 +132,7 @@ def bank_tap(case: Case) -> Iterator[Outcome]:
             nets = (potentials.net[load.feed], potentials.net[load.back])
             tapped = [net for net in nets if net in middles]
             place = _at(device, case.studies.state_words(potentials.state))
-            if not tapped or _has_conflict(case):
+            if not tapped:
                 yield bank_tap.passed(case, place)
                 continue
             told = Told(
@@ -176,6 +181,8 @@ def load_return(case: Case) -> Iterator[Outcome]:
 
 def _floating_end(case: Case, device: Device, feed: int, back: int) -> tuple[int, str] | None:
     """Return the end that no battery's net reaches, and its name; None where the load is held."""
+    if _stands_alone(case, device, back):
+        return back, "return"
     ends = _battery_islands(case)
     for word, post in (("return", back), ("feed", feed)):
         if not any(p.island[post] in islands for p, islands in ends):
@@ -185,6 +192,13 @@ def _floating_end(case: Case, device: Device, feed: int, back: int) -> tuple[int
                 continue
             return post, word
     return None
+
+
+def _stands_alone(case: Case, device: Device, post: int) -> bool:
+    """Tell whether nothing but the device's own posts is on a net, in the usual state."""
+    net = case.studies.usual.net[post]
+    posts = (case.studies.network.posts[p] for p, n in enumerate(case.studies.usual.net) if n == net)
+    return all(name == device.id or name.startswith(f"{device.id}.") for name in posts)
 
 
 def _battery_islands(case: Case) -> list[tuple[Potentials, set[int]]]:
@@ -236,3 +250,44 @@ def _split_buses(case: Case) -> list[str]:
         if not held and not reference and any(usual.net[back] == usual.net[post] for back in backs):
             split.append(device.id)
     return split
+
+
+@check(
+    title="No live conductor hangs in the air",
+    basis=Basis.COMMON_PRACTICE,
+    citation="common practice, no source",
+    why="a live end that leads to nothing is forgotten, and shorts one day",
+    level=Level.WARNING,
+)
+def loose_end(case: Case) -> Iterator[Outcome]:
+    """Does every live conductor lead to something at both ends?
+
+    What an option leaves behind when it takes a load away is found here: a conductor that a
+    battery or source reaches, with an end on a bus or stud at which nothing else is.
+    """
+    network, usual = case.studies.network, case.studies.usual
+    exposures = case.studies.exposures[0].exposures
+    busy: dict[int, int] = {}
+    for edge in network.edges:
+        for post in (edge.a, edge.b):
+            busy[post] = busy.get(post, 0) + 1
+    for edge in network.edges:
+        if edge.kind is not EdgeKind.CONDUCTOR or usual.is_return(edge.a) or edge.index not in exposures:
+            continue
+        conductor = case.boat.conductors[edge.part]
+        where = at_conductor(conductor, conductor.at)
+        ends = [post for post in (edge.a, edge.b) if busy[post] == 1 and _is_bus(case, post)]
+        if not ends or not exposures[edge.index].worst_a:
+            yield loose_end.passed(case, where)
+            continue
+        told = Told(
+            fault=f"it is live, and on {network.posts[ends[0]]} there is nothing else",
+            remedy="take it out, or enter what it feeds",
+            inputs=(("end", network.posts[ends[0]]),),
+        )
+        yield loose_end.found(case, where, told)
+
+
+def _is_bus(case: Case, post: int) -> bool:
+    device = case.boat.device_of(case.studies.network.posts[post])
+    return device is not None and isinstance(device.part, Bus)

@@ -7,10 +7,11 @@ from collections.abc import Iterator
 from checker.boat.hull import Conductor
 from checker.boat.parts import Overcurrent
 from checker.checks.check import Case, Place, Told, at_conductor, check
-from checker.checks.feeding import Feeding, Kind, feedings
+from checker.checks.feeding import UNKNOWN_ALLOWED_A, Feeding, Kind, feedings
+from checker.checks.gauge import METRIC_FIELD
 from checker.checks.remedy import highest_rating, smallest_gauge, smallest_gauge_words, together
-from checker.checks.roles import protection_exemption, role_holds
-from checker.checks.words import ampere, short_length
+from checker.checks.roles import BANK, protection_exemption, role_holds
+from checker.checks.words import ampere, kept_length, short_length
 from checker.finding import Basis, Level, Measure, Outcome
 
 _CAUTION = "a passed check is no permission: the licensed edition, local codes and the surveyor decide"
@@ -70,15 +71,21 @@ def _told_open(case: Case, feeding: Feeding) -> Told:
     stray = _device_in_return(case, feeding.conductor)
     if stray:
         fault += f"; {stray} stands in the return, where a short to the engine or a bond never passes it"
-    most_a = feeding.allowed_a
+    most_a = _allowed_by_all(case, feeding.conductor)
     rating = f" of at most {ampere(most_a)}" if most_a < 1e9 else ""
-    near = short_length(case.limits.distance.open_m)
+    near = kept_length(case.limits.distance.open_m)
     return Told(
         fault=fault,
         remedy=f"fit a fuse or breaker{rating} within {near} of {source}",
         path=run.path if run else (),
         inputs=_inputs(feeding),
     )
+
+
+def _allowed_by_all(case: Case, conductor: Conductor) -> float:
+    """Return the largest protection that every limit set of the boat allows a conductor."""
+    allowed = (case.under(limits).bearings.allowed_a(conductor) for limits in case.every_set)
+    return min((a for a in allowed if a is not None), default=UNKNOWN_ALLOWED_A)
 
 
 def _device_in_return(case: Case, conductor: Conductor) -> str:
@@ -137,12 +144,12 @@ def _told_far(case: Case, feeding: Feeding) -> Told:
     )
     rule = case.limits.distance
     open_to_sheath = feeding.limit_m < rule.enclosed_m and run.length_m <= rule.enclosed_m
-    sheath = f", or lay all of it in a sheath or conduit (at most {short_length(rule.enclosed_m)})"
+    sheath = f", or lay all of it in a sheath or conduit (at most {kept_length(rule.enclosed_m)})"
     partly = any(0 < c.enclosed_m < c.length_m for c in (case.boat.conductors[n] for n in run.conductors))
     covered = "; its sheath covers only part of it" if partly else ""
     return Told(
         fault=f"{short_length(run.length_m)} of conductor between {run.origin} and {run.device} ({pieces}){covered}",
-        remedy=f"bring {run.device} to within {short_length(feeding.limit_m)} of {run.origin}"
+        remedy=f"bring {run.device} to within {kept_length(feeding.limit_m)} of {run.origin}"
         + (sheath if open_to_sheath else ""),
         path=run.path,
         inputs=_inputs(feeding),
@@ -212,7 +219,7 @@ def _judge_rating(case: Case, feeding: Feeding, kind: Kind) -> Iterator[Outcome]
     place = _place(case, feeding)
     if feeding.kind is Kind.NO_FIGURE:
         fault = f"the table has no row for {feeding.conductor.size.text}"
-        yield rule.not_assessed(case, place, fault, "house.metric_sizes in yard.yaml, or an AWG size")
+        yield rule.not_assessed(case, place, fault, METRIC_FIELD)
     elif feeding.kind is Kind.PROTECTED or feeding.kind is kind:
         measure = Measure("protection", feeding.reaching_a, feeding.allowed_a, "A")
         yield rule.judge(case, place, measure, lambda: _told_rating(case, feeding))
@@ -222,22 +229,23 @@ def _told_rating(case: Case, feeding: Feeding) -> Told:
     conductor = feeding.conductor
     bearing = case.bearings.of(conductor)
     bears = f"allows {ampere(feeding.allowed_a)}" + (f" (bears {ampere(bearing.ampacity_a)}: {bearing.words})" if bearing else "")
+    verb = "protects" if feeding.terms and feeding.terms[0][0] in case.boat.devices else "can feed"
     where = {
         Kind.STEP: f"{conductor.size.text} steps down behind {_sum(feeding)} with no device at the step, but {bears}",
         Kind.DOUBLE: f"{_sum(feeding)} reach {conductor.size.text} together, which {bears}",
-    }.get(feeding.kind, f"{_sum(feeding)} protects {conductor.size.text}, which {bears}")
+    }.get(feeding.kind, f"{_sum(feeding)} {verb} {conductor.size.text}, which {bears}")
     offers: list[str] = []
     run = feeding.run
     if run is not None and run.device:
         where += f"; the next device {run.device} stands {short_length(run.length_m)} along"
-        offers.append(f"bring {run.device} to within {short_length(feeding.limit_m)} of {run.origin}")
+        offers.append(f"bring {run.device} to within {kept_length(feeding.limit_m)} of {run.origin}")
     device = feeding.terms[0][0] if len(feeding.terms) == 1 else ""
     if device in case.boat.devices and feeding.kind is Kind.RATING:
         rating = highest_rating(case, device)
         if rating is not None:
             offers.append(f"fit {device} at {ampere(rating)} or less")
     if feeding.kind is Kind.STEP and not (run is not None and run.device):
-        offers.append(f"fit a device of at most {ampere(feeding.allowed_a)} at the step")
+        offers.append(f"fit a device of at most {ampere(_allowed_by_all(case, conductor))} at the step")
     if feeding.kind is Kind.DOUBLE:
         offers.append("let one device feed it at a time, or put one device ahead of both")
     size = smallest_gauge(case, together(case, conductor))
@@ -269,13 +277,17 @@ def return_protection(case: Case) -> Iterator[Outcome]:
         for name, failed in sorted(returns.items()):
             conductor = case.boat.conductors[name]
             allowed_a = case.bearings.allowed_a(conductor)
-            if name in done or failed.current_a in (0.0, float("inf")) or allowed_a is None or conductor.is_bond:
+            if name in done or failed.current_a in (0.0, float("inf")) or conductor.is_bond:
                 continue
             done.add(name)
-            place = at_conductor(conductor, state=case.studies.state_words(potentials.state))
-            measure = Measure("protection", failed.current_a, allowed_a, "A")
-            if protection_exemption(case, conductor) or (conductor.role == "bank" and role_holds(case, conductor)):
+            if protection_exemption(case, conductor) or (conductor.role == BANK and role_holds(case, conductor)):
                 continue
+            place = at_conductor(conductor, state=case.studies.state_words(potentials.state))
+            if allowed_a is None:
+                fault = f"the table has no row for {conductor.size.text}"
+                yield return_protection.not_assessed(case, place, fault, METRIC_FIELD)
+                continue
+            measure = Measure("protection", failed.current_a, allowed_a, "A")
             if not measure.holds and failed.is_in_loop:
                 fault = f"{failed.load} can send {ampere(failed.current_a)} through it and a return beside it"
                 yield return_protection.not_assessed(case, place, fault, "the solved network (shared returns)")

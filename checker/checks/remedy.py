@@ -43,7 +43,19 @@ def smallest_gauge_words(case: Case, conductor: Conductor) -> str:
     if size is None:
         return "no gauge of the table passes every check here: change the circuit, its route or its device"
     which = "" if len(names) == 1 else " (out and back)"
-    return f"use {size.text} or larger{which}"
+    thinner = [back for back in _returns_of(case, conductor) if back.size.area_mm2 < size.area_mm2 * (1 - 1e-9)]
+    beside = f", and for its return {', '.join(back.id for back in thinner)}" if thinner and len(names) == 1 else ""
+    return f"use {size.text} or larger{which}{beside}"
+
+
+def _returns_of(case: Case, conductor: Conductor) -> list[Conductor]:
+    """Return the return conductors of a feed conductor's circuit."""
+    circuit = case.boat.circuits.get(conductor.circuit)
+    index, usual = case.studies.network.index, case.studies.usual
+    if circuit is None or usual.is_return(index[conductor.start]):
+        return []
+    own = (case.boat.conductors[name] for name in circuit.conductors)
+    return [other for other in own if usual.is_return(index[other.start])]
 
 
 def _passes(case: Case, names: tuple[str, ...], size: Size, also_drop_of: str) -> bool:

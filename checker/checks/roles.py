@@ -18,6 +18,8 @@ def role_holds(case: Case, conductor: Conductor) -> bool:
     """Tell whether what is known of the boat bears out a conductor's declared role."""
     if conductor.role == CRANKING:
         return conductor.id in case.studies.cranking
+    if conductor.role == BANK:
+        return conductor.id in case.studies.bank_conductors
     if conductor.role == PIGTAIL:
         return conductor.length_m < case.limits.exemptions.pigtail_below_m
     return bool(conductor.role)

@@ -123,6 +123,13 @@ def shunt_direction(case: Case) -> Iterator[Outcome]:
             told = Told(f"its stud sys faces bank {bank}, its stud bat the boat", "turn it round",
                         inputs=(("shunt", name),))  # fmt: skip
             yield shunt_direction.found(case, place, told)
+        elif metering.other_bank:
+            told = Told(
+                f"its stud bat faces bank {metering.other_bank}, but it is to measure bank {bank}",
+                f"write `measures: {metering.other_bank}`, or move it to the negative of bank {bank}",
+                inputs=(("shunt", name), ("bank", bank)),
+            )
+            yield shunt_direction.found(case, place, told)
         elif not metering.is_beside_bank:
             told = Told(
                 f"neither of its studs leads to bank {bank} without passing a load",

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import math
+
 from checker.finding import Measure
 from checker.units import foot_from_metre, inch_from_metre
 
@@ -27,6 +29,18 @@ def length(value_m: float, unit: str = "m") -> str:
 def short_length(value_m: float) -> str:
     """Print a short length in both units, since limits on it are printed in inches."""
     return f"{value_m:.3f} m ({inch_from_metre(value_m):.1f} in)"
+
+
+def kept_length(limit_m: float) -> str:
+    """Print a length to keep to in both units, cut so that what is printed keeps it."""
+    return f"{math.floor(limit_m * 1000 + 1e-6) / 1000:.3f} m ({inch_from_metre(limit_m):.1f} in)"
+
+
+def cut_length(limit_m: float, unit: str) -> str:
+    """Print a longest length in the yard's unit, cut so that what is printed keeps it."""
+    value, name = (foot_from_metre(limit_m), "ft") if unit == "ft" else (limit_m, "m")
+    places = 10 if unit == "ft" else 100
+    return f"{math.floor(value * places + 1e-6) / places:.{1 if unit == 'ft' else 2}f} {name}"
 
 
 def percent(fraction: float) -> str:

@@ -6,7 +6,10 @@ from dataclasses import dataclass
 
 from checker.finding import Basis
 
-__all__ = ["Basis", "Citation"]
+__all__ = ["CITABLE", "Basis", "Citation"]
+
+CITABLE = (Basis.LAW, Basis.STANDARD, Basis.HANDBOOK, Basis.FROM_MEMORY, Basis.COMMON_PRACTICE)
+"""What a figure of a table can rest on."""
 
 
 @dataclass(frozen=True, slots=True)

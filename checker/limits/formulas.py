@@ -147,8 +147,73 @@ def ambient_factor(insulation_c: float, ambient_c: float) -> float:
     return math.sqrt(max(0.0, insulation_c - ambient_c) / (insulation_c - reference_c))
 
 
+@dataclass(frozen=True, slots=True, kw_only=True)
+class StudyFigures:
+    """The temperatures and the time that the studies of currents and faults are made with."""
+
+    flow_copper_c: float
+    cold_copper_c: float
+    hot_copper_c: float
+    clearing_s: float
+    citation: Citation
+
+
+@cache
+def study_figures() -> StudyFigures:
+    """Return the figures of the studies from their table."""
+    table = common_table("study")
+    names = ("flow_copper_c", "cold_copper_c", "hot_copper_c", "clearing_s")
+    table.expect(("citation", *names), ("figures",))
+    table.figure_citations(names)
+    return StudyFigures(**{name: table.number(name) for name in names}, citation=table.citation())
+
+
+def resistivity_ohm_mm2_per_m(temperature_c: float) -> float:
+    """Return the resistivity of copper at a temperature. Citation: IACS; R(T) = R20·(234.5 + T)/254.5."""
+    return _resistivity_ohm_mm2_per_m(temperature_c)
+
+
 def _resistivity_ohm_mm2_per_m(temperature_c: float) -> float:
     constants = copper()
     zero_c = constants.zero_resistance_c
     ratio = (zero_c + temperature_c) / (zero_c + constants.reference_c)
     return constants.resistivity_20c_ohm_mm2_per_m * ratio
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Adiabatic:
+    """The constants of the adiabatic equation for copper."""
+
+    heat_capacity_j_per_k_mm3: float
+    zero_resistance_c: float
+    resistivity_20c_ohm_mm: float
+    final_c: float
+    valid_up_to_s: float
+    citation: Citation
+
+
+@cache
+def adiabatic() -> Adiabatic:
+    """Return the constants of the adiabatic equation from their table."""
+    table = common_table("adiabatic")
+    names = (
+        "heat_capacity_j_per_k_mm3", "zero_resistance_c", "resistivity_20c_ohm_mm", "final_c", "valid_up_to_s",
+    )  # fmt: skip
+    table.expect(("citation", *names), ("figures",))
+    table.figure_citations(names)
+    return Adiabatic(**{name: table.number(name) for name in names}, citation=table.citation())
+
+
+def adiabatic_k(initial_c: float, final_c: float) -> float:
+    """Return k of copper, A·√s/mm²: I²·t ≤ k²·S² keeps the conductor below its final temperature.
+
+    Raises:
+        ValueError: If the final temperature is not above the initial one.
+
+    Citation: IEC 60364-5-54, Annex A.
+    """
+    if not final_c > initial_c:
+        raise ValueError(f"a final temperature of {final_c} C after {initial_c} C")
+    c = adiabatic()
+    heat = c.heat_capacity_j_per_k_mm3 * (c.zero_resistance_c + 20) / c.resistivity_20c_ohm_mm
+    return math.sqrt(heat * math.log1p((final_c - initial_c) / (c.zero_resistance_c + initial_c)))

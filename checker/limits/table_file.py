@@ -15,7 +15,7 @@ from typing import NoReturn
 import yaml
 
 from checker.errors import LimitSetError
-from checker.limits.citation import Basis, Citation
+from checker.limits.citation import CITABLE, Basis, Citation
 
 # The C parser reads the same language about ten times faster, but not every build has it.
 _LOADER = getattr(yaml, "CSafeLoader", yaml.SafeLoader)
@@ -136,11 +136,11 @@ class Table:
     def basis(self) -> Basis:
         """Return the basis, one of the texts of `Basis`."""
         given = self.text("basis")
-        try:
-            return Basis(given)
-        except ValueError:
-            known = " | ".join(basis.value for basis in Basis)
+        basis = next((basis for basis in CITABLE if basis.value == given), None)
+        if basis is None:
+            known = " | ".join(basis.value for basis in CITABLE)
             self.refuse(f"basis must be one of {known}, not {given!r}")
+        return basis
 
     def _value(self, key: str) -> object:
         if key not in self.values:

@@ -32,7 +32,11 @@ class EdgeKind(Enum):
 
 @dataclass(frozen=True, slots=True)
 class Edge:
-    """Join two nodes. `rating_a` limits what passes: an overcurrent device's rating, else infinite."""
+    """Join two nodes. `rating_a` limits what passes: an overcurrent device's rating, else infinite.
+
+    A conductor has a length and a copper area; whatever else joins has a resistance of its own,
+    0 where none is given.
+    """
 
     index: int
     kind: EdgeKind
@@ -41,10 +45,20 @@ class Edge:
     part: str
     rating_a: float = math.inf
     length_m: float = 0.0
+    area_mm2: float = 0.0
+    resistance_ohm: float = 0.0
 
     def other(self, node: int) -> int:
         """Return the far node."""
         return self.b if node == self.a else self.a
+
+
+@dataclass(frozen=True, slots=True)
+class Cell:
+    """Hold EMF and internal resistance of a battery at one state of charge."""
+
+    emf_v: float
+    resistance_ohm: float
 
 
 @dataclass(frozen=True, slots=True)
@@ -56,6 +70,8 @@ class BatteryTie:
     neg: int
     voltage_v: float
     bank: str
+    full: Cell | None = None
+    low: Cell | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,6 +83,8 @@ class LoadTie:
     back: int
     voltage_v: float
     current_a: float
+    model: str = "constant-current"
+    is_input: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -120,28 +138,31 @@ def build_network(boat: Boat) -> Network:
     index = {post: number for number, post in enumerate(posts)}
     edges: list[Edge] = []
 
-    def join(kind: EdgeKind, a: str, b: str, part: str, rating_a: float = math.inf, length_m: float = 0.0) -> None:
-        edges.append(Edge(len(edges), kind, index[a], index[b], part, rating_a, length_m))
+    def join(kind: EdgeKind, a: str, b: str, part: str, resistance_ohm: float | None = 0.0, **facts: float) -> None:
+        ohm = resistance_ohm or 0.0
+        edges.append(Edge(len(edges), kind, index[a], index[b], part, resistance_ohm=ohm, **facts))
 
     for conductor in boat.conductors.values():
         kind = EdgeKind.BOND if conductor.is_bond else EdgeKind.CONDUCTOR
-        join(kind, conductor.start, conductor.end, conductor.id, length_m=conductor.length_m)
+        facts = {"length_m": conductor.length_m, "area_mm2": conductor.size.area_mm2}
+        join(kind, conductor.start, conductor.end, conductor.id, **facts)
     for device in boat.devices.values():
         name, part = device.id, device.part
         if isinstance(part, Overcurrent):
-            join(EdgeKind.DEVICE, f"{name}.line", f"{name}.load", name, part.rating_a)
+            ends = f"{name}.line", f"{name}.load"
+            join(EdgeKind.DEVICE, *ends, name, part.resistance_ohm, rating_a=part.rating_a)
         elif isinstance(part, Switch):
             for a, b in sorted({pair for _, pairs in part.states for pair in pairs}):
-                join(EdgeKind.CONTACT, f"{name}.{a}", f"{name}.{b}", name)
+                join(EdgeKind.CONTACT, f"{name}.{a}", f"{name}.{b}", name, part.contact_ohm)
         elif isinstance(part, Shunt):
-            join(EdgeKind.SHUNT, f"{name}.bat", f"{name}.sys", name)
+            join(EdgeKind.SHUNT, f"{name}.bat", f"{name}.sys", name, part.resistance_ohm)
         elif isinstance(part, Source):
-            for a, b in part.joined:
-                join(EdgeKind.JOINT, f"{name}.{a}", f"{name}.{b}", name)
+            for a, b, ohm in part.joined:
+                join(EdgeKind.JOINT, f"{name}.{a}", f"{name}.{b}", name, ohm)
         for own, other in device.mounts:
             join(EdgeKind.JOINT, f"{name}.{own}" if own else name, other, name)
     for joint in boat.joints:
-        join(EdgeKind.JOINT, joint.start, joint.end, joint.id)
+        join(EdgeKind.JOINT, joint.start, joint.end, joint.id, joint.resistance_ohm)
     for shield in boat.shields or ():
         joins = shield.joins or ()
         for a, b in zip(joins, joins[1:], strict=False):
@@ -159,15 +180,23 @@ def _ties(
         name, part = device.id, device.part
         if isinstance(part, Battery):
             ends = index[f"{name}.pos"], index[f"{name}.neg"]
-            batteries.append(BatteryTie(name, *ends, part.voltage_v, device.bank))
+            cells = (
+                _cell(part.emf_full_v, part.resistance_full_ohm),
+                _cell(part.emf_low_v, part.resistance_low_ohm),
+            )
+            batteries.append(BatteryTie(name, *ends, part.voltage_v, device.bank, *cells))
         elif isinstance(part, Load):
             ends = index[f"{name}.{part.feed_post}"], index[f"{name}.{part.return_post}"]
-            loads.append(LoadTie(name, *ends, part.voltage_v, part.current_a))
+            loads.append(LoadTie(name, *ends, part.voltage_v, part.current_a, part.model))
         elif isinstance(part, Source):
             for end in part.outputs:
                 ends = index[f"{name}.{end.post}"], index[f"{name}.{end.return_post}"]
                 sources.append(SourceTie(name, end.post, *ends, end.max_a, end.voltage_v, end.limited))
             for end in part.inputs:
                 ends = index[f"{name}.{end.post}"], index[f"{name}.{end.return_post}"]
-                loads.append(LoadTie(name, *ends, end.voltage_v, end.max_a))
+                loads.append(LoadTie(name, *ends, end.voltage_v, end.max_a, is_input=True))
     return tuple(batteries), tuple(loads), tuple(sources)
+
+
+def _cell(emf_v: float | None, resistance_ohm: float | None) -> Cell | None:
+    return None if emf_v is None or not resistance_ohm else Cell(emf_v, resistance_ohm)

@@ -33,7 +33,8 @@ class Unmetered:
 class Metering:
     """Hold what one shunt meters in one switch state.
 
-    `is_beside_bank`, `is_turned`: which stud the bank's own links reach. `bypass` is a path
+    `is_beside_bank`, `is_turned`: which stud the bank's own links reach; `other_bank` is another
+    bank that the bank stud faces, if it does not face its own. `bypass` is a path
     from stud to stud beside the shunt, if there is one; then nothing else is named.
     """
 
@@ -41,6 +42,7 @@ class Metering:
     state: SwitchState
     is_beside_bank: bool
     is_turned: bool
+    other_bank: str
     bypass: tuple[str, ...]
     bypass_parts: tuple[str, ...]
     unmetered: tuple[Unmetered, ...]
@@ -65,10 +67,24 @@ def _metering(boat: Boat, network: Network, state: SwitchState, shunt: str, bank
     reaches_sys = path_between(at, sys, bank_posts) is not None
     if bypass is not None:
         words, parts = path_words(network, bat, bypass), tuple(edge.part for edge in bypass)
-        return Metering(shunt, state, reaches_bat or reaches_sys, False, words, parts, ())
-    turned = reaches_sys and not reaches_bat
-    found = () if turned else _unmetered(boat, network, at, bat, shunt, bank)
-    return Metering(shunt, state, reaches_bat or reaches_sys, turned, (), (), found)
+        return Metering(shunt, state, reaches_bat or reaches_sys, False, "", words, parts, ())
+    others = {post: b.bank for b in network.batteries if b.bank != bank for post in (b.pos, b.neg)}
+    found = _unmetered(boat, network, at, bat, shunt, bank)
+    # What draws and charges tells the boat's side: turned round, the bank stud has it; beside the
+    # wrong bank, it does not.
+    faced = "" if reaches_bat or found else _faced(at, bat, others)
+    turned = reaches_sys and not reaches_bat and not faced
+    found = () if turned or faced else found
+    return Metering(shunt, state, reaches_bat or reaches_sys, turned, faced, (), (), found)
+
+
+def _faced(at: list[list[Edge]], bat: int, others: dict[int, str]) -> str:
+    """Return the other bank whose posts the bank stud reaches, or an empty text."""
+    path = path_between(at, bat, others)
+    end = bat
+    for edge in path or ():
+        end = edge.other(end)
+    return "" if path is None else others[end]
 
 
 def _is_mount(edge: Edge) -> bool:

@@ -2,26 +2,47 @@
 
 from __future__ import annotations
 
+from dataclasses import dataclass
 from functools import cached_property
 
 from checker.boat.hull import Boat
 from checker.network.buses import BusFlow, study_buses
-from checker.network.cranking import cranking_conductors
+from checker.network.conditions import Operation, operations
+from checker.network.cranking import bank_conductors, cranking_conductors, take_off_conductors
 from checker.network.demand import BankCurrent, bank_currents
 from checker.network.exposure import ExposureStudy, study_exposure
+from checker.network.flow import Copper
 from checker.network.graph import EdgeKind, Network, build_network
 from checker.network.metering import Metering, study_metering
 from checker.network.potentials import Potentials, study_potentials
 from checker.network.returns import ReturnExposure, study_returns
+from checker.network.solved import SolvedConditions, solve_operations
 from checker.network.states import States, SwitchState, places, study_states
 from checker.network.supply import SupplyWay, study_supply
+
+
+@dataclass(frozen=True, slots=True)
+class Coppers:
+    """Hold the resistivities at which currents, largest faults and smallest faults are reckoned."""
+
+    working: Copper
+    cold: Copper
+    hot: Copper
 
 
 class Studies:
     """Hold a boat, its graph, and what is known about it in every state that must be studied."""
 
-    def __init__(self, boat: Boat) -> None:
+    def __init__(self, boat: Boat, coppers: Coppers | None = None) -> None:
         self.boat = boat
+        self._coppers = coppers
+
+    @property
+    def coppers(self) -> Coppers:
+        """Return the resistivities; the studies of voltages and faults cannot do without them."""
+        if self._coppers is None:
+            raise ValueError("no resistivity was given")
+        return self._coppers
 
     @cached_property
     def network(self) -> Network:
@@ -60,14 +81,24 @@ class Studies:
         return tuple(study_metering(self.boat, self.network, state) for state in self.states.kept)
 
     @cached_property
+    def operations(self) -> tuple[Operation, ...]:
+        """Return every operating condition, ready to be solved."""
+        return operations(self.boat, self.network)
+
+    @cached_property
+    def conditions(self) -> SolvedConditions:
+        """Return every operating condition solved."""
+        return solve_operations(self.network, self.operations, self.coppers.working)
+
+    @cached_property
     def bank_currents(self) -> tuple[BankCurrent, ...]:
         """Return the current of every bank in every condition."""
-        return bank_currents(self.boat, self.network)
+        return bank_currents(self.network, self.operations)
 
     @cached_property
     def supply(self) -> dict[str, SupplyWay]:
         """Return the way of every circuit to its bank in the first normal state."""
-        return study_supply(self.boat, self.network, self.potentials[0])
+        return study_supply(self.boat, self.network, self.potentials[0], self.take_offs)
 
     @cached_property
     def cranking(self) -> frozenset[str]:
@@ -78,6 +109,16 @@ class Studies:
     def places(self) -> list[int]:
         """Return for each post the place it is at: posts with no conductor between them share one."""
         return places(self.network, self.usual.state, (EdgeKind.CONDUCTOR, EdgeKind.BOND, EdgeKind.SHIELD))
+
+    @cached_property
+    def bank_conductors(self) -> frozenset[str]:
+        """Return the conductors that belong to a bank."""
+        return bank_conductors(self.boat, self.network)
+
+    @cached_property
+    def take_offs(self) -> frozenset[str]:
+        """Return the bank conductors, and those that join a bank to its collectors."""
+        return take_off_conductors(self.boat, self.network)
 
     @property
     def usual(self) -> Potentials:

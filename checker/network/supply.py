@@ -31,8 +31,10 @@ class SupplyWay:
     start_back: int
 
 
-def study_supply(boat: Boat, network: Network, potentials: Potentials) -> dict[str, SupplyWay]:
-    """Return the way of every circuit to its bank, by circuit."""
+def study_supply(
+    boat: Boat, network: Network, potentials: Potentials, of_bank: frozenset[str]
+) -> dict[str, SupplyWay]:
+    """Return the way of every circuit to its bank, by circuit; `of_bank` are the bank's own conductors."""
     live = live_edges(network, potentials.state)
     feed = neighbours(network, [i for i in live if not potentials.is_return(network.edges[i].a)])
     # Bonds and shields are no way for load current, though they conduct.
@@ -45,7 +47,7 @@ def study_supply(boat: Boat, network: Network, potentials: Potentials) -> dict[s
         ],
     )  # fmt: skip
     weights = {e.index: e.length_m for e in network.edges if e.kind in CONDUCTING}
-    goals = _bank_posts(boat, network)
+    goals = _bank_posts(boat, network, of_bank)
     outward = shortest_tree(feed, goals, weights)
     homeward = {
         bank: shortest_tree(back, (post for post, owner in goals.items() if owner == bank), weights)
@@ -70,14 +72,14 @@ def _return_posts(network: Network) -> dict[int, int]:
     return posts | {source.out: source.back for source in network.sources}
 
 
-def _bank_posts(boat: Boat, network: Network) -> dict[int, str]:
+def _bank_posts(boat: Boat, network: Network, of_bank: frozenset[str]) -> dict[int, str]:
     """Return the posts at which each bank is taken off: battery posts and ends of bank conductors."""
     posts: dict[int, str] = {}
     for battery in network.batteries:
         posts[battery.pos] = posts[battery.neg] = battery.bank
     for _ in range(3):  # a chain battery - link - collector - link - collector is the longest met
         for conductor in boat.conductors.values():
-            if conductor.role == "bank":
+            if conductor.id in of_bank:
                 a, b = _ends(boat, network, conductor.id)
                 if a in posts or b in posts:
                     bank = posts.get(a) or posts[b]

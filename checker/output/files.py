@@ -11,7 +11,7 @@ from pathlib import Path
 from checker.errors import UsageError
 from checker.finding import Card
 from checker.output.json_report import json_report
-from checker.output.text import fleet_report, hull_report
+from checker.output.text import fleet_report, hull_report, passes_text
 from checker.result.model import FleetResult
 
 FLEET_FILE, JSON_FILE, HULL_FOLDER = "fleet.txt", "result.json", "hulls"
@@ -20,9 +20,12 @@ FLEET_FILE, JSON_FILE, HULL_FOLDER = "fleet.txt", "result.json", "hulls"
 def report_files(result: FleetResult, cards: Mapping[str, Card]) -> dict[str, str]:
     """Return the text of every report by its name under the folder."""
     files = {FLEET_FILE: fleet_report(result, cards), JSON_FILE: json_report(result, cards)}
+    passes: dict[str, str] = {}
     for subject in result.subjects:
         if subject.is_hull:
-            files[f"{HULL_FOLDER}/{subject.id}.txt"] = hull_report(subject, cards)
+            if subject.study not in passes:
+                passes[subject.study] = passes_text(subject.passes)
+            files[f"{HULL_FOLDER}/{subject.id}.txt"] = hull_report(subject, cards, passes[subject.study])
     return files
 
 

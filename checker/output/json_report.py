@@ -11,14 +11,13 @@ from typing import Any
 
 from checker.finding import Card, Outcome, Verdict
 from checker.result.gather import fingerprint
-from checker.result.model import FleetResult, SetUse, Study, SubjectResult, tally
+from checker.result.model import FleetResult, SetUse, Study, SubjectResult
 
 SCHEMA_VERSION = "1"
 
 
 def json_report(result: FleetResult, cards: Mapping[str, Card]) -> str:
     """Return the result as JSON text: keys in a fixed order, numbers rounded to nine digits."""
-    study_outcomes = {study.name: set(study.outcomes) for study in result.studies}
     document: dict[str, Any] = {
         "schema_version": SCHEMA_VERSION,
         "tool": {"name": "fairloom", "version": result.tool_version},
@@ -26,7 +25,7 @@ def json_report(result: FleetResult, cards: Mapping[str, Card]) -> str:
         "clean": result.is_clean,
         "open_errors": result.open_errors,
         "checks": [_Line(_card(card)) for card in cards.values()],
-        "subjects": [_subject(subject, study_outcomes[subject.study]) for subject in result.subjects],
+        "subjects": [_subject(subject) for subject in result.subjects],
         "studies": [_study(study) for study in result.studies],
         "file_findings": [_Line(_outcome(outcome)) for outcome in result.file_outcomes],
         "not_studied": list(result.unstudied),
@@ -47,12 +46,11 @@ def _set_use(use: SetUse) -> _Line:
     return _Line(id=use.id, title=use.title, why=use.why, figures_from_memory=use.from_memory)
 
 
-def _counts(outcomes: tuple[Outcome, ...]) -> _Line:
-    counts = tally(outcomes)
-    return _Line({verdict.value.replace(" ", "_"): counts[verdict] for verdict in Verdict})
+def _counts(subject: SubjectResult) -> _Line:
+    return _Line({verdict.value.replace(" ", "_"): subject.count(verdict) for verdict in Verdict})
 
 
-def _subject(subject: SubjectResult, of_study: set[Outcome]) -> dict[str, Any]:
+def _subject(subject: SubjectResult) -> dict[str, Any]:
     accepted = [
         _Line(
             fingerprint=mark, waiver=a.waiver, reason=a.reason, approved_by=a.approved_by, expires=a.expires,
@@ -60,7 +58,6 @@ def _subject(subject: SubjectResult, of_study: set[Outcome]) -> dict[str, Any]:
         )
         for mark, a in sorted(subject.accepted.items())
     ]  # fmt: skip
-    own = [o for o in subject.outcomes if o not in of_study and o.verdict is not Verdict.ACCEPTED]
     return {
         "id": subject.id,
         "kind": "hull" if subject.is_hull else "option set",
@@ -72,9 +69,9 @@ def _subject(subject: SubjectResult, of_study: set[Outcome]) -> dict[str, Any]:
         "changes": list(subject.changes),
         "study": subject.study,
         "open_errors": subject.open_errors,
-        "counts": _counts(subject.outcomes),
+        "counts": _counts(subject),
         "accepted": accepted,
-        "own_findings": [_Line(_outcome(outcome)) for outcome in own],
+        "own_findings": [_Line(_outcome(outcome)) for outcome in subject.own],
     }
 
 
@@ -82,7 +79,7 @@ def _study(study: Study) -> dict[str, Any]:
     return {
         "name": study.name,
         "limit_sets": [_set_use(use) for use in study.sets],
-        "found": [_Line(_outcome(o)) for o in study.outcomes if o.verdict is not Verdict.PASSED],
+        "found": [_Line(_outcome(outcome)) for outcome in study.news],
         "passed": _passes(study),
     }
 
@@ -90,9 +87,7 @@ def _study(study: Study) -> dict[str, Any]:
 def _passes(study: Study) -> list[dict[str, Any]]:
     """Return the passes by check, limit set and quantity; a place is [value, limit, headroom], or a note."""
     groups: dict[tuple[str, str, str, str, bool], dict[str, Any]] = {}
-    for outcome in study.outcomes:
-        if outcome.verdict is not Verdict.PASSED:
-            continue
+    for outcome in study.passes:
         measure = outcome.measure
         if measure is None:
             groups.setdefault((outcome.check, outcome.limit_set, "", "", False), {})[outcome.part] = outcome.note

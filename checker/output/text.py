@@ -3,15 +3,14 @@
 from __future__ import annotations
 
 from collections import Counter
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
-from checker.checks.check import is_thin
-from checker.finding import Card, Level, Outcome, Verdict
+from checker.finding import Card, Outcome, Verdict
 from checker.output.lines import finding_lines, measure_words, same_fault, set_lines
 from checker.reading.words import flat
 from checker.result.gather import fingerprint, natural
-from checker.result.model import Acceptance, FleetResult, SubjectResult, tally
+from checker.result.model import Acceptance, FleetResult, SubjectResult
 
 CAUTION = (
     "This report holds wiring data against the limits it names. It certifies nothing: local codes, the licensed "
@@ -24,14 +23,13 @@ def verdict_words(subject: SubjectResult) -> str:
     """Tell how a hull or option set came out, in a few words."""
     if subject.open_errors:
         return f"FAILS with {count(subject.open_errors, 'open error')}"
-    counts = tally(subject.outcomes)
     extras = [
         count(n, word)
         for n, word in (
-            (sum(o.verdict is Verdict.FINDING for o in subject.outcomes), "warning or note"),
-            (counts[Verdict.ACCEPTED], "accepted finding"),
-            (counts[Verdict.NOT_ASSESSED], "place not assessed"),
-            (thin_count(subject), "thin margin"),
+            (subject.count(Verdict.FINDING), "warning or note"),
+            (subject.count(Verdict.ACCEPTED), "accepted finding"),
+            (subject.count(Verdict.NOT_ASSESSED), "place not assessed"),
+            (subject.thin, "thin margin"),
         )
         if n
     ]
@@ -47,14 +45,15 @@ def count(number: int, word: str) -> str:
     return f"{number} {plurals.get(word, word + 's')}"
 
 
-def thin_count(subject: SubjectResult) -> int:
-    """Count the passes with little headroom."""
-    return sum(o.verdict is Verdict.PASSED and is_thin(o.measure) for o in subject.outcomes)
+def hull_report(subject: SubjectResult, cards: Cards, passes: str | None = None) -> str:
+    """Return the text report of one hull or option set; `passes` is its last part where that is written already."""
+    told = passes_text(subject.passes) if passes is None else passes
+    return "\n".join([*_head(subject), "", *_news(subject, cards), told])
 
 
-def hull_report(subject: SubjectResult, cards: Cards) -> str:
-    """Return the text report of one hull or option set."""
-    return "\n".join([*_head(subject), "", *_body(subject, cards), ""])
+def passes_text(passes: Sequence[Outcome]) -> str:
+    """Return the part of a report that tells what passed; alike hulls have it in common."""
+    return "\n".join([*_exemptions(passes), *_looked_at(passes), *_measured(passes), ""])
 
 
 def _head(subject: SubjectResult) -> Iterator[str]:
@@ -70,30 +69,25 @@ def _head(subject: SubjectResult) -> Iterator[str]:
     yield f"caution: {CAUTION}"
 
 
-def _body(subject: SubjectResult, cards: Cards) -> Iterator[str]:
-    counts = tally(subject.outcomes)
+def _news(subject: SubjectResult, cards: Cards) -> Iterator[str]:
     yield "totals"
     for verdict in Verdict:
-        yield f"  {verdict.value}: {counts[verdict]}"
-    yield f"  passed with thin margin: {thin_count(subject)}"
+        yield f"  {verdict.value}: {subject.count(verdict)}"
+    yield f"  passed with thin margin: {subject.thin}"
     for verdict, heading in (
         (Verdict.FINDING, "findings"), (Verdict.ACCEPTED, "accepted findings"), (Verdict.NOT_ASSESSED, "not assessed"),
     ):  # fmt: skip
         blocks: dict[tuple[object, ...], list[Outcome]] = {}
-        for outcome in subject.outcomes:
+        for outcome in subject.news:
             if outcome.verdict is verdict:
                 blocks.setdefault(same_fault(outcome), []).append(outcome)
         yield from ("", heading if blocks else f"{heading}: none")
         accepted = subject.accepted if verdict is Verdict.ACCEPTED else {}
         for block in blocks.values():
             yield from finding_lines(block, cards[block[0].check], "", accepted)
-    passes = [o for o in subject.outcomes if o.verdict is Verdict.PASSED]
-    yield from _exemptions(passes)
-    yield from _looked_at(passes)
-    yield from _measured(passes)
 
 
-def _exemptions(passes: list[Outcome]) -> Iterator[str]:
+def _exemptions(passes: Sequence[Outcome]) -> Iterator[str]:
     """Print every exemption used: what it frees from which rule, and by which clause."""
     used = sorted(
         {(natural(o.part), o.part, o.check, o.limit_set, o.note) for o in passes if o.measure is None and o.note}
@@ -103,7 +97,7 @@ def _exemptions(passes: list[Outcome]) -> Iterator[str]:
         yield f"  {flat(part)} {check} {limit_set}: {flat(note)}"
 
 
-def _looked_at(passes: list[Outcome]) -> Iterator[str]:
+def _looked_at(passes: Sequence[Outcome]) -> Iterator[str]:
     """Count the passes without headroom to tell: those with no figure, and those on a row of sizes."""
     counts = Counter((o.check, o.limit_set) for o in passes if not _has_headroom(o))
     yield from ("", "passed without headroom to tell, by check")
@@ -115,7 +109,7 @@ def _has_headroom(outcome: Outcome) -> bool:
     return outcome.measure is not None and not outcome.measure.is_stepped
 
 
-def _measured(passes: list[Outcome]) -> Iterator[str]:
+def _measured(passes: Sequence[Outcome]) -> Iterator[str]:
     """Print every measured pass: part, check, value of limit, headroom."""
     yield from ("", "passed with headroom, by part")
     for outcome in passes:
@@ -165,18 +159,16 @@ def fleet_verdict(result: FleetResult) -> str:
 
 def fleet_totals(result: FleetResult) -> Iterator[str]:
     """Print what was looked at, over all hulls and option sets, alike ones counted once each."""
-    outcomes = [o for s in result.subjects for o in s.outcomes] + list(result.file_outcomes)
-    counts = tally(outcomes)
-    errors = sum(o.verdict is Verdict.FINDING and o.level is Level.ERROR for o in outcomes)
+    findings = sum(s.count(Verdict.FINDING) for s in result.subjects) + len(result.file_outcomes)
     yield f"hulls: {sum(s.is_hull for s in result.subjects)}"
     yield f"option sets: {sum(not s.is_hull for s in result.subjects)}"
     yield f"distinct boats studied: {len(result.studies)}"
-    yield f"open errors: {errors}"
-    yield f"open warnings and notes: {counts[Verdict.FINDING] - errors}"
-    yield f"accepted findings: {counts[Verdict.ACCEPTED]}"
-    yield f"places not assessed: {counts[Verdict.NOT_ASSESSED]}"
-    yield f"places passed: {counts[Verdict.PASSED]}"
-    yield f"of these with thin margin: {sum(thin_count(s) for s in result.subjects)}"
+    yield f"open errors: {result.open_errors}"
+    yield f"open warnings and notes: {findings - result.open_errors}"
+    yield f"accepted findings: {sum(s.count(Verdict.ACCEPTED) for s in result.subjects)}"
+    yield f"places not assessed: {sum(s.count(Verdict.NOT_ASSESSED) for s in result.subjects)}"
+    yield f"places passed: {sum(len(s.passes) for s in result.subjects)}"
+    yield f"of these with thin margin: {sum(s.thin for s in result.subjects)}"
     uses = sorted({use for s in result.subjects for use in s.sets}, key=lambda use: (use.id, use.why))
     yield from set_lines(uses)
 
@@ -206,7 +198,7 @@ def grouped(result: FleetResult, verdict: Verdict) -> list[Block]:
         if outcome.verdict is verdict:
             on[(outcome, None)] = []
     for subject in result.subjects:
-        for outcome in subject.outcomes:
+        for outcome in subject.news:
             if outcome.verdict is verdict:
                 acceptance = subject.accepted.get(fingerprint(outcome)) if verdict is Verdict.ACCEPTED else None
                 on.setdefault((outcome, acceptance), []).append(subject.id)

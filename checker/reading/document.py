@@ -7,6 +7,7 @@ scalars are resolved here. What a yard could trip over is a fault with file, lin
 
 from __future__ import annotations
 
+import math
 import re
 from dataclasses import dataclass, field
 from typing import Any
@@ -14,24 +15,25 @@ from typing import Any
 import yaml
 
 from checker.finding import Path, Span
+from checker.reading.words import shown
 
 LARGEST_FILE_BYTES = 4_000_000
 DEEPEST_NESTING = 64
 LONGEST_INTEGER = 18
+LONGEST_TOLD_AGAIN = 500_000  # the pure parser takes seconds for more
 
 _Loader: Any = getattr(yaml, "CSafeLoader", yaml.SafeLoader)
 
 _NULL = frozenset(("null", "Null", "NULL", "~"))
 _TRUE = frozenset(("true", "True", "TRUE"))
 _FALSE = frozenset(("false", "False", "FALSE"))
-_INTEGER = re.compile(r"[-+]?[0-9]+\Z")
-_OCTAL_OR_HEX = re.compile(r"0o[0-7]+\Z|0x[0-9a-fA-F]+\Z")
+_INTEGER = re.compile(r"[-+]?[0-9]+\Z|0o[0-7]+\Z|0x[0-9a-fA-F]+\Z")
 _FLOAT = re.compile(r"[-+]?(\.[0-9]+|[0-9]+(\.[0-9]*)?)([eE][-+]?[0-9]+)?\Z")
 _NOT_FINITE = re.compile(r"[-+]?\.(inf|Inf|INF)\Z|\.(nan|NaN|NAN)\Z")
 _LEADING_ZERO = re.compile(r"[-+]?0[0-9]+\Z")
-_STRANGE_CHARACTER = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\x7f\x80-\x84\x86-\x9f\ufffe\uffff]")
+_STRANGE_CHARACTER = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\x7f\x80-\x84\x86-\x9f\ufeff\ufffe\uffff]")
 _STRANGE_LINE_BREAK = re.compile("\r(?!\n)|[\x85\u2028\u2029]")
-_TAB = re.compile(r"^[ ]*\t|^[^#\"'\t]*[:,?-][ ]*\t", re.MULTILINE)
+_NO_CHARACTER = re.compile(r"\\(?:u|U0000)[dD][89a-fA-F]|\\U(?!000|0010)")
 
 
 @dataclass(frozen=True, slots=True)
@@ -98,7 +100,7 @@ def _decode(content: bytes, document: Document) -> str | None:
         return None
     strange = _STRANGE_CHARACTER.search(text)
     if strange:
-        fault(text[: strange.start()], f"control character U+{ord(strange[0]):04X}", "remove it")
+        fault(text[: strange.start()], f"character U+{ord(strange[0]):04X}, which cannot be seen", "remove it")
     broken = _STRANGE_LINE_BREAK.search(text)
     if broken:
         name = f"U+{ord(broken[0]):04X}"
@@ -107,9 +109,12 @@ def _decode(content: bytes, document: Document) -> str | None:
     directive = re.search(r"^%", text, re.MULTILINE) if "%" in text else None
     if directive:
         fault(text[: directive.start()], "a line that starts with %: directives are not read", "remove it")
-    tab = _TAB.search(text) if "\t" in text else None
-    if tab:
-        fault(text[: tab.end() - 1], "tab character; YAML is indented with spaces", "replace it by spaces")
+    before, tab, _ = text.partition("\t")
+    if tab:  # everywhere, since no two parsers agree on where a tab may stand
+        fault(before, "tab character; YAML is indented with spaces", "replace it by spaces")
+    escape = _NO_CHARACTER.search(text) if "\\" in text else None
+    if escape:
+        fault(text[: escape.start()], f"{escape[0]}… is the escape of no character", "write the character itself")
     return None if document.faults else text
 
 
@@ -136,14 +141,26 @@ class _Composer:
                         return
                 elif not self._take(event):
                     return
-        except yaml.MarkedYAMLError as error:
-            mark = error.problem_mark or error.context_mark
-            line, column = (mark.line + 1, mark.column + 1) if mark else (1, 1)
-            problem = f"this is not YAML: {error.problem or error}"
-            self._add("unreadable-file", Span(self._file, line, column), problem,
-                      "look for a missing quote, colon or indentation just before this place")  # fmt: skip
         except yaml.YAMLError as error:
-            self._add("unreadable-file", Span(self._file, 1, 1), f"this is not YAML: {error}")
+            is_told = len(text) <= LONGEST_TOLD_AGAIN and self._loader is not yaml.SafeLoader and self._told_again(text)
+            if not is_told:
+                self._syntax_fault(error)
+
+    def _told_again(self, text: str) -> bool:
+        """Let the pure parser tell a syntax error: then it stands at one place, whichever parser there is."""
+        other = Document(self._file)
+        _Composer(other, yaml.SafeLoader).run(text)
+        if other.faults:
+            self._document.data, self._document.places, self._document.raw = other.data, other.places, other.raw
+            self._document.faults = other.faults
+        return bool(other.faults)
+
+    def _syntax_fault(self, error: Any) -> None:
+        mark = getattr(error, "problem_mark", None) or getattr(error, "context_mark", None)
+        line, column = (mark.line + 1, mark.column + 1) if mark else (1, 1)
+        problem = f"this is not YAML: {getattr(error, 'problem', None) or error}"
+        self._add("unreadable-file", Span(self._file, line, column), problem,
+                  "look for a missing quote, colon or indentation just before this place")  # fmt: skip
 
     def _take(self, event: Any) -> bool:
         """Take one event; False where reading on would make no sense."""
@@ -157,19 +174,19 @@ class _Composer:
             self._open.pop()
             self._key.pop()
         elif isinstance(event, yaml.AliasEvent):
-            self._fault(event, "unreadable-file", f"alias *{event.anchor}: a value is written where it belongs",
-                        "write the value out")  # fmt: skip
+            message = f"alias *{shown(str(event.anchor))}: a value is written where it belongs"
+            self._fault(event, "unreadable-file", message, "write the value out")
             return False
         return True
 
     def _refused(self, event: Any) -> bool:
         if event.anchor is not None:
-            self._fault(event, "unreadable-file", f"anchor &{event.anchor}: aliases are not read",
+            self._fault(event, "unreadable-file", f"anchor &{shown(event.anchor)}: aliases are not read",
                         "write the value out where it is needed")  # fmt: skip
             return True
         if event.tag is not None:
             tag = str(event.tag).replace("tag:yaml.org,2002:", "!!")
-            self._fault(event, "unreadable-file", f"tag {tag}: tags are not read", "remove the tag")
+            self._fault(event, "unreadable-file", f"tag {shown(tag)}: tags are not read", "remove the tag")
             return True
         return False
 
@@ -195,18 +212,23 @@ class _Composer:
         text: str = event.value
         if not self._wants_key():
             plain = event.implicit[0]
-            value: Any = self._resolved(text, span) if plain else text
+            value: Any = self._plain(text, span) if plain else text
             path = self._put(value, span)
             if plain and value is not text:
                 self._document.raw[path] = text
             return
         path, container = self._open[-1]
+        if event.implicit[0] and text == "":
+            self._add("bad-value", span, "a field without a name", "name it, or remove it")
+        elif event.implicit[0] and self._resolved(text, span) is not text:
+            message = f"the field's name {shown(text)} reads as a number, true/false or null, not as text"
+            self._add("bad-value", span, message, f'write "{shown(text)}"')
         if text == "<<":
             self._add("unreadable-file", span, "merge key <<: fields are written where they belong",
                       "write the fields out")  # fmt: skip
         if text in container:
             first = self._document.places[(*path, text)][0]
-            self._add("repeated-key", span, f"“{text}” is written twice here, first in line {first.line}",
+            self._add("repeated-key", span, f"“{shown(text)}” is written twice here, first in line {first.line}",
                       "keep one of them")  # fmt: skip
         self._key[-1] = (text, span)
 
@@ -231,11 +253,19 @@ class _Composer:
             self._document.places[here] = (span, span)
         return here
 
+    def _plain(self, text: str, span: Span) -> Any:
+        """Give a plain value its meaning; where there is none, tell so at the field, on which all parsers agree."""
+        if text:
+            return self._resolved(text, span)
+        key, at = (self._key[-1] if self._key else None) or ("", span)
+        remedy = "write the value, or `null` to remove the field"
+        if key[:1].isdigit():
+            remedy = "write decimals with a point: inside braces a comma parts two fields"
+        self._add("bad-value", at, "the value is empty", remedy)
+        return None
+
     def _resolved(self, text: str, span: Span) -> Any:
         """Give a plain scalar its YAML 1.2 core meaning."""
-        if text == "":
-            self._add("bad-value", span, "the value is empty", "write the value, or `null` to remove the field")
-            return None
         if text[0] not in "-+.0123456789~ntfNTF":
             return text
         if text in _NULL:
@@ -251,18 +281,21 @@ class _Composer:
             self._add("bad-value", span, f"“{text}” is no figure that can be checked", "write a finite quantity")
             return text
         if _LEADING_ZERO.match(text):
-            hint = f"{len(text)}/0 AWG" if set(text) == {"0"} else f'"{text}"'
-            self._add("bad-value", span, f"“{text}” starts with a zero, which programs read as different numbers",
-                      f"write {hint}")  # fmt: skip
+            hint = f"{len(text)}/0 AWG" if text in ("00", "000", "0000") else f'"{shown(text)}"'
+            message = f"“{shown(text)}” starts with a zero, which programs read as different numbers"
+            self._add("bad-value", span, message, f"write {hint}")
             return text
         if _INTEGER.match(text):
-            if len(text.lstrip("+-")) > LONGEST_INTEGER:
-                self._add("bad-value", span, f"a number of {len(text)} digits", "write a shorter one")
+            digits = len(text.lstrip("+-"))
+            if digits > LONGEST_INTEGER:
+                self._add("bad-value", span, f"a number of {digits} digits", "write a shorter one")
                 return text
-            return int(text)
-        if _OCTAL_OR_HEX.match(text):
-            return int(text, 0) if len(text) <= LONGEST_INTEGER else text
-        return float(text) if _FLOAT.match(text) else text
+            return int(text, 0)
+        value = float(text) if _FLOAT.match(text) else text
+        if value in (math.inf, -math.inf):
+            self._add("bad-value", span, f"“{shown(text)}” is larger than any figure that can be checked",
+                      "write it in quotes if it is text")  # fmt: skip
+        return value
 
     def _fault(self, event: Any, check: str, message: str, remedy: str = "") -> None:
         mark = event.start_mark

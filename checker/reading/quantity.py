@@ -9,7 +9,8 @@ import re
 from enum import Enum
 from functools import lru_cache
 
-from checker.units import METRE_PER_FOOT, METRE_PER_INCH, Size, awg_number, awg_size, awg_text
+from checker.reading.words import shown
+from checker.units import AWG_SMALLEST, METRE_PER_FOOT, METRE_PER_INCH, Size, awg_size
 
 
 class Dimension(Enum):
@@ -66,9 +67,12 @@ _OTHER_SPELLINGS = {
 _NUMBER = r"-?[0-9]{1,9}(?:\.[0-9]{1,9})?"
 _ONE = re.compile(rf"({_NUMBER}) ?([^\s0-9.,;-]\S*)\Z")
 _FEET_INCHES = re.compile(r"([0-9]{1,6}) ?ft ([0-9]{1,2}(?:\.[0-9]{1,6})?) ?in\Z")
-_AUGHTS = re.compile(r"(?:([1-4])/0|(0{1,4})) ?AWG\Z")
-_COMMA = re.compile(r"-?[0-9]+,[0-9]+")
-_BARE = re.compile(r"[-+]?[0-9.,_]+(?:[eE][-+]?[0-9]+)?\Z")
+_GAUGE = re.compile(r"(?:([1-4])/0|(0{1,4}|[1-9][0-9]?)) ?AWG\Z")
+_GAUGE_LAST = re.compile(r"(?:[Aa][Ww][Gg]|#|[Nn]o\.?) ?(0{1,4}|[1-4]/0|[1-9][0-9]?)\Z")
+_FEET_INCHES_SIGNS = re.compile(r"([0-9]{1,6}) ?['\u2032] ?([0-9]{1,2}(?:\.[0-9]{1,6})?) ?[\"\u2033]\Z")
+_COMMA = re.compile(r"[0-9],[0-9]")
+_DECIMAL_COMMA = re.compile(r"-?[0-9]+,(?![0-9]{3}\b)[0-9]+(?![0-9.,])")
+_BARE = re.compile(r"[-+]?[0-9.,_/]+(?:[eE][-+]?[0-9]+)?\Z")
 
 
 @lru_cache(maxsize=20_000)
@@ -82,12 +86,12 @@ def read_number(text: str, dimension: Dimension) -> float:
     if feet:
         inches = float(feet[2])
         if inches >= 12:
-            raise QuantityError(f"“{text}” has 12 in or more beside the feet; write whole feet first")
+            raise QuantityError(f"“{shown(text)}” has 12 in or more beside the feet; write whole feet first")
         return (float(feet[1]) * 12 + inches) * METRE_PER_INCH
     number, unit = _split(text, dimension)
     value = number * UNITS[dimension][unit]
     if value < 0 and dimension is not Dimension.TEMPERATURE:
-        raise QuantityError(f"“{text}” is below zero, which no {dimension.value} here can be")
+        raise QuantityError(f"“{shown(text)}” is below zero, which no {dimension.value} here can be")
     return value
 
 
@@ -98,21 +102,17 @@ def read_size(text: str) -> Size:
     Raises:
         QuantityError: If the text is no size; the message says what to write.
     """
-    aughts = _AUGHTS.match(text)
-    if aughts:
-        name = "0" * int(aughts[1]) if aughts[1] else aughts[2]
-        return awg_size(name)
+    gauge = _GAUGE.match(text)
+    if gauge:
+        name = "0" * int(gauge[1]) if gauge[1] else gauge[2]
+        if set(name) == {"0"} or int(name) <= AWG_SMALLEST:
+            return awg_size(name)
     number, unit = _split(text, Dimension.SIZE)
-    if unit == "mm2":
-        if number <= 0:
-            raise QuantityError(f"“{text}” is no area of copper")
-        return Size(f"{number:g} mm2", number)
-    try:
-        name = f"{number:g}"
-        awg_number(name)
-    except ValueError as error:
-        raise QuantityError(f"“{text}” is no wire gauge; write e.g. 6 AWG or 2/0 AWG") from error
-    return Size(awg_text(name), awg_size(name).area_mm2, name)
+    if unit == "AWG":
+        raise QuantityError(f"“{shown(text)}” is no wire gauge; write e.g. 6 AWG or 2/0 AWG")
+    if number <= 0:
+        raise QuantityError(f"“{shown(text)}” is no area of copper")
+    return Size(f"{number:g} mm2", number)
 
 
 def _split(text: str, dimension: Dimension) -> tuple[float, str]:
@@ -126,21 +126,35 @@ def _split(text: str, dimension: Dimension) -> tuple[float, str]:
 def _complaint(text: str, match: re.Match[str] | None, dimension: Dimension) -> str:
     """Say what is wrong with a text that should be a quantity."""
     example = EXAMPLES[dimension]
-    comma = _COMMA.search(text)
-    if comma:
-        return f"“{text}” has a decimal comma; write {text.replace(comma[0], comma[0].replace(',', '.'))}"
-    if _BARE.match(text):
-        return f"“{text}” has no unit; a {dimension.value} carries its unit, e.g. {example}"
-    if match is None:
-        return f"“{text}” is not a {dimension.value}; write e.g. {example}"
+    quoted = f"“{shown(text)}”"
+    if "," not in text and _BARE.match(text):
+        return f"{quoted} has no unit; a {dimension.value} carries its unit, e.g. {example}"
+    habit = _habit(text, dimension, quoted)
+    if habit or match is None:
+        return habit or f"{quoted} is not a {dimension.value}; write e.g. {example}"
     known = UNITS[dimension]
     unit = match[2]
     meant = _OTHER_SPELLINGS.get(unit.lower())
     if meant not in known:
-        meant = next((u for u in known if u.lower() == unit.lower()), None)
+        # A capital M may stand for a million; then it is not for us to say that a thousandth is meant.
+        meant = next((u for u in known if u.lower() == unit.lower() and (unit[0] != "M" or len(u) == 1)), None)
     if meant:
-        return f"unit “{unit}” is spelled {meant} here; write {match[1]} {meant}"
+        return f"unit “{shown(unit)}” is spelled {meant} here; write {match[1]} {meant}"
     for other, units in UNITS.items():
         if unit in units:
-            return f"“{text}” is a {other.value}, but a {dimension.value} is due here, e.g. {example}"
-    return f"unknown unit “{unit}”; a {dimension.value} is written in {', '.join(known)}, e.g. {example}"
+            return f"{quoted} is a {other.value}, but a {dimension.value} is due here, e.g. {example}"
+    return f"unknown unit “{shown(unit)}”; a {dimension.value} is written in {', '.join(known)}, e.g. {example}"
+
+
+def _habit(text: str, dimension: Dimension, quoted: str) -> str | None:
+    """Tell a spelling that people are used to, with the one that is due here."""
+    if "," in text and _COMMA.search(text):
+        if _DECIMAL_COMMA.match(text):
+            return f"{quoted} has a decimal comma; write {shown(text.replace(',', '.', 1))}"
+        example = EXAMPLES[dimension]
+        return f"{quoted} has a comma; decimals follow a point and nothing parts thousands, e.g. {example}"
+    signs = _FEET_INCHES_SIGNS.match(text)
+    if signs and dimension is Dimension.LENGTH:
+        return f"{quoted} is spelled {signs[1]} ft {signs[2]} in here"
+    gauge = _GAUGE_LAST.match(text)
+    return f"{quoted} is spelled {gauge[1]} AWG here" if gauge and dimension is Dimension.SIZE else None

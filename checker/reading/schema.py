@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import json
 import pathlib
+import re
 from collections.abc import Iterable, Iterator
 from functools import cache
 from typing import Any
@@ -76,9 +77,16 @@ def _pointed(name: str, pointer: str, trail: tuple[str, ...]) -> Any:
 def _validator(kind: str) -> Any:
     # Imported here: it takes longer to load than the rest of the program together, and
     # `fairloom --version` must not wait for it.
-    from jsonschema import Draft202012Validator
+    from jsonschema import Draft202012Validator, ValidationError
+    from jsonschema.validators import extend
 
-    return Draft202012Validator(self_contained(kind))
+    def pattern(_: Any, wanted: str, text: Any, __: Any) -> Iterator[Any]:
+        # In Python alone `$` lets a final line break pass; an editor refuses it.
+        if isinstance(text, str) and (text.endswith("\n") or not re.search(wanted, text)):
+            yield ValidationError("pattern")
+
+    extended: Any = extend
+    return extended(Draft202012Validator, {"pattern": pattern})(self_contained(kind))
 
 
 def schema_faults(document: Document, kind: str) -> list[Fault]:
@@ -91,17 +99,16 @@ def schema_faults(document: Document, kind: str) -> list[Fault]:
 def _told(document: Document, error: Any, errors: list[Any]) -> Iterator[Fault]:
     """Tell one validator error in the yard's words."""
     path: Path = tuple(error.absolute_path)
+    if "propertyNames" in error.absolute_schema_path:
+        yield _bad_name(document, path, error)
+        return
     match error.validator:
         case "additionalProperties" | "unevaluatedProperties":
             yield from _unknown_fields(document, path, error, errors)
         case "required":
             yield from _missing_fields(document, path, error)
-        case "propertyNames":
-            yield from _bad_names(document, path, error)
         case _:
-            fault = _bad_value(document, path, error)
-            if fault is not None:
-                yield fault
+            yield _bad_value(document, path, error)
 
 
 def _unknown_fields(document: Document, path: Path, error: Any, errors: list[Any]) -> Iterator[Fault]:
@@ -155,40 +162,52 @@ def _example_of(schema: Any, name: str) -> str:
     return f", e.g. `{name}: {examples[0]}`" if examples and not isinstance(examples[0], (dict, list)) else ""
 
 
-def _bad_names(document: Document, path: Path, error: Any) -> Iterator[Fault]:
-    key = error.instance
-    at = _key_span(document, (*path, key))
-    yield Fault("bad-value", at, f"“{shown(key)}” is not a plain id",
-                "use letters, digits, - and _, at most 40 characters, starting with a letter or digit")  # fmt: skip
+def _bad_name(document: Document, path: Path, error: Any) -> Fault:
+    """Tell a field whose own name is no id or quantity, at the name."""
+    key, at = error.instance, _key_span(document, (*path, error.instance))
+    dimension = error.schema.get("x-quantity")
+    fault = _bad_quantity(key, Dimension(dimension), shown(str(path[-1])), at) if dimension else None
+    remedy = error.schema.get("patternErrorMessage", "")
+    return fault or Fault("bad-value", at, f"“{shown(key)}” cannot be a name here", remedy)
 
 
-def _bad_value(document: Document, path: Path, error: Any) -> Fault | None:
-    """Tell a fault of a single value; None where it is no fault by our own reading."""
+def _bad_value(document: Document, path: Path, error: Any) -> Fault:
+    """Tell a fault of a single value."""
     at = document.places.get(path, (Span(document.file, 1, 1),) * 2)[1]
-    value, schema = error.instance, error.schema
-    name = shown(str(path[-1])) if path else "the file"
-    dimension = schema.get("x-quantity") if isinstance(schema, dict) else None
+    value, schema, rule = error.instance, error.schema, error.validator
+    name = _named(path)
     written = document.raw.get(path, value if isinstance(value, str) else None)
-    if dimension and isinstance(written, str) and value is not None:
-        return _bad_quantity(written, Dimension(dimension), name, at)
-    if error.validator == "enum":
-        choices = [str(choice) for choice in error.validator_value]
-        meant = nearest(str(value), choices)
+    if written is not None and value is not None and "x-quantity" in schema:
+        fault = _bad_quantity(written, Dimension(schema["x-quantity"]), shown(str(path[-1])), at)
+        if fault is not None:
+            return fault
+    choices = [str(choice) for choice in schema.get("enum", ())]
+    if choices and written is not None and value is not None:
+        meant = nearest(written, choices)
         remedy = f"did you mean “{meant}”?" if meant else f"one of: {', '.join(choices)}"
-        return Fault("bad-value", at, f"“{name}” cannot be “{shown(str(value))}”", remedy)
-    if error.validator == "pattern":
-        remedy = schema.get("patternErrorMessage", "") if isinstance(schema, dict) else ""
-        return Fault("bad-value", at, f"“{name}” cannot be “{shown(str(value))}”", remedy)
-    if error.validator == "type":
-        return Fault("bad-value", at, *_wrong_type(name, value, written, error.validator_value))
-    return Fault("bad-value", at, f"“{name}” does not fit: {_rule_words(error)}")
+        return Fault("bad-value", at, f"{name} cannot be “{shown(written)}”", remedy)
+    if value is None or rule == "type" or (written is None and rule in ("enum", "const")):
+        wanted = error.validator_value if rule == "type" else schema.get("type", "string")
+        return Fault("bad-value", at, *_wrong_type(name, value, written, wanted))
+    if rule == "pattern":
+        remedy = schema.get("patternErrorMessage", "")
+        return Fault("bad-value", at, f"{name} cannot be “{shown(str(written))}”", remedy)
+    return Fault("bad-value", at, f"{name} does not fit: {_rule_words(error)}")
+
+
+def _named(path: Path) -> str:
+    """Name a value by its field: “options”, entry 2 of “options”."""
+    if not path:
+        return "the file"
+    step = path[-1]
+    return f"entry {step + 1} of {_named(path[:-1])}" if isinstance(step, int) else f"“{shown(step)}”"
 
 
 def _bad_quantity(written: str, dimension: Dimension, name: str, at: Span) -> Fault | None:
     try:
         read_size(written) if dimension is Dimension.SIZE else read_number(written, dimension)
     except QuantityError as error:
-        return Fault("bad-value", at, f"{name}: {shown(str(error))}")
+        return Fault("bad-value", at, f"{name}: {error}")
     return None
 
 
@@ -202,20 +221,20 @@ def _wrong_type(name: str, value: Any, written: str | None, wanted: str | list[s
     kinds = [wanted] if isinstance(wanted, str) else wanted
     words = " or ".join(_TYPE_WORDS[kind] for kind in kinds)
     if value is None:
-        return f"“{name}” is removed by null here, where there is nothing to remove", f"write {words}"
+        return f"{name} is removed by null here, where there is nothing to remove", f"write {words}"
     if "string" in kinds and written is not None:
-        return f"“{name}” is text, but {shown(written)} reads as a number or as true/false", f'write "{shown(written)}"'
-    if kinds == ["boolean"]:
-        return f"“{name}” is true or false, not “{shown(str(value))}”", "write true or false"
-    return f"“{name}” must be {words}", ""
+        return f"{name} is text, but {shown(written)} reads as a number or as true/false", f'write "{shown(written)}"'
+    if kinds == ["boolean"] and written is not None:
+        return f"{name} is true or false, not “{shown(written)}”", "write true or false"
+    return f"{name} must be {words}", ""
 
 
 def _rule_words(error: Any) -> str:
     """Say a rarer rule without showing a whole object."""
     limit = error.validator_value
     words = {
-        "minimum": f"at least {limit}", "maximum": f"at most {limit}", "minItems": f"at least {limit} entries",
-        "maxItems": f"at most {limit} entries", "uniqueItems": "no entry twice", "minProperties": f"at least {limit} fields",
+        "minimum": f"at least {limit}", "maximum": f"at most {limit}", "minItems": f"at least {limit} in the list",
+        "maxItems": f"at most {limit} in the list", "uniqueItems": "no entry twice", "minProperties": "not empty",
         "minLength": "not empty", "maxLength": f"at most {limit} characters", "const": f"only “{limit}” here",
         "not": "this field does not belong together with another field here",
     }  # fmt: skip

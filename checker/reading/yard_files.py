@@ -6,6 +6,7 @@ paths, never of the directory, so that reports do not depend on the machine.
 
 from __future__ import annotations
 
+import os
 import re
 from collections.abc import Iterator
 from dataclasses import dataclass, field
@@ -15,10 +16,9 @@ from checker.errors import FleetNotFoundError
 from checker.finding import Span
 from checker.reading.document import Document, Fault, compose
 from checker.reading.schema import schema_faults
-from checker.reading.words import nearest
+from checker.reading.words import nearest, shown
 
 YARD_FILE = "yard.yaml"
-WAIVERS_FILE = "waivers.yaml"
 _PLACES = (
     ("yard", re.compile(r"yard\.yaml\Z")),
     ("waivers", re.compile(r"waivers\.yaml\Z")),
@@ -70,6 +70,8 @@ def read_yard(folder: Path) -> YardFiles:
             continue
         content = _content(folder, path, name, files)
         if content is None:
+            # It stays among the others as a faulty one, so that what rests on it is not studied without it.
+            _file_in(files, kind, owner, Document(name))
             continue
         files.bytes_read += len(content)
         document = compose(content, name)
@@ -81,11 +83,24 @@ def read_yard(folder: Path) -> YardFiles:
 
 def _yaml_files(folder: Path, files: YardFiles) -> Iterator[tuple[str, Path]]:
     """Yield name and path of each YAML file of the yard, sorted by name."""
-    found = [path for path in folder.iterdir() if path.suffix in (".yaml", ".yml") and not path.name.startswith(".")]
+    found = [path for path in folder.iterdir() if _is_yaml(path) and not path.name.startswith(".")]
     for sub in _FOLDERS:
         if (folder / sub).is_dir():
-            found += [path for path in (folder / sub).rglob("*") if path.suffix in (".yaml", ".yml")]
-    yield from sorted((path.relative_to(folder).as_posix(), path) for path in found)
+            inside = list((folder / sub).rglob("*"))
+            found += [path for path in inside if _is_yaml(path)]
+            for link in (path for path in inside if path.is_symlink() and path.is_dir()):
+                at = Span(_name_of(folder, link), 1, 1)
+                files.faults.append(Fault("unreadable-file", at, "a linked folder is not read", "copy the files in"))
+    yield from sorted((_name_of(folder, path), path) for path in found)
+
+
+def _is_yaml(path: Path) -> bool:
+    return path.suffix.lower() in (".yaml", ".yml")
+
+
+def _name_of(folder: Path, path: Path) -> str:
+    """Return a path as text that is alike under every locale and can always be written."""
+    return os.fsencode(path.relative_to(folder).as_posix()).decode("utf-8", "backslashreplace")
 
 
 def _kind_of(name: str) -> tuple[str | None, str]:
@@ -97,10 +112,11 @@ def _kind_of(name: str) -> tuple[str | None, str]:
 
 
 def _misplaced(name: str) -> Fault:
-    if name.endswith(".yml"):
-        return Fault("unreadable-file", Span(name, 1, 1), "files of a yard end in .yaml", f"rename it to {name[:-4]}.yaml")
-    meant = nearest(name, (YARD_FILE, WAIVERS_FILE))
-    remedy = f"did you mean {meant}?" if meant else (
+    if not name.endswith(".yaml"):
+        remedy = f"rename it to {shown(name.rpartition('.')[0])}.yaml"
+        return Fault("unreadable-file", Span(name, 1, 1), "files of a yard end in .yaml", remedy)
+    meant = nearest(name.removesuffix(".yaml"), ("yard", "waivers"))  # without the ending, in which all names agree
+    remedy = f"did you mean {meant}.yaml?" if meant else (
         "a yard keeps yard.yaml, waivers.yaml, parts/*.yaml, classes/ID/*.yaml, classes/ID/options/*.yaml, hulls/*.yaml"
     )
     return Fault("unreadable-file", Span(name, 1, 1), "no kind of document is kept at this place", remedy)
@@ -109,19 +125,21 @@ def _misplaced(name: str) -> Fault:
 def _content(folder: Path, path: Path, name: str, files: YardFiles) -> bytes | None:
     """Return a file's bytes, or None with a fault where it is not ours to read."""
     at = Span(name, 1, 1)
-    if not path.resolve().is_relative_to(folder.resolve()):
-        files.faults.append(Fault("unreadable-file", at, "the file is a link that leaves the repository", "copy the file in"))
-        return None
     try:
-        return path.read_bytes()
+        if path.resolve().is_relative_to(folder.resolve()):
+            return path.read_bytes()
+        message, remedy = "the file is a link that leaves the repository", "copy the file in"
     except OSError as error:
-        files.faults.append(Fault("unreadable-file", at, f"the file cannot be read: {error.strerror}"))
-        return None
+        message, remedy = f"the file cannot be read: {error.strerror}", ""
+    except RuntimeError:  # so some versions of Python tell a link that leads to itself
+        message, remedy = "the file is a link that leads to itself", "copy the file in"
+    files.faults.append(Fault("unreadable-file", at, message, remedy))
+    return None
 
 
 def _file_in(files: YardFiles, kind: str, owner: str, document: Document) -> None:
     if owner and not _PLAIN_ID.match(owner):
-        files.faults.append(Fault("bad-value", Span(document.file, 1, 1), f"folder “{owner}” is not a plain id"))
+        files.faults.append(Fault("bad-value", Span(document.file, 1, 1), f"folder “{shown(owner)}” is not a plain id"))
     match kind:
         case "yard":
             files.yard = document

@@ -30,16 +30,18 @@ def fingerprint(outcome: Outcome) -> str:
 @lru_cache(maxsize=50_000)
 def natural(text: str) -> tuple[tuple[int, int, str], ...]:
     """Return a sort key that puts P9 before P10."""
-    return tuple((1, int(piece), "") if piece.isdigit() else (0, 0, piece) for piece in _NUMBER.split(text) if piece)
+    pieces = (piece for piece in _NUMBER.split(text) if piece)
+    return tuple((1, int(piece), "") if piece[0] in "0123456789" else (0, 0, piece) for piece in pieces)
 
 
-def report_order(outcomes: Iterable[Outcome]) -> tuple[Outcome, ...]:
-    """Sort: worst news first, then by place, check, part and limit set; passes by part."""
-    news: list[Outcome] = []
-    passes: list[Outcome] = []
-    for outcome in outcomes:
-        (passes if outcome.verdict is Verdict.PASSED else news).append(outcome)
-    return (*sorted(news, key=_news_key), *sorted(passes, key=_pass_key))
+def news_order(outcomes: Iterable[Outcome]) -> tuple[Outcome, ...]:
+    """Return what did not pass: worst news first, then by place, check, part and limit set."""
+    return tuple(sorted((o for o in outcomes if o.verdict is not Verdict.PASSED), key=_news_key))
+
+
+def pass_order(outcomes: Iterable[Outcome]) -> tuple[Outcome, ...]:
+    """Return what passed, by circuit, part and check."""
+    return tuple(sorted((o for o in outcomes if o.verdict is Verdict.PASSED), key=_pass_key))
 
 
 def _pass_key(outcome: Outcome) -> tuple[object, ...]:

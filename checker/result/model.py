@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections import Counter
 from collections.abc import Iterable
 from dataclasses import dataclass
 
@@ -24,11 +23,14 @@ class SetUse:
 class Study:
     """Hold what was found on one distinct boat, in report order, before any waiver.
 
-    `name` is the first subject that has this content.
+    `name` is the first subject that has this content. `news` are the outcomes that did not
+    pass, `passes` those that did; `thin` counts the passes with little headroom.
     """
 
     name: str
-    outcomes: tuple[Outcome, ...]
+    news: tuple[Outcome, ...]
+    passes: tuple[Outcome, ...]
+    thin: int
     sets: tuple[SetUse, ...]
 
 
@@ -48,8 +50,9 @@ class Acceptance:
 class SubjectResult:
     """Hold the result of one hull or option set.
 
-    `outcomes` are the study's with waivers applied, then what is found of this subject alone,
-    in report order. `alike` are the other subjects with the same content.
+    `news` are the study's with waivers applied and what is found of this subject alone, `own`,
+    in report order; `passes` and `thin` are the study's, shared by all alike subjects.
+    `alike` are the other subjects with the same content.
     """
 
     id: str
@@ -64,13 +67,25 @@ class SubjectResult:
     study: str
     alike: tuple[str, ...]
     sets: tuple[SetUse, ...]
-    outcomes: tuple[Outcome, ...]
+    news: tuple[Outcome, ...]
+    own: tuple[Outcome, ...]
+    passes: tuple[Outcome, ...]
+    thin: int
     accepted: dict[str, Acceptance]
+
+    @property
+    def outcomes(self) -> tuple[Outcome, ...]:
+        """Return all outcomes in report order."""
+        return (*self.news, *self.passes)
 
     @property
     def open_errors(self) -> int:
         """Count the findings at error level that no waiver accepts."""
-        return count_open_errors(self.outcomes)
+        return count_open_errors(self.news)
+
+    def count(self, verdict: Verdict) -> int:
+        """Count the outcomes with a verdict."""
+        return len(self.passes) if verdict is Verdict.PASSED else sum(o.verdict is verdict for o in self.news)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -98,8 +113,3 @@ class FleetResult:
 def count_open_errors(outcomes: Iterable[Outcome]) -> int:
     """Count findings at error level."""
     return sum(o.verdict is Verdict.FINDING and o.level is Level.ERROR for o in outcomes)
-
-
-def tally(outcomes: Iterable[Outcome]) -> Counter[Verdict]:
-    """Count outcomes by verdict."""
-    return Counter(outcome.verdict for outcome in outcomes)

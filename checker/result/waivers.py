@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import datetime
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 from checker.finding import Card, Outcome, Span, Verdict
 from checker.result.cards import WAIVER_EXPIRED, WAIVER_INPUTS_CHANGED, WAIVER_TOO_WIDE, WAIVER_UNMATCHED
@@ -47,15 +47,16 @@ class Waiver:
 
 @dataclass(frozen=True, slots=True)
 class Waived:
-    """Hold the outcomes of a subject after its waivers, what accepts them, and which waivers matched."""
+    """Hold a subject's news after its waivers, what is wrong with these, what accepts what, and which matched."""
 
     outcomes: tuple[Outcome, ...]
+    extra: tuple[Outcome, ...]
     accepted: dict[str, Acceptance]
     matched: frozenset[str]
 
 
 def apply_waivers(outcomes: Sequence[Outcome], waivers: Iterable[Waiver], today: datetime.date) -> Waived:
-    """Accept what the waivers of one subject accept, and add what is wrong with the waivers.
+    """Accept what the waivers of one subject accept, and tell what is wrong with the waivers.
 
     Args:
         outcomes: The subject's outcomes.
@@ -76,11 +77,11 @@ def apply_waivers(outcomes: Sequence[Outcome], waivers: Iterable[Waiver], today:
             extra.append(objection)
             continue
         index = found[0]
-        left[index] = replace(left[index], verdict=Verdict.ACCEPTED)
+        left[index] = left[index]._replace(verdict=Verdict.ACCEPTED)
         accepted[fingerprint(left[index])] = Acceptance(
             waiver.id, waiver.reason, waiver.approved_by, waiver.expires.isoformat(), waiver.evidence, waiver.at
         )
-    return Waived((*left, *extra), accepted, frozenset(matched))
+    return Waived(tuple(left), tuple(extra), accepted, frozenset(matched))
 
 
 def _objection(waiver: Waiver, found: list[Outcome], today: datetime.date) -> Outcome | None:

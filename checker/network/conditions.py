@@ -1,0 +1,103 @@
+"""Turn an operating condition into a switch state and the currents that loads draw and sources feed."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from checker.boat.hull import Boat, Condition
+from checker.boat.parts import Load, Source, Switch
+from checker.network.graph import Network
+from checker.network.states import SwitchState
+
+CONSTANT_CURRENT, CONSTANT_POWER, RESISTIVE = "constant-current", "constant-power", "resistive"
+
+
+@dataclass(frozen=True, slots=True)
+class Draw:
+    """Hold one load in one condition: its posts, its current at nominal voltage, and its model."""
+
+    name: str
+    feed: int
+    back: int
+    current_a: float
+    nominal_v: float
+    model: str
+
+
+@dataclass(frozen=True, slots=True)
+class Feed:
+    """Hold one source in one condition: current out of its post, back into its return."""
+
+    name: str
+    out: int
+    back: int
+    current_a: float
+
+
+@dataclass(frozen=True, slots=True)
+class Operation:
+    """Hold a condition ready to be solved."""
+
+    condition: Condition
+    state: SwitchState
+    draws: tuple[Draw, ...]
+    feeds: tuple[Feed, ...]
+
+
+def operations(boat: Boat, network: Network) -> tuple[Operation, ...]:
+    """Return every condition of a boat ready to be solved, in order."""
+    return tuple(
+        Operation(
+            condition,
+            condition_state(boat, condition),
+            tuple(_draw(boat, network, name, amps) for name, amps in condition.loads_a),
+            tuple(_feed(boat, network, name, amps) for name, amps in condition.sources_a),
+        )
+        for condition in boat.conditions.values()
+    )
+
+
+def condition_state(boat: Boat, condition: Condition) -> SwitchState:
+    """Return the switch state of a condition: switches as named, contactors open unless closed by it."""
+    closed: set[tuple[str, str, str]] = set()
+    named = dict(condition.switches)
+    for device in boat.devices.values():
+        if not isinstance(device.part, Switch):
+            continue
+        states = dict(device.part.states)
+        if device.id in named:
+            chosen = named[device.id]
+        elif device.id in condition.closed or device.part.by_hand:
+            chosen = max(states, key=lambda name: (len(states[name]), name))
+        else:
+            chosen = min(states, key=lambda name: (len(states[name]), name))
+        closed |= {(device.id, a, b) for a, b in states[chosen]}
+    return SwitchState(condition.id, True, frozenset(closed), condition.id)
+
+
+def _draw(boat: Boat, network: Network, name: str, current_a: float) -> Draw:
+    owner = boat.circuits[name].load if name in boat.circuits else name
+    device = boat.devices.get(owner)
+    if device is not None and isinstance(device.part, Load):
+        part = device.part
+        ends = network.index[f"{owner}.{part.feed_post}"], network.index[f"{owner}.{part.return_post}"]
+        return Draw(name, *ends, current_a, part.voltage_v, part.model)
+    if device is not None and isinstance(device.part, Source):  # what it draws while it stands by
+        end = device.part.outputs[0]
+        ends = network.index[f"{owner}.{end.post}"], network.index[f"{owner}.{end.return_post}"]
+        return Draw(name, *ends, current_a, end.voltage_v, CONSTANT_CURRENT)
+    source, post = name.rsplit(".", 1)
+    converter = boat.devices[source].part
+    assert isinstance(converter, Source)
+    entry = next(end for end in converter.inputs if end.post == post)
+    ends = network.index[name], network.index[f"{source}.{entry.return_post}"]
+    return Draw(name, *ends, current_a, entry.voltage_v, CONSTANT_CURRENT)
+
+
+def _feed(boat: Boat, network: Network, name: str, current_a: float) -> Feed:
+    owner = name if name in boat.devices else name.rsplit(".", 1)[0]
+    part = boat.devices[owner].part
+    assert isinstance(part, Source)
+    post = part.outputs[0].post if name == owner else name.rsplit(".", 1)[1]
+    end = next(end for end in part.outputs if end.post == post)
+    return Feed(name, network.index[f"{owner}.{post}"], network.index[f"{owner}.{end.return_post}"], current_a)

@@ -1,0 +1,115 @@
+"""Solve a symmetric network of conductances: factorised once, solved for many right-hand sides.
+
+A boat's network is nearly a tree, so that eliminating the post with the fewest neighbours
+first makes almost no new entries: a factorisation costs a few operations a post, less than
+loading a general library for linear algebra. The tests hold it against one.
+"""
+
+from __future__ import annotations
+
+import heapq
+from collections.abc import Iterable, Sequence
+
+
+class NotGroundedError(ValueError):
+    """Some place has no conductance to the ground, so that its voltage is not defined."""
+
+
+class Factor:
+    """Hold G = L·D·Lᵀ of a conductance matrix whose grounded places are left out.
+
+    Args:
+        size: Number of places.
+        links: (a, b, conductance in siemens) for each link; parallel ones add up.
+        grounded: Places held at 0 V.
+
+    Raises:
+        NotGroundedError: If a place that has a link is not joined to a grounded one.
+    """
+
+    def __init__(self, size: int, links: Iterable[tuple[int, int, float]], grounded: Iterable[int]) -> None:
+        self._size = size
+        self._grounded = frozenset(grounded)
+        diagonal = [0.0] * size
+        beside: list[dict[int, float]] = [{} for _ in range(size)]
+        for a, b, conductance in links:
+            if a == b:
+                continue
+            diagonal[a] += conductance
+            diagonal[b] += conductance
+            if a not in self._grounded and b not in self._grounded:
+                beside[a][b] = beside[a].get(b, 0.0) - conductance
+                beside[b][a] = beside[b].get(a, 0.0) - conductance
+        self._steps = _eliminate(diagonal, beside, self._grounded)
+
+    def solve(self, injected_a: Sequence[float]) -> list[float]:
+        """Return the voltages that injected currents make, V; both of shape (places,)."""
+        x = list(injected_a)
+        for node in self._grounded:
+            x[node] = 0.0
+        for node, _, links in self._steps:
+            value = x[node]
+            if value:
+                for far, share in links:
+                    x[far] -= share * value
+        for node, pivot, links in reversed(self._steps):
+            value = x[node] / pivot
+            for far, share in links:
+                value -= share * x[far]
+            x[node] = value
+        return x
+
+    def own_resistance(self) -> list[float]:
+        """Return the resistance from each place to the ground, ohm, shape (places,).
+
+        The diagonal of the inverse, found backwards over the steps of the elimination: each
+        needs only entries between places that were still joined (Takahashi's equations).
+        """
+        inverse: dict[tuple[int, int], float] = {}
+        own = [0.0] * self._size
+        for node, pivot, links in reversed(self._steps):
+            for far, _ in links:
+                entry = 0.0
+                for other, share in links:
+                    entry -= share * (own[far] if other == far else inverse[_pair(other, far)])
+                inverse[_pair(node, far)] = entry
+            own[node] = 1.0 / pivot - sum(share * inverse[_pair(node, far)] for far, share in links)
+        return own
+
+
+def _pair(a: int, b: int) -> tuple[int, int]:
+    return (a, b) if a < b else (b, a)
+
+
+def _eliminate(
+    diagonal: list[float], beside: list[dict[int, float]], grounded: frozenset[int]
+) -> list[tuple[int, float, tuple[tuple[int, float], ...]]]:
+    """Eliminate the places, fewest neighbours first; return each with its pivot and its shares."""
+    steps: list[tuple[int, float, tuple[tuple[int, float], ...]]] = []
+    waiting = [(len(beside[node]), node) for node in range(len(beside)) if node not in grounded and diagonal[node]]
+    heapq.heapify(waiting)
+    done = [False] * len(beside)
+    while waiting:
+        degree, node = heapq.heappop(waiting)
+        if done[node] or degree != len(beside[node]):
+            continue
+        done[node] = True
+        pivot = diagonal[node]
+        links = sorted(beside[node].items())
+        total = sum(abs(value) for _, value in links)
+        if pivot <= 1e-14 * max(total, 1e-300):
+            raise NotGroundedError(f"place {node} is joined to no ground")
+        shares = tuple((far, value / pivot) for far, value in links)
+        steps.append((node, pivot, shares))
+        for position, (far, share) in enumerate(shares):
+            row = beside[far]
+            del row[node]
+            value = links[position][1]
+            diagonal[far] -= share * value
+            for other, other_share in shares[position + 1 :]:
+                fill = row.get(other, 0.0) - other_share * value
+                row[other] = fill
+                beside[other][far] = fill
+        for far, _ in links:
+            heapq.heappush(waiting, (len(beside[far]), far))
+    return steps

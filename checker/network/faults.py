@@ -1,0 +1,178 @@
+"""Find the fault currents: the largest at every post, the smallest at the far end of each device's stretch.
+
+With the network factorised, the resistance that a fault sees between two posts is that of
+Thévenin's theorem: R = Zff + Zgg − 2·Zfg, and I = E/R. Charge sources are added at their
+greatest output where a fault is largest, and left out where it is smallest.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from checker.network.flow import Grid
+from checker.network.graph import BatteryTie, Edge, EdgeKind, Network
+from checker.network.potentials import Potentials
+from checker.network.states import SwitchState
+from checker.network.walk import Neighbours, neighbours
+
+OPENING = (EdgeKind.DEVICE,)
+
+
+class FaultLevels:
+    """Hold the largest prospective current at every post in one state: cold copper, full batteries."""
+
+    def __init__(self, grid: Grid, potentials: Potentials) -> None:
+        self._grid = grid
+        self._potentials = potentials
+        network = grid.network
+        own = grid.factor.own_resistance()
+        rest = grid.at_rest_v
+        self._level = [0.0] * len(network.posts)
+        self._bottom = [""] * len(network.posts)
+        for tie in _bottoms(grid, potentials):
+            ground = grid.place[tie.neg]
+            unit = [0.0] * len(network.posts)
+            unit[ground] = 1.0
+            column = grid.factor.solve(unit)
+            for post in range(len(network.posts)):
+                place = grid.place[post]
+                if potentials.returns[post] or grid.island[place] != grid.island[ground]:
+                    continue
+                ohm = own[place] + own[ground] - 2 * column[place]
+                volts = abs(rest[place] - rest[ground])
+                if ohm > 0 and volts / ohm > self._level[post]:
+                    self._level[post] = volts / ohm
+                    self._bottom[post] = network.posts[tie.neg]
+        self._charging = self._charging_by_net()
+
+    def _charging_by_net(self) -> dict[int, float]:
+        total: dict[int, float] = {}
+        for source in self._grid.network.sources:
+            net = self._potentials.net[source.out]
+            total[net] = total.get(net, 0.0) + source.max_a
+        return total
+
+    def largest_a(self, post: int) -> float:
+        """Return the largest current that a fault from a post to a bank's lowest post can draw, A."""
+        level = self._level[post]
+        return level + self._charging.get(self._potentials.net[post], 0.0) if level else 0.0
+
+    def batteries(self, post: int) -> tuple[str, ...]:
+        """Return the batteries whose net feeds a post."""
+        net = self._potentials.net[post]
+        return tuple(
+            tie.device for tie, _ in self._grid.cells
+            if net in (self._potentials.net[tie.pos], self._potentials.net[tie.neg]) or self._is_below(tie, net)
+        )  # fmt: skip
+
+    def _is_below(self, tie: BatteryTie, net: int) -> bool:
+        """Tell whether a battery stands lower in the string of a bank whose top is on a net."""
+        tops = {t.bank for t, _ in self._grid.cells if self._potentials.net[t.pos] == net}
+        return tie.bank in tops
+
+
+def _bottoms(grid: Grid, potentials: Potentials) -> list[BatteryTie]:
+    """Return one battery of each distinct lowest post of a bank."""
+    found: dict[int, BatteryTie] = {}
+    for tie, _ in grid.cells:
+        if potentials.returns[tie.neg]:
+            found.setdefault(grid.place[tie.neg], tie)
+    return [found[place] for place in sorted(found)]
+
+
+@dataclass(frozen=True, slots=True)
+class FarEnd:
+    """Hold the smallest current through a device for a fault at the end of the stretch that it protects.
+
+    `conductors` are those of the stretch on the way to the end.
+    """
+
+    device: str
+    post: str
+    current_a: float
+    state: SwitchState
+    conductors: tuple[str, ...]
+
+
+def far_ends(grid: Grid, potentials: Potentials) -> dict[str, FarEnd]:
+    """Return for each device the far end at which a fault draws least through it: hot copper, low batteries."""
+    network = grid.network
+    live = [e for e in grid.edges if not potentials.returns[e.a]]
+    at = neighbours(network, [e.index for e in live])
+    backs = {load.feed: load.back for load in network.loads} | {s.out: s.back for s in network.sources}
+    worst: dict[str, FarEnd] = {}
+    for edge in live:
+        if edge.kind is not EdgeKind.DEVICE:
+            continue
+        for end, conductors in _stretch(network, at, edge):
+            back = backs.get(end, network.reference)
+            current_a = _through(grid, edge, end, back)
+            known = worst.get(edge.part)
+            if current_a > 0 and (known is None or current_a < known.current_a):
+                worst[edge.part] = FarEnd(edge.part, network.posts[end], current_a, potentials.state, conductors)
+    return worst
+
+
+def _stretch(network: Network, at: Neighbours, device: Edge) -> list[tuple[int, tuple[str, ...]]]:
+    """Return the ends of what a device protects on its load side, and the conductors on the way to each.
+
+    An end is a post of a load or source, or one where conductors come to the line of another
+    device or to a post with nothing beyond.
+    """
+    ends: list[tuple[int, tuple[str, ...]]] = []
+    seen = {device.a, device.b}
+    waiting: list[tuple[int, tuple[str, ...]]] = [(device.b, ())]
+    terminals = {load.feed for load in network.loads} | {source.out for source in network.sources}
+    while waiting:
+        node, conductors = waiting.pop()
+        onward = [e for e in at[node] if e.kind not in OPENING and e.other(node) not in seen]
+        leaves = any(e.kind in OPENING and e.index != device.index for e in at[node])
+        if conductors and (node in terminals or leaves or not onward):
+            ends.append((node, conductors))
+        for edge in onward:
+            far = edge.other(node)
+            seen.add(far)
+            step = (edge.part,) if edge.kind in (EdgeKind.CONDUCTOR, EdgeKind.BOND) else ()
+            waiting.append((far, (*conductors, *step)))
+    return ends
+
+
+def _through(grid: Grid, device: Edge, end: int, back: int) -> float:
+    """Return the current through a device for a fault between two posts, 0 where no battery feeds it."""
+    place = grid.place
+    if grid.island[place[end]] != grid.island[place[back]] or place[end] == place[back]:
+        return 0.0
+    unit = [0.0] * len(place)
+    unit[place[end]] += 1.0
+    unit[place[back]] -= 1.0
+    answer = grid.factor.solve(unit)
+    ohm = answer[place[end]] - answer[place[back]]
+    rest = grid.at_rest_v
+    volts = rest[place[end]] - rest[place[back]]
+    if ohm <= 0 or volts <= 0:
+        return 0.0
+    fault_a = volts / ohm
+    own_ohm = grid.ohm(device)
+    if own_ohm == 0:
+        return fault_a
+    drop = [rest[place[p]] - fault_a * answer[place[p]] for p in (device.a, device.b)]
+    return (drop[0] - drop[1]) / own_ohm
+
+
+def opening_s(points: Sequence[tuple[float, float]], multiple: float) -> float:
+    """Return the time of a curve at a multiple of the rating: straight lines on log-log axes.
+
+    Below the first point the device holds; above the last point the last time stays. A point
+    at infinity holds up to the next one.
+    """
+    if not points or multiple < points[0][0] * (1 - 1e-12):
+        return math.inf
+    for (x0, t0), (x1, t1) in zip(points, points[1:], strict=False):
+        if multiple <= x1 * (1 + 1e-12):
+            if math.isinf(t0):
+                return t1 if multiple >= x1 * (1 - 1e-12) else math.inf
+            share = math.log(multiple / x0) / math.log(x1 / x0)
+            return float(t0 * (t1 / t0) ** min(1.0, max(0.0, share)))
+    return points[-1][1]

@@ -1,0 +1,372 @@
+"""Solve a boat's network: every voltage and every current, in one condition.
+
+Batteries are an EMF behind a resistance; conductors, devices, contacts and shunts are
+resistances; loads and sources draw and feed a current, and a load whose current depends on
+its voltage is found by a few Newton steps. The conductances of one switch state are
+factorised once; each condition is then one more right-hand side.
+
+Posts with no resistance between them are one place. Currents through what has no resistance
+follow from Kirchhoff's current law where it forms no loop.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+from functools import cached_property
+
+from checker.network.conditions import CONSTANT_CURRENT, CONSTANT_POWER, RESISTIVE, Draw, Feed
+from checker.network.elimination import Factor
+from checker.network.graph import BatteryTie, Cell, Edge, LoadTie, Network
+from checker.network.states import SwitchState, live_edges
+from checker.network.walk import groups
+
+MOST_STEPS = 60
+SETTLED_V = 1e-10
+
+
+@dataclass(frozen=True, slots=True)
+class Copper:
+    """Hold the resistivity of the conductors at the temperature of the study."""
+
+    ohm_mm2_per_m: float
+
+    def resistance_ohm(self, edge: Edge) -> float:
+        """Return the resistance of an edge."""
+        if edge.area_mm2:
+            return self.ohm_mm2_per_m * edge.length_m / edge.area_mm2
+        return edge.resistance_ohm
+
+
+class Grid:
+    """Hold the factorised network of one switch state, at one temperature and state of charge.
+
+    `without` are edges taken out, for the studies of a loss. Batteries whose figures are
+    missing are left out; `missing` names them.
+    """
+
+    def __init__(
+        self,
+        network: Network,
+        state: SwitchState,
+        copper: Copper,
+        *,
+        is_full: bool,
+        without: frozenset[int] = frozenset(),
+        without_batteries: frozenset[str] = frozenset(),
+    ) -> None:
+        self.network = network
+        self.state = state
+        self._edges = [network.edges[i] for i in live_edges(network, state) if i not in without]
+        self._ohm = {edge.index: copper.resistance_ohm(edge) for edge in self._edges}
+        free = ((e.a, e.b) for e in self._edges if self._ohm[e.index] == 0)
+        self.place = groups(len(network.posts), free)
+        self.cells: list[tuple[BatteryTie, Cell]] = []
+        missing: list[str] = []
+        for battery in network.batteries:
+            cell = battery.full if is_full else battery.low
+            if cell is None:
+                missing.append(battery.device)
+            elif battery.device not in without_batteries:
+                self.cells.append((battery, cell))
+        self.missing = tuple(missing)
+        self.resistive = [(e, 1 / self._ohm[e.index]) for e in self._edges if self._ohm[e.index] > 0]
+        links = [(self.place[e.a], self.place[e.b], siemens) for e, siemens in self.resistive]
+        links += [(self.place[b.pos], self.place[b.neg], 1 / cell.resistance_ohm) for b, cell in self.cells]
+        # Places that conductances join; each island needs one place whose voltage is given.
+        self.island = groups(len(network.posts), ((a, b) for a, b, _ in links))
+        self.home = self.island[self.place[network.reference]]
+        self.factor = Factor(len(network.posts), links, self._grounds())
+
+    def _grounds(self) -> list[int]:
+        """Return one place to ground in each island: the reference in its own, else the smallest."""
+        grounds = {self.home: self.place[self.network.reference]}
+        for place in self.place:
+            grounds.setdefault(self.island[place], place)
+        return sorted(set(grounds.values()))
+
+    @cached_property
+    def _powered(self) -> frozenset[int]:
+        """Return the islands that have a battery."""
+        return frozenset(self.island[self.place[battery.pos]] for battery, _ in self.cells)
+
+    @cached_property
+    def _inputs(self) -> dict[int, LoadTie]:
+        """Return for each island without a battery the converter input that holds its voltage."""
+        found: dict[int, LoadTie] = {}
+        for tie in self.network.loads:
+            island = self.island[self.place[tie.feed]]
+            if tie.is_input and island not in self._powered and island != self.home:
+                found.setdefault(island, tie)
+        return found
+
+    def _possible(
+        self, draws: Sequence[Draw], feeds: Sequence[Feed]
+    ) -> tuple[list[Draw], list[Feed], frozenset[int]]:
+        """Leave out loads that nothing can feed and sources that nothing can take from.
+
+        An array feeds the input of its controller: that input draws what the array gives,
+        where the condition does not name it. Also returns the islands that such inputs hold.
+        """
+        drawing = [d for d in draws if self.island[self.place[d.feed]] in self._powered]
+        feeding: list[Feed] = []
+        taken: dict[int, float] = {}
+        for feed in feeds:
+            island = self.island[self.place[feed.out]]
+            if island in self._powered:
+                feeding.append(feed)
+            elif island in self._inputs:
+                feeding.append(feed)
+                taken[island] = taken.get(island, 0.0) + feed.current_a
+        for island, current_a in sorted(taken.items()):
+            tie = self._inputs[island]
+            name = f"{tie.device} input"
+            drawing.append(Draw(name, tie.feed, tie.back, current_a, tie.voltage_v, CONSTANT_CURRENT))
+        return drawing, feeding, frozenset(taken)
+
+    @cached_property
+    def free_trees(self) -> list[list[tuple[Edge, int]]]:
+        """Return for each place the edges without resistance that span it, each with the post it leads to."""
+        at: dict[int, list[Edge]] = {}
+        for edge in self._edges:
+            if self._ohm[edge.index] == 0 and edge.a != edge.b:
+                at.setdefault(edge.a, []).append(edge)
+                at.setdefault(edge.b, []).append(edge)
+        trees: list[list[tuple[Edge, int]]] = []
+        seen: set[int] = set()
+        for start in sorted(at):
+            if start in seen:
+                continue
+            seen.add(start)
+            tree: list[tuple[Edge, int]] = []
+            waiting = [start]
+            while waiting:
+                for edge in at[node := waiting.pop()]:
+                    far = edge.other(node)
+                    if far not in seen:
+                        seen.add(far)
+                        tree.append((edge, far))
+                        waiting.append(far)
+            trees.append(tree)
+        return trees
+
+    @cached_property
+    def at_rest_v(self) -> list[float]:
+        """Return the voltages with no load and no source, shape (posts,) by place."""
+        return self.factor.solve(self._battery_currents())
+
+    def _battery_currents(self) -> list[float]:
+        injected = [0.0] * len(self.network.posts)
+        for battery, cell in self.cells:
+            current_a = cell.emf_v / cell.resistance_ohm
+            injected[self.place[battery.pos]] += current_a
+            injected[self.place[battery.neg]] -= current_a
+        return injected
+
+    def solve(self, draws: Sequence[Draw], feeds: Sequence[Feed]) -> Flow | NoOperatingPoint:
+        """Solve one condition."""
+        draws, feeds, held = self._possible(draws, feeds)
+        injected = self._battery_currents()
+        for feed in feeds:
+            injected[self.place[feed.out]] += feed.current_a
+            injected[self.place[feed.back]] -= feed.current_a
+        steady = [draw for draw in draws if draw.model == CONSTANT_CURRENT]
+        bending = [draw for draw in draws if draw.model != CONSTANT_CURRENT and draw.current_a]
+        currents = {draw.name: draw.current_a for draw in steady}
+        for draw in steady:
+            injected[self.place[draw.feed]] -= draw.current_a
+            injected[self.place[draw.back]] += draw.current_a
+        if bending:
+            found = self._bent(bending, injected)
+            if isinstance(found, NoOperatingPoint):
+                return found
+            for draw, current_a in zip(bending, found, strict=True):
+                currents[draw.name] = current_a
+                injected[self.place[draw.feed]] -= current_a
+                injected[self.place[draw.back]] += current_a
+        return Flow(self, self._levelled(self.factor.solve(injected), held), draws, feeds, currents)
+
+    def _levelled(self, volts: list[float], held: frozenset[int]) -> list[float]:
+        """Lift each island that a converter input holds to the voltage it is held at."""
+        for island in sorted(held):
+            tie = self._inputs[island]
+            feed, back = self.place[tie.feed], self.place[tie.back]
+            lift_v = volts[back] + tie.voltage_v - volts[feed]
+            for place in set(self.place):
+                if self.island[place] == island:
+                    volts[place] += lift_v
+        return volts
+
+    def _bent(self, draws: list[Draw], injected: list[float]) -> list[float] | NoOperatingPoint:
+        """Find the currents of loads that depend on their voltage, by Newton's method on their ports."""
+        ports = [(self.place[draw.feed], self.place[draw.back]) for draw in draws]
+        open_v = _across(self.factor.solve(injected), ports)
+        impedance: list[list[float]] = []
+        for feed, back in ports:
+            unit = [0.0] * len(self.network.posts)
+            unit[feed] += 1.0
+            unit[back] -= 1.0
+            impedance.append(_across(self.factor.solve(unit), ports))
+        volts = list(open_v)
+        for _ in range(MOST_STEPS):
+            bent = [_current(draw, v) for draw, v in zip(draws, volts, strict=True)]
+            lost = [sum(z * current for z, (current, _) in zip(row, bent, strict=True)) for row in impedance]
+            wrong = [v - o + drop for v, o, drop in zip(volts, open_v, lost, strict=True)]
+            if max(abs(w) for w in wrong) < SETTLED_V:
+                return [current for current, _ in bent]
+            slopes = [
+                [(1.0 if i == j else 0.0) + row[j] * bent[j][1] for j in range(len(draws))]
+                for i, row in enumerate(impedance)
+            ]
+            step = _solved(slopes, wrong)
+            if step is None:
+                break
+            volts = [v - s for v, s in zip(volts, step, strict=True)]
+            # Below half its nominal voltage a load of constant power is past the knee of its curve.
+            if any(not v > 0.5 * d.nominal_v for v, d in zip(volts, draws, strict=True) if d.model == CONSTANT_POWER):
+                break
+        return NoOperatingPoint(self.state.id, tuple(draw.name for draw in draws if draw.model == CONSTANT_POWER))
+
+    def ohm(self, edge: Edge) -> float:
+        """Return the resistance of a live edge."""
+        return self._ohm[edge.index]
+
+    @property
+    def edges(self) -> Sequence[Edge]:
+        """Return the live edges."""
+        return self._edges
+
+
+def _across(volts: Sequence[float], ports: Sequence[tuple[int, int]]) -> list[float]:
+    return [volts[feed] - volts[back] for feed, back in ports]
+
+
+def _current(draw: Draw, volts: float) -> tuple[float, float]:
+    """Return a load's current at a voltage, and its slope dI/dV."""
+    if draw.model == RESISTIVE:
+        siemens = draw.current_a / draw.nominal_v
+        return siemens * volts, siemens
+    power_w = draw.current_a * draw.nominal_v
+    return power_w / volts, -power_w / volts**2
+
+
+def _solved(matrix: list[list[float]], right: list[float]) -> list[float] | None:
+    """Solve a small dense system; None where it is singular."""
+    size = len(right)
+    rows = [[*row, value] for row, value in zip(matrix, right, strict=True)]
+    for column in range(size):
+        best = max(range(column, size), key=lambda r: abs(rows[r][column]))
+        if abs(rows[best][column]) < 1e-12:
+            return None
+        rows[column], rows[best] = rows[best], rows[column]
+        for below in range(column + 1, size):
+            factor = rows[below][column] / rows[column][column]
+            rows[below] = [x - factor * y for x, y in zip(rows[below], rows[column], strict=True)]
+    found = [0.0] * size
+    for row in range(size - 1, -1, -1):
+        known = sum(rows[row][k] * found[k] for k in range(row + 1, size))
+        found[row] = (rows[row][size] - known) / rows[row][row]
+    return found
+
+
+@dataclass(frozen=True, slots=True)
+class NoOperatingPoint:
+    """Tell that loads of constant power ask for more than the network can give."""
+
+    state: str
+    loads: tuple[str, ...]
+
+
+class Flow:
+    """Hold a solved condition: voltages above the reference, and currents.
+
+    `volts` has shape (posts,), by place; `load_a` is what each load draws.
+    """
+
+    def __init__(
+        self, grid: Grid, volts: list[float], draws: Sequence[Draw], feeds: Sequence[Feed], load_a: dict[str, float]
+    ) -> None:
+        self.grid = grid
+        self.volts = volts
+        self.load_a = load_a
+        self._draws = draws
+        self._feeds = feeds
+
+    def voltage(self, post: int) -> float:
+        """Return the voltage of a post above the DC reference, V."""
+        return self.volts[self.grid.place[post]]
+
+    def across(self, first: int, second: int) -> float:
+        """Return the voltage of the first post above the second, V."""
+        return self.voltage(first) - self.voltage(second)
+
+    @cached_property
+    def currents_a(self) -> dict[int, float]:
+        """Return the current of every live edge, A, positive from its a to its b.
+
+        In a loop of edges without resistance nothing fixes the currents: there one edge is
+        taken to carry none.
+        """
+        volts, place = self.volts, self.grid.place
+        known = {
+            edge.index: (volts[place[edge.a]] - volts[place[edge.b]]) * siemens
+            for edge, siemens in self.grid.resistive
+        }
+        return known | self._free_currents(known)
+
+    def battery_currents(self) -> dict[str, float]:
+        """Return what each battery gives, A; negative while it is charged."""
+        return {
+            tie.device: (cell.emf_v - self.across(tie.pos, tie.neg)) / cell.resistance_ohm
+            for tie, cell in self.grid.cells
+        }
+
+    @cached_property
+    def given_a(self) -> list[float]:
+        """Return what batteries, sources and loads put into each post, A, shape (posts,)."""
+        given = [0.0] * len(self.volts)
+        currents = self.battery_currents()
+        for tie, _ in self.grid.cells:
+            given[tie.pos] += currents[tie.device]
+            given[tie.neg] -= currents[tie.device]
+        for feed in self._feeds:
+            given[feed.out] += feed.current_a
+            given[feed.back] -= feed.current_a
+        for draw in self._draws:
+            given[draw.feed] -= self.load_a.get(draw.name, 0.0)
+            given[draw.back] += self.load_a.get(draw.name, 0.0)
+        return given
+
+    def through_place(self, post: int) -> float:
+        """Return the current that flows through the place of a post: all that flows in, A."""
+        place, posts = self.grid.place[post], self.grid.place
+        flows = [self.given_a[p] for p in range(len(posts)) if posts[p] == place]
+        for edge, _ in self.grid.resistive:
+            if posts[edge.a] == posts[edge.b]:
+                continue
+            if posts[edge.b] == place:
+                flows.append(self.currents_a[edge.index])
+            elif posts[edge.a] == place:
+                flows.append(-self.currents_a[edge.index])
+        return sum(flow for flow in flows if flow > 0)
+
+    def _free_currents(self, known: dict[int, float]) -> dict[int, float]:
+        """Find the currents of edges without resistance by Kirchhoff's current law, tree by tree."""
+        excess = list(self.given_a)
+        for edge, _ in self.grid.resistive:
+            excess[edge.a] -= known[edge.index]
+            excess[edge.b] += known[edge.index]
+        found: dict[int, float] = {}
+        for tree in self.grid.free_trees:
+            for edge, child in reversed(tree):
+                parent = edge.other(child)
+                found[edge.index] = excess[child] if child == edge.a else -excess[child]
+                excess[parent] += excess[child]
+                excess[child] = 0.0
+        return found
+
+
+def parallel_ohm(values: Sequence[float]) -> float:
+    """Return the resistance of several in parallel; 0 where one has none."""
+    return 0.0 if any(v == 0 for v in values) else 1 / math.fsum(1 / v for v in values)
