@@ -91,10 +91,12 @@ def assemble(files: YardFiles) -> Assembly:
     assembly = Assembly()
     faulty = files.faulty
     shared = [document for document in (files.yard, *files.parts) if document]
-    shared_fault = any(document.file in faulty for document in shared)
+    # A file with another ending, or at no known place, is not among the documents: its folder tells.
+    shared_fault = any(document.file in faulty for document in shared) or any(f.startswith("parts/") for f in faulty)
     for class_id, documents in sorted(files.classes.items()):
         options = files.options.get(class_id, [])
-        if shared_fault or any(document.file in faulty for document in (*documents, *options)):
+        own_fault = any(document.file in faulty for document in (*documents, *options))
+        if shared_fault or own_fault or any(file.startswith(f"classes/{class_id}/") for file in faulty):
             assembly.unstudied.append(f"class {shown(class_id)}")
             continue
         design = _design(class_id, documents, options, assembly.faults)
@@ -233,6 +235,11 @@ def _add_hull(assembly: Assembly, document: Document, class_ids: set[str]) -> No
     before = len(assembly.faults)
     if any(subject.is_hull and subject.id == name for subject in assembly.subjects):
         row.fault("repeated-key", row.at("hull"), f"hull “{name}” is written in two files")
+        return
+    twin = next((s.id for s in assembly.subjects if s.is_hull and s.id.lower() == name.lower()), None)
+    if twin is not None:
+        row.fault("bad-value", row.at("hull"), f"hulls “{twin}” and “{name}” differ in capitals only",
+                  "some file systems keep one report for both: rename one")  # fmt: skip
         return
     design = assembly.classes.get(row.text("class"))
     if design is None:

@@ -104,7 +104,8 @@ def _known(shop: _Workshop, row: Entry, name: str, known: Any, what: str = "") -
     if wanted is None:
         return None
     if wanted not in known:
-        row.unknown(what or name, wanted, row.at(name), known)
+        if wanted not in shop.top.fields(f"{name}s"):  # else it is told where it could not be built
+            row.unknown(what or name, wanted, row.at(name), known)
         return None
     return wanted
 
@@ -185,6 +186,10 @@ def _of_series(row: Entry, part: Overcurrent, rating_a: float, at: Span) -> Over
 
 def _add_circuit(shop: _Workshop, row: Entry) -> None:
     if row.has("conductors"):
+        for name in ("feed", "cable", "load"):
+            if row.has(name):
+                row.fault("bad-value", row.key_at(name), f"circuit “{row.id}” has conductors of its own and “{name}” too",
+                          "a branch is written by feed, cable and load, a trunk by its conductors")  # fmt: skip
         _add_trunk(shop, row)
     else:
         _add_branch(shop, row)
@@ -386,7 +391,7 @@ def _ways(shop: _Workshop, row: Entry) -> tuple[Way, ...]:
     for index, name in enumerate(row.items("route")):
         if name in shop.ways:
             found.append(shop.ways[name])
-        else:
+        elif name not in shop.top.fields("ways"):
             row.unknown("way", name, row.at("route", index), shop.ways)
     return tuple(found)
 
@@ -461,6 +466,9 @@ def _unknown_post(shop: _Workshop, post: str, at: Span, user: str) -> None:
     owner = post
     while owner and owner not in shop.devices:
         owner = owner.rpartition(".")[0]
+    first = post.partition(".")[0]
+    if not owner and any(first in shop.top.fields(section) for section in ("devices", "circuits")):
+        return  # it is written, but could not be built: that is told where it stands
     if owner:
         posts = shop.devices[owner].part.posts
         named = ", ".join(f"{owner}.{name}" if name else owner for name in posts)

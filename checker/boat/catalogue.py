@@ -38,6 +38,10 @@ def read_catalogue(documents: Sequence[Document]) -> tuple[Catalogue, list[Fault
     for document in documents:
         source = Patched(document.data, (document.places,))
         for entry in Entry(source, (), document.data or {}, faults).entries("bands"):
+            if entry.id in bands:
+                entry.fault("repeated-key", entry.at(), f"band “{entry.id}” is written twice",
+                            f"the other one stands in {bands[entry.id].at}")  # fmt: skip
+                continue
             bands[entry.id] = _band(entry)
     for document in documents:
         source = Patched(document.data, (document.places,))

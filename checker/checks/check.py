@@ -72,6 +72,7 @@ class Told:
     path: tuple[str, ...] = ()
     inputs: tuple[tuple[str, str], ...] = ()
     note: str = ""
+    also_at: tuple[Span, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -100,7 +101,7 @@ class Check:
         """Return a finding."""
         return self._outcome(
             case, place, Verdict.FINDING, measure=measure, fault=told.fault, remedy=told.remedy,
-            path=told.path, inputs=told.inputs, note=told.note,
+            path=told.path, inputs=told.inputs, note=told.note, also_at=told.also_at,
         )  # fmt: skip
 
     def passed(self, case: Case, place: Place, note: str = "") -> Outcome:
@@ -114,12 +115,13 @@ class Check:
     def _outcome(
         self, case: Case, place: Place, verdict: Verdict, *, measure: Measure | None = None, fault: str = "",
         remedy: str = "", path: tuple[str, ...] = (), inputs: tuple[tuple[str, str], ...] = (),
-        missing: str = "", note: str = "",
+        missing: str = "", note: str = "", also_at: tuple[Span, ...] = (),
     ) -> Outcome:  # fmt: skip
         return Outcome(
             verdict=verdict, check=self.card.id, level=self.card.level, part=place.part, at=place.at,
             limit_set=case.limits.id if self.is_per_set else "", circuit=place.circuit, measure=measure,
             fault=fault, remedy=remedy, state=place.state, path=path, missing=missing, note=note, inputs=inputs,
+            also_at=also_at,
         )  # fmt: skip
 
 

@@ -260,9 +260,9 @@ def ignition_protection(case: Case) -> Iterator[Outcome]:
             yield ignition_protection.passed(case, place)
             continue
         told = Told(
-            fault=f"{device.part.id} is not ignition protected and stands in {device.zone}, which has petrol vapour "
-            f"(written at {zone.at_petrol})",
+            fault=f"{device.part.id} is not ignition protected and stands in {device.zone}, which has petrol vapour",
             remedy="use an ignition-protected part, move it, or keep the petrol out of this zone",
+            also_at=(zone.at_petrol,),
             inputs=(("part", device.part.id), ("zone", device.zone)),
         )
         yield ignition_protection.found(case, place, told)

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from checker.boat.hull import Device
-from checker.boat.parts import Bus, Source
+from checker.boat.parts import Bus
 from checker.checks.check import Case, Place, Told, at_conductor, check
 from checker.checks.words import plain
 from checker.finding import Basis, Level, Outcome
@@ -156,14 +156,14 @@ def load_return(case: Case) -> Iterator[Outcome]:
     A load whose two posts nothing ties to a battery floats: its return, or its feed, is not
     in the data.
     """
-    ties = [(d, load.feed, load.back) for load, d in _loads(case)]
-    ties += [(case.boat.devices[s.device], s.out, s.back) for s in case.studies.network.sources]
+    ties = [(d, load.feed, load.back, False) for load, d in _loads(case)]
+    ties += [(case.boat.devices[s.device], s.out, s.back, True) for s in case.studies.network.sources]
     split = _split_buses(case)
     seen: set[str] = set()
-    for device, feed, back in ties:
+    for device, feed, back, is_source in ties:
         if device.id in seen:
             continue
-        floating = _floating_end(case, device, feed, back)
+        floating = _floating_end(case, feed, back, is_source=is_source)
         if floating is None:
             yield load_return.passed(case, _at(device))
             continue
@@ -179,33 +179,37 @@ def load_return(case: Case) -> Iterator[Outcome]:
         yield load_return.found(case, _at(device), told)
 
 
-def _floating_end(case: Case, device: Device, feed: int, back: int) -> tuple[int, str] | None:
-    """Return the end that no battery's net reaches, and its name; None where the load is held."""
-    if _stands_alone(case, device, back):
-        return back, "return"
-    ends = _battery_islands(case)
+def _floating_end(case: Case, feed: int, back: int, *, is_source: bool) -> tuple[int, str] | None:
+    """Return the end of a load or source that floats, and its name; None where it is held.
+
+    It is held in a state in which batteries tie its two ends together, or in which something
+    else hangs between the same two nets: an array and its controller, a load on an isolated
+    converter.
+    """
+    network = case.studies.network
+    others = (
+        [(tie.feed, tie.back) for tie in network.loads] if is_source else [(tie.out, tie.back) for tie in network.sources]
+    )
+    for potentials in case.studies.potentials:
+        if potentials.battery_island[feed] == potentials.battery_island[back]:
+            return None
+        nets = (potentials.net[feed], potentials.net[back])
+        if any((potentials.net[a], potentials.net[b]) == nets for a, b in others):
+            return None
     for word, post in (("return", back), ("feed", feed)):
-        if not any(p.island[post] in islands for p, islands in ends):
-            if isinstance(device.part, Source) and word == "feed":
-                continue  # an array feeds its controller, not a battery
-            if any(p.island[post] == p.island[p.reference] for p, _ in ends):
-                continue
+        if not _is_anchored(case, post):
             return post, word
-    return None
+    return back, "return"
 
 
-def _stands_alone(case: Case, device: Device, post: int) -> bool:
-    """Tell whether nothing but the device's own posts is on a net, in the usual state."""
-    net = case.studies.usual.net[post]
-    posts = (case.studies.network.posts[p] for p, n in enumerate(case.studies.usual.net) if n == net)
-    return all(name == device.id or name.startswith(f"{device.id}.") for name in posts)
-
-
-def _battery_islands(case: Case) -> list[tuple[Potentials, set[int]]]:
-    return [
-        (potentials, {potentials.island[b.pos] for b in case.studies.network.batteries})
-        for potentials in case.studies.potentials
-    ]
+def _is_anchored(case: Case, post: int) -> bool:
+    """Tell whether a battery or the DC reference is on the island of a post, in some state."""
+    network = case.studies.network
+    for potentials in case.studies.potentials:
+        anchors = {potentials.battery_island[b.pos] for b in network.batteries}
+        if potentials.battery_island[post] in anchors | {potentials.battery_island[network.reference]}:
+            return True
+    return False
 
 
 @check(
@@ -237,18 +241,15 @@ def split_return(case: Case) -> Iterator[Outcome]:
 
 def _split_buses(case: Case) -> list[str]:
     """Return buses that loads return to and that no battery's net reaches in any state."""
-    index = case.studies.network.index
-    backs = {load.back for load in case.studies.network.loads}
+    index, usual = case.studies.network.index, case.studies.usual
+    backs = {usual.net[load.back] for load in case.studies.network.loads}
+    # A net that a source returns to as well is the return of that source, and not split off.
+    own = {usual.net[source.back] for source in case.studies.network.sources}
     split: list[str] = []
     for device in case.boat.devices.values():
-        if not isinstance(device.part, Bus):
-            continue
-        post = index[device.id]
-        held = any(p.island[post] in islands for p, islands in _battery_islands(case))
-        reference = any(p.island[post] == p.island[p.reference] for p in case.studies.potentials)
-        usual = case.studies.usual
-        if not held and not reference and any(usual.net[back] == usual.net[post] for back in backs):
-            split.append(device.id)
+        if isinstance(device.part, Bus) and usual.net[index[device.id]] in backs - own:
+            if not _is_anchored(case, index[device.id]):
+                split.append(device.id)
     return split
 
 

@@ -35,12 +35,13 @@ class Potentials:
 
     `net` has shape (posts,): the number of the net. `value_v` has shape (posts,): volts above
     the root of the post's island. `island` has shape (posts,): posts of one island have a
-    known voltage between them.
+    known voltage between them. `battery_island` is the same with no source taken into account.
     """
 
     state: SwitchState
     net: tuple[int, ...]
     island: tuple[int, ...]
+    battery_island: tuple[int, ...]
     value_v: tuple[float, ...]
     reference: int
     conflicts: tuple[Conflict, ...]
@@ -83,6 +84,7 @@ def study_potentials(network: Network, state: SwitchState) -> Potentials:
         else:
             islands.tie(pos, neg, battery.voltage_v)
             placed.append(battery)
+    by_batteries = {number: islands.root(number)[0] for number in set(net)}
     for source in _held_last(network):
         if islands.between(net[source.out], net[source.back]) is None:
             islands.tie(net[source.out], net[source.back], source.voltage_v)
@@ -91,6 +93,7 @@ def study_potentials(network: Network, state: SwitchState) -> Potentials:
         state=state,
         net=tuple(net),
         island=tuple(roots[number][0] for number in net),
+        battery_island=tuple(by_batteries[number] for number in net),
         value_v=tuple(roots[number][1] for number in net),
         reference=network.reference,
         conflicts=tuple(conflicts),

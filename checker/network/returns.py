@@ -15,7 +15,7 @@ from checker.network.exposure import find_bridges
 from checker.network.graph import EdgeKind, Network
 from checker.network.potentials import Potentials
 from checker.network.states import live_edges
-from checker.network.walk import Neighbours, neighbours
+from checker.network.walk import Neighbours, groups, neighbours
 
 
 @dataclass(frozen=True, slots=True)
@@ -113,11 +113,16 @@ def _gather(
             parent = network.edges[index].other(node)
             carried[parent] = max(carried.get(parent, (0.0, "", "")), amount)
             beyond[index] = amount
+    block = groups(len(network.posts), ((e.a, e.b) for n in order for e in at[n] if e.index not in bridges))
+    round_it: dict[int, tuple[float, str, str]] = {}
+    for node in order:
+        round_it[block[node]] = max(round_it.get(block[node], (0.0, "", "")), carried.get(node, (0.0, "", "")))
     for node in order:
         for edge in at[node]:
             if edge.kind is not EdgeKind.CONDUCTOR:
                 continue
             in_loop = edge.index not in bridges
-            amount = beyond.get(edge.index, carried.get(node, (0.0, "", "")) if in_loop else (0.0, "", ""))
+            # Of what comes into a ring any side of it could carry all.
+            amount = round_it[block[node]] if in_loop else beyond.get(edge.index, (0.0, "", ""))
             if amount[0] > worst.get(edge.part, ReturnExposure(0.0, "", "", False)).current_a or edge.part not in worst:
                 worst[edge.part] = ReturnExposure(*amount, in_loop)

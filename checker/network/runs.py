@@ -100,7 +100,7 @@ class _Walk:
         for origin in self._origins:
             for edge, run in self._from(origin):
                 known = worst.get(edge.part)
-                if known is None or _badness(run) > _badness(known[1]):
+                if known is None or _weight(run) > _weight(known[1]):
                     worst[edge.part] = (edge, run)
         for edge in self._over:
             if edge.part not in worst:  # only reached in a ring: no start can be told, so nothing is ahead of it
@@ -125,7 +125,9 @@ class _Walk:
                 far = self._place[edge.other(near)]
                 trail = (*path, edge)
                 total_m = length_m + edge.length_m
-                found.append((edge, self._run(start, is_battery, trail, total_m, self._device_at.get(far, ""))))
+                # A fuse that sits on another battery's post is no end: what lies before it is not behind it.
+                device = "" if far in self._battery_places else self._device_at.get(far, "")
+                found.append((edge, self._run(start, is_battery, trail, total_m, device)))
                 if far not in done:
                     heapq.heappush(waiting, (total_m, far, len(found), trail))
         return found
@@ -142,8 +144,9 @@ class _Walk:
         )
 
 
-def _badness(run: Run) -> tuple[bool, float]:
-    return (not run.device, run.length_m)
+def _weight(run: Run) -> tuple[bool, float]:
+    """Order the runs that one conductor closes: in a ring it is walked both ways, and only one way ends at a device."""
+    return (bool(run.device), run.length_m)
 
 
 def _words(network: Network, start: int, trail: tuple[Edge, ...], place: list[int]) -> tuple[str, ...]:

@@ -8,6 +8,7 @@ state shows nothing that the other does not: only the largest states of each kin
 from __future__ import annotations
 
 import itertools
+import math
 from dataclasses import dataclass
 
 from checker.boat.hull import Boat, SwitchRow
@@ -16,6 +17,7 @@ from checker.network.graph import EdgeKind, Network
 from checker.network.walk import groups
 
 MOST_STATES = 256
+MOST_COMBINATIONS = 16_384
 
 Contact = tuple[str, str, str]  # switch, post, post
 
@@ -47,26 +49,35 @@ def study_states(boat: Boat) -> States:
         rows = [SwitchRow(id="any", kind="normal", switches=())]
     found: list[SwitchState] = []
     too_many = False
+    forbidden = [row for row in boat.switch_rows if row.kind == "forbidden"]
     for row in sorted(rows, key=lambda row: (row.kind != "normal", row.id)):
-        for state in itertools.islice(_expanded(row, switches), MOST_STATES + 1):
+        for state in itertools.islice(_expanded(row, switches, forbidden), MOST_STATES + 1):
             found.append(state)
         too_many = too_many or len(found) > MOST_STATES
-    return States(tuple(_largest(found[:MOST_STATES])), tuple(_unlisted(boat, switches)), too_many)
+    unlisted, are_all = _unlisted(boat, switches)
+    return States(tuple(_largest(found[:MOST_STATES])), tuple(unlisted), too_many or not are_all)
 
 
-def _expanded(row: SwitchRow, switches: dict[str, Switch]) -> list[SwitchState]:
-    """Give a switch that the row does not name every state that closes most."""
+def _expanded(row: SwitchRow, switches: dict[str, Switch], forbidden: list[SwitchRow]) -> list[SwitchState]:
+    """Give a switch that the row does not name every state that closes most, or every one if some are forbidden."""
     named = dict(row.switches)
+    guarded = {name for other in forbidden for name, _ in other.switches}
     choices = [
-        [(name, named[name])] if name in named else [(name, state) for state in _widest(part)]
+        [(name, named[name])] if name in named else
+        [(name, state) for state, _ in part.states] if name in guarded else
+        [(name, state) for state in _widest(part)]
         for name, part in sorted(switches.items())
-    ]
+    ]  # fmt: skip
     states = []
-    for combination in itertools.islice(itertools.product(*choices), MOST_STATES + 1):
+    for combination in itertools.islice(itertools.product(*choices), MOST_STATES * 16):
+        if any(set(other.switches) <= set(combination) for other in forbidden):
+            continue
         closed = frozenset(
             (name, a, b) for name, state in combination for a, b in dict(switches[name].states)[state]
         )
-        open_choices = [f"{n} {s}" for n, s in combination if n not in named and len(_widest(switches[n])) > 1]
+        open_choices = [
+            f"{n} {s}" for n, s in combination if n not in named and (n in guarded or len(_widest(switches[n])) > 1)
+        ]
         shown = [f"{n} {s}" for n, s in combination if n in named] + open_choices
         name = "/".join([row.id, *(choice.replace(" ", "-") for choice in open_choices)])
         states.append(SwitchState(name, row.kind == "normal", closed, ", ".join(shown) or "all switches closed"))
@@ -98,16 +109,16 @@ def _largest(states: list[SwitchState]) -> list[SwitchState]:
     return kept
 
 
-def _unlisted(boat: Boat, switches: dict[str, Switch]) -> list[str]:
-    """Return combinations of the switches that the table names which no row of it covers."""
+def _unlisted(boat: Boat, switches: dict[str, Switch]) -> tuple[list[str], bool]:
+    """Return combinations of the switches that the table names which no row covers, and whether all were looked at."""
     named = sorted({name for row in boat.switch_rows for name, _ in row.switches})
     choices = [[(name, state) for state, _ in switches[name].states] for name in named]
     missing: list[str] = []
-    for combination in itertools.islice(itertools.product(*choices), 4096):
+    for combination in itertools.islice(itertools.product(*choices), MOST_COMBINATIONS):
         taken = set(combination)
         if boat.switch_rows and not any(set(row.switches) <= taken for row in boat.switch_rows):
             missing.append(", ".join(f"{name} {state}" for name, state in combination))
-    return missing
+    return missing, math.prod(len(choice) for choice in choices) <= MOST_COMBINATIONS
 
 
 def live_edges(network: Network, state: SwitchState) -> list[int]:

@@ -17,8 +17,9 @@ from checker.network.metering import Metering, study_metering
 from checker.network.potentials import Potentials, study_potentials
 from checker.network.returns import ReturnExposure, study_returns
 from checker.network.solved import SolvedConditions, solve_operations
-from checker.network.states import States, SwitchState, places, study_states
+from checker.network.states import States, SwitchState, live_edges, study_states
 from checker.network.supply import SupplyWay, study_supply
+from checker.network.walk import groups
 
 
 @dataclass(frozen=True, slots=True)
@@ -107,8 +108,12 @@ class Studies:
 
     @cached_property
     def places(self) -> list[int]:
-        """Return for each post the place it is at: posts with no conductor between them share one."""
-        return places(self.network, self.usual.state, (EdgeKind.CONDUCTOR, EdgeKind.BOND, EdgeKind.SHIELD))
+        """Return for each post the place it is at: posts with no conductor or metal between them share one."""
+        conductors = (EdgeKind.CONDUCTOR, EdgeKind.BOND, EdgeKind.SHIELD)
+        metal = {joint.id for joint in self.boat.joints}
+        edges = (self.network.edges[i] for i in live_edges(self.network, self.usual.state))
+        free = ((e.a, e.b) for e in edges if e.kind not in conductors and e.part not in metal)
+        return groups(len(self.network.posts), free)
 
     @cached_property
     def bank_conductors(self) -> frozenset[str]:

@@ -40,10 +40,16 @@ def write_reports(result: FleetResult, cards: Mapping[str, Card], folder: Path) 
         hulls = folder / HULL_FOLDER
         hulls.mkdir(parents=True, exist_ok=True)
         for old in sorted(hulls.glob("*.txt")):
-            if f"{HULL_FOLDER}/{old.name}" not in files:
+            if f"{HULL_FOLDER}/{old.name}" not in files and _is_ours(old):
                 old.unlink()
         for name, text in sorted(files.items()):
             (folder / name).write_bytes(text.encode("utf-8"))
     except OSError as error:
         raise UsageError(f"reports cannot be written to {folder}: {error.strerror}") from error
     return len(files)
+
+
+def _is_ours(report: Path) -> bool:
+    """Tell whether a file is a report of this tool: nothing else in the folder is touched."""
+    with report.open("rb") as file:
+        return file.read(6) == b"hull: "

@@ -87,14 +87,20 @@ def _study(study: Study) -> dict[str, Any]:
 def _passes(study: Study) -> list[dict[str, Any]]:
     """Return the passes by check, limit set and quantity; a place is [value, limit, headroom], or a note."""
     groups: dict[tuple[str, str, str, str, bool], dict[str, Any]] = {}
+    told: Any
     for outcome in study.passes:
         measure = outcome.measure
         if measure is None:
-            groups.setdefault((outcome.check, outcome.limit_set, "", "", False), {})[outcome.part] = outcome.note
+            key, told = (outcome.check, outcome.limit_set, "", "", False), outcome.note or ""
         else:
             key = (outcome.check, outcome.limit_set, measure.quantity, measure.unit or "fraction", measure.at_least)
-            figures = [_number(x) for x in (measure.value, measure.limit, measure.headroom_fraction)]
-            groups.setdefault(key, {})[outcome.part] = figures
+            told = [_number(x) for x in (measure.value, measure.limit, measure.headroom_fraction)]
+        places = groups.setdefault(key, {})
+        # A part that one check looks at more than once has each look under a name of its own.
+        times = sum(name == outcome.part or name.startswith(f"{outcome.part} #") for name in places) if (
+            outcome.part in places
+        ) else 0
+        places[f"{outcome.part} #{times + 1}" if times else outcome.part] = told
     return [
         {
             "check": check,
@@ -125,6 +131,8 @@ def _outcome(outcome: Outcome) -> dict[str, Any]:
         value = getattr(outcome, name)
         if value:
             facts[name] = value
+    if outcome.also_at:
+        facts["also_at"] = [str(span) for span in outcome.also_at]
     if outcome.path:
         facts["path"] = list(outcome.path)
     if outcome.verdict is not Verdict.NOT_ASSESSED:

@@ -63,6 +63,8 @@ def finding_lines(
         yield f"  on: {who}"
     if first.at.file:
         yield f"  at: {flat(str(first.at))}"
+    if first.also_at:
+        yield f"  see also: {', '.join(flat(str(span)) for span in first.also_at)}"
     for outcome in outcomes:
         yield from _limit_lines(outcome, len(outcomes) > 1)
     for missing in dict.fromkeys(o.missing for o in outcomes if o.missing):

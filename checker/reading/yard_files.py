@@ -63,6 +63,7 @@ def read_yard(folder: Path) -> YardFiles:
     if not (folder / YARD_FILE).is_file():
         raise FleetNotFoundError(f"no {YARD_FILE} in {folder}: give the folder of a yard's repository")
     files = YardFiles()
+    _look_for_misspelt_folders(folder, files)
     for name, path in _yaml_files(folder, files):
         kind, owner = _kind_of(name)
         if kind is None:
@@ -92,6 +93,17 @@ def _yaml_files(folder: Path, files: YardFiles) -> Iterator[tuple[str, Path]]:
                 at = Span(_name_of(folder, link), 1, 1)
                 files.faults.append(Fault("unreadable-file", at, "a linked folder is not read", "copy the files in"))
     yield from sorted((_name_of(folder, path), path) for path in found)
+
+
+def _look_for_misspelt_folders(folder: Path, files: YardFiles) -> None:
+    """Tell a folder that is all but named like one of a yard's: what lies in it would be read by nobody."""
+    for path in sorted(folder.iterdir()):
+        if path.is_dir() and path.name not in _FOLDERS and not path.name.startswith("."):
+            meant = nearest(path.name, _FOLDERS)
+            if meant and any(_is_yaml(inside) for inside in path.rglob("*")):
+                at = Span(_name_of(folder, path), 1, 1)
+                message = "no files are read from this folder"
+                files.faults.append(Fault("unreadable-file", at, message, f"did you mean {meant}/?"))
 
 
 def _is_yaml(path: Path) -> bool:

@@ -1,0 +1,248 @@
+"""Measure a check of a large fleet: `python tests/benchmark.py --help` (a script, not a test).
+
+A seeded generator writes sister hulls of the example class into a temporary folder: `--hulls` of
+them with `--distinct` different as-built contents. Each measurement runs in a process of its own,
+so that its peak memory is its own; every figure is a median. Machines differ and are shared, so
+each time also stands as a multiple of a fixed loop that is timed in the same process, and the
+whole check as a multiple of merely parsing the same bytes.
+"""
+
+from __future__ import annotations
+
+import argparse
+import datetime
+import gc
+import json
+import random
+import resource
+import shutil
+import statistics
+import subprocess
+import sys
+import tempfile
+import time
+from collections.abc import Callable
+from pathlib import Path
+from typing import Any
+
+ROOT = Path(__file__).resolve().parents[1]
+EXAMPLE = ROOT / "fleet_example"
+CLASS = EXAMPLE / "classes" / "tindral-36"
+TODAY = datetime.date(2026, 12, 1)
+OPTION_SETS = (
+    (),
+    ("OPT-SOL2",),
+    ("OPT-THR12",),
+    ("OPT-24V",),
+    ("OPT-THR12", "OPT-SOL2"),
+    ("OPT-24V", "OPT-SOL2"),
+)
+STATUSES = ("planned", "in-build", "signed", "delivered")
+SHELL_RUNS = 7
+
+Timed = dict[str, float]
+
+
+def write_fleet(folder: Path, *, hulls: int, distinct: int, seed: int) -> None:
+    """Write the example's parts and class, and hulls whose measured tails the seed decides."""
+    chance = random.Random(seed)
+    for name in ("yard.yaml", "parts", "classes"):
+        source = EXAMPLE / name
+        (shutil.copytree if source.is_dir() else shutil.copy)(source, folder / name)
+    branches = _branches()
+    contents = [_content(chance, branches, number) for number in range(distinct)]
+    (folder / "hulls").mkdir()
+    for number in range(hulls):
+        options, changes = contents[number % distinct]
+        text = (
+            "# yaml-language-server: $schema=../../schemas/hull.json\n"
+            f"hull: TND-{number:04}\nclass: tindral-36\nrevision: 4\nstatus: {STATUSES[number % len(STATUSES)]}\n"
+            f"options: [{', '.join(options)}]\n{changes}"
+        )
+        (folder / "hulls" / f"tnd-{number:04}.yaml").write_text(text, encoding="utf-8")
+
+
+def _branches() -> dict[str, float]:
+    """Return the branch circuits of the example's panel, which no option takes away, and their tails, m."""
+    import yaml
+
+    circuits = yaml.safe_load((CLASS / "panel.yaml").read_text(encoding="utf-8"))["circuits"]
+    return {name: float(c["tail"].removesuffix(" m")) for name, c in circuits.items() if "cable" in c}
+
+
+def _content(chance: random.Random, branches: dict[str, float], number: int) -> tuple[tuple[str, ...], str]:
+    """Return options and as-built changes; tenths of a millimetre tell every content apart."""
+    lines = ["changes:"]
+    for index, circuit in enumerate(chance.sample(sorted(branches), chance.randrange(1, 5)), start=1):
+        tail_m = branches[circuit] * chance.uniform(0.85, 0.95) + (number / 10_000 if index == 1 else 0)
+        lines += [
+            f"  DEV-{index}:",
+            f"    what: tail of {circuit} measured as built",
+            "    state: recorded",
+            "    set:",
+            "      circuits:",
+            f"        {circuit}: {{tail: {tail_m:.4f} m}}",
+        ]
+    return OPTION_SETS[number % len(OPTION_SETS)], "\n".join(lines) + "\n"
+
+
+def timed(run: Callable[[], Any]) -> tuple[float, Any]:
+    """Return the seconds that a call took, and its value."""
+    start = time.perf_counter()
+    value = run()
+    return time.perf_counter() - start, value
+
+
+def reference_loop() -> None:
+    """Do a fixed amount of plain work: the yardstick of a machine."""
+    seen: dict[int, str] = {}
+    for number in range(400_000):
+        seen[number * 7919 % 65_521] = f"{number}"
+
+
+def measure_check(folder: Path, workers: int) -> Timed:
+    """Check a fleet and write its reports; return the seconds of each stage and the memory, MB."""
+    from checker import pipeline
+    from checker.output.files import write_reports
+
+    spent: Timed = {}
+
+    def watch(name: str, stage: str) -> None:
+        work = getattr(pipeline, name)
+
+        def watched(*words: Any, **named: Any) -> Any:
+            seconds, value = timed(lambda: work(*words, **named))
+            spent[stage] = spent.get(stage, 0.0) + seconds
+            return value
+
+        setattr(pipeline, name, watched)
+
+    loop, _ = timed(reference_loop)
+    for name, stage in (("read_yard", "read"), ("assemble", "assemble"), ("_study_all", "study")):
+        watch(name, stage)
+    whole, result = timed(lambda: pipeline.check_fleet(folder, today=TODAY, workers=workers))
+    spent["gather"] = whole - sum(spent.values())
+    cards = {card.id: card for card in pipeline.all_cards()}
+    with tempfile.TemporaryDirectory() as reports:
+        spent["write"], _ = timed(lambda: write_reports(result, cards, Path(reports)))
+    spent["whole"] = whole + spent["write"]
+    spent["loop"] = loop
+    spent["peak MB"] = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024
+    # Nothing where the fleet is too small for worker processes.
+    spent["peak MB of the largest worker"] = resource.getrusage(resource.RUSAGE_CHILDREN).ru_maxrss / 1024
+    return spent
+
+
+def measure_parsing(folder: Path, _: int) -> Timed:
+    """Parse the same bytes and throw the result away; the garbage collector is off, as it is in a check."""
+    import yaml
+
+    texts = [path.read_bytes() for path in sorted(folder.rglob("*.yaml"))]
+    gc.disable()
+    loop, _ = timed(reference_loop)
+    events, _ = timed(lambda: [None for text in texts for _ in yaml.parse(text, Loader=yaml.CSafeLoader)])
+    load, _ = timed(lambda: [yaml.load(text, Loader=yaml.CSafeLoader) for text in texts])
+    return {"events": events, "load": load, "loop": loop, "bytes": float(sum(map(len, texts)))}
+
+
+MEASUREMENTS = {"check": measure_check, "parsing": measure_parsing}
+
+
+def medians(what: str, folder: Path, workers: int, runs: int) -> Timed:
+    """Return the medians over several processes of their own."""
+    command = [
+        sys.executable,
+        __file__,
+        "--measure",
+        what,
+        "--folder",
+        str(folder),
+        "--workers",
+        str(workers),
+    ]
+    found: list[Timed] = []
+    for _ in range(runs):
+        run = subprocess.run(command, capture_output=True, text=True, check=True, cwd=ROOT)
+        found.append(json.loads(run.stdout))
+    return {key: statistics.median(one[key] for one in found) for key in found[0]}
+
+
+def shell_seconds(words: list[str]) -> float:
+    """Return the median seconds of a command from its start to its end."""
+    return statistics.median(
+        timed(lambda: subprocess.run(words, cwd=ROOT, capture_output=True, check=False))[0]
+        for _ in range(SHELL_RUNS)
+    )
+
+
+def print_times(times: Timed, keys: list[str]) -> None:
+    """Print seconds, each with its multiple of the reference loop."""
+    for key in keys:
+        print(f"  {key:10} {times[key]:8.3f} s  {times[key] / times['loop']:8.1f} loops")
+
+
+def print_fleet(folder: Path, workers: list[int], runs: int) -> None:
+    """Print what parsing and checking a fleet cost."""
+    parsing = medians("parsing", folder, 1, runs)
+    print(f"parsing its {parsing['bytes'] / 1e6:.2f} MB and no more (reference loop {parsing['loop']:.3f} s)")
+    print_times(parsing, ["events", "load"])
+    for number in workers:
+        check = medians("check", folder, number, runs)
+        print(
+            f"check with {number} {'worker' if number == 1 else 'workers'} (reference loop {check['loop']:.3f} s)"
+        )
+        print_times(check, ["read", "assemble", "study", "gather", "write", "whole"])
+        for name in ("events", "load"):
+            print(f"  {check['whole'] / parsing[name]:.1f} times the parsing ({name})")
+        for key in (key for key, value in check.items() if key.startswith("peak") and value):
+            print(f"  {key}: {check[key]:.0f}")
+
+
+def print_shell() -> None:
+    """Print what a person waits for at the shell."""
+    bare = shell_seconds([sys.executable, "-c", "pass"])
+    version = shell_seconds([sys.executable, "-m", "checker", "--version"])
+    example = shell_seconds(
+        [sys.executable, "-m", "checker", "check", "fleet_example", "--today", TODAY.isoformat()]
+    )
+    print(f"bare interpreter            {bare:8.3f} s")
+    print(f"fairloom --version          {version:8.3f} s  {version / bare:.1f} times the bare interpreter")
+    print(f"fairloom check fleet_example{example:8.3f} s")
+
+
+def main() -> None:
+    """Read the arguments; measure and print."""
+    parser = argparse.ArgumentParser(
+        description=__doc__, formatter_class=argparse.RawDescriptionHelpFormatter
+    )
+    parser.add_argument(
+        "--hulls", type=int, default=1000, metavar="N", help="hulls of the fleet (default 1000)"
+    )
+    parser.add_argument(
+        "--distinct", type=int, default=50, metavar="D", help="different contents (default 50)"
+    )
+    parser.add_argument("--seed", type=int, default=1, metavar="S", help="seed of the generator (default 1)")
+    parser.add_argument(
+        "--runs", type=int, default=3, metavar="R", help="runs to take the median of (default 3)"
+    )
+    parser.add_argument("--workers", type=int, nargs="+", default=[1, 2], metavar="W", help="(default 1 2)")
+    parser.add_argument("--folder", type=Path, help="write the fleet here and keep it")
+    parser.add_argument("--measure", choices=sorted(MEASUREMENTS), help=argparse.SUPPRESS)
+    options = parser.parse_args()
+    sys.path.insert(0, str(ROOT))
+    if options.measure:
+        print(json.dumps(MEASUREMENTS[options.measure](options.folder, options.workers[0])))
+        return
+    with tempfile.TemporaryDirectory() as scratch:
+        folder = options.folder or Path(scratch) / "fleet"
+        folder.mkdir(parents=True)
+        write_fleet(folder, hulls=options.hulls, distinct=options.distinct, seed=options.seed)
+        print(
+            f"{options.hulls} hulls, {options.distinct} contents, seed {options.seed}; medians of {options.runs}"
+        )
+        print_fleet(folder, options.workers, options.runs)
+    print_shell()
+
+
+if __name__ == "__main__":
+    main()
