@@ -48,7 +48,9 @@ def _parser() -> argparse.ArgumentParser:
     commands = parser.add_subparsers(title="commands", metavar="COMMAND", required=True)
     check = commands.add_parser("check", help="check every hull and option set of a yard", description=_check.__doc__)
     check.add_argument("folder", nargs="?", default=".", metavar="FOLDER", help="the yard's repository (default: here)")
-    check.add_argument("--only", action="append", default=[], metavar="HULL", help="check this hull only; may be repeated")
+    check.add_argument(
+        "--only", action="append", default=[], metavar="HULL", help="check this hull only; may be repeated"
+    )
     check.add_argument("--reports", metavar="FOLDER", help="also write the text reports and the JSON result there")
     check.add_argument("--today", metavar="DATE", help="judge waivers as on this day (default: the system's date)")
     check.add_argument("--workers", type=_positive, default=None, metavar="N",

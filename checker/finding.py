@@ -108,9 +108,10 @@ class Outcome(NamedTuple):
 
     `part` is the id the yard wrote or the derived one (`P11.out`). `limit_set` is empty where
     the verdict rests on physics or the yard's own data. `missing` names the field to fill in
-    where the verdict is "not assessed". `also_at` are other lines that have to do with it. `inputs` are the facts that made a finding; a waiver
-    is bound to their fingerprint. A named tuple, since a fleet makes hundreds of thousands and
-    sends them between processes; always made by field names.
+    where the verdict is "not assessed". `also_at` are other lines that have to do with it.
+    `inputs` are the facts that made a finding; a waiver is bound to their fingerprint. A named
+    tuple, since a fleet makes hundreds of thousands and sends them between processes; always
+    made by field names.
     """
 
     verdict: Verdict

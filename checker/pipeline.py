@@ -276,14 +276,24 @@ class _Gatherer:
             own += [unmatched(w) for w in mine if w.hull and w.id not in waived.matched]
             results.append(
                 SubjectResult(
-                    id=subject.id, is_hull=subject.is_hull, class_id=subject.class_id,
-                    class_name=str(design.base.data["class"].get("name", "")), revision=subject.revision,
-                    class_revision=design.revision, options=subject.options, status=subject.status,
-                    changes=subject.changes, study=alike[subject.key][0],
-                    alike=tuple(name for name in alike[subject.key] if name != subject.id), sets=study.sets,
-                    news=news_order([*waived.outcomes, *own]), own=news_order(own), passes=study.passes,
-                    thin=study.thin, accepted=waived.accepted,
-                )  # fmt: skip
+                    id=subject.id,
+                    is_hull=subject.is_hull,
+                    class_id=subject.class_id,
+                    class_name=str(design.base.data["class"].get("name", "")),
+                    revision=subject.revision,
+                    class_revision=design.revision,
+                    options=subject.options,
+                    status=subject.status,
+                    changes=subject.changes,
+                    study=alike[subject.key][0],
+                    alike=tuple(name for name in alike[subject.key] if name != subject.id),
+                    sets=study.sets,
+                    news=news_order([*waived.outcomes, *own]),
+                    own=news_order(own),
+                    passes=study.passes,
+                    thin=study.thin,
+                    accepted=waived.accepted,
+                )
             )
         return FleetResult(
             yard=self._yard_name(),
@@ -384,5 +394,3 @@ def _behind(subject: Subject, design: ClassDesign) -> list[Outcome]:
         inputs=(("revision", str(subject.revision)), ("class", str(design.revision))),
     )  # fmt: skip
     return [outcome._replace(note="" if level is Level.ERROR else "nothing electrical changed")]
-
-

@@ -170,8 +170,7 @@ def medians(what: str, folder: Path, workers: int, runs: int) -> Timed:
 def shell_seconds(words: list[str]) -> float:
     """Return the median seconds of a command from its start to its end."""
     return statistics.median(
-        timed(lambda: subprocess.run(words, cwd=ROOT, capture_output=True, check=False))[0]
-        for _ in range(SHELL_RUNS)
+        timed(lambda: subprocess.run(words, cwd=ROOT, capture_output=True, check=False))[0] for _ in range(SHELL_RUNS)
     )
 
 
@@ -188,9 +187,7 @@ def print_fleet(folder: Path, workers: list[int], runs: int) -> None:
     print_times(parsing, ["events", "load"])
     for number in workers:
         check = medians("check", folder, number, runs)
-        print(
-            f"check with {number} {'worker' if number == 1 else 'workers'} (reference loop {check['loop']:.3f} s)"
-        )
+        print(f"check with {number} {'worker' if number == 1 else 'workers'} (reference loop {check['loop']:.3f} s)")
         print_times(check, ["read", "assemble", "study", "gather", "write", "whole"])
         for name in ("events", "load"):
             print(f"  {check['whole'] / parsing[name]:.1f} times the parsing ({name})")
@@ -202,9 +199,7 @@ def print_shell() -> None:
     """Print what a person waits for at the shell."""
     bare = shell_seconds([sys.executable, "-c", "pass"])
     version = shell_seconds([sys.executable, "-m", "checker", "--version"])
-    example = shell_seconds(
-        [sys.executable, "-m", "checker", "check", "fleet_example", "--today", TODAY.isoformat()]
-    )
+    example = shell_seconds([sys.executable, "-m", "checker", "check", "fleet_example", "--today", TODAY.isoformat()])
     print(f"bare interpreter            {bare:8.3f} s")
     print(f"fairloom --version          {version:8.3f} s  {version / bare:.1f} times the bare interpreter")
     print(f"fairloom check fleet_example{example:8.3f} s")
@@ -212,19 +207,11 @@ def print_shell() -> None:
 
 def main() -> None:
     """Read the arguments; measure and print."""
-    parser = argparse.ArgumentParser(
-        description=__doc__, formatter_class=argparse.RawDescriptionHelpFormatter
-    )
-    parser.add_argument(
-        "--hulls", type=int, default=1000, metavar="N", help="hulls of the fleet (default 1000)"
-    )
-    parser.add_argument(
-        "--distinct", type=int, default=50, metavar="D", help="different contents (default 50)"
-    )
+    parser = argparse.ArgumentParser(description=__doc__, formatter_class=argparse.RawDescriptionHelpFormatter)
+    parser.add_argument("--hulls", type=int, default=1000, metavar="N", help="hulls of the fleet (default 1000)")
+    parser.add_argument("--distinct", type=int, default=50, metavar="D", help="different contents (default 50)")
     parser.add_argument("--seed", type=int, default=1, metavar="S", help="seed of the generator (default 1)")
-    parser.add_argument(
-        "--runs", type=int, default=3, metavar="R", help="runs to take the median of (default 3)"
-    )
+    parser.add_argument("--runs", type=int, default=3, metavar="R", help="runs to take the median of (default 3)")
     parser.add_argument("--workers", type=int, nargs="+", default=[1, 2], metavar="W", help="(default 1 2)")
     parser.add_argument("--folder", type=Path, help="write the fleet here and keep it")
     parser.add_argument("--measure", choices=sorted(MEASUREMENTS), help=argparse.SUPPRESS)
@@ -237,9 +224,7 @@ def main() -> None:
         folder = options.folder or Path(scratch) / "fleet"
         folder.mkdir(parents=True)
         write_fleet(folder, hulls=options.hulls, distinct=options.distinct, seed=options.seed)
-        print(
-            f"{options.hulls} hulls, {options.distinct} contents, seed {options.seed}; medians of {options.runs}"
-        )
+        print(f"{options.hulls} hulls, {options.distinct} contents, seed {options.seed}; medians of {options.runs}")
         print_fleet(folder, options.workers, options.runs)
     print_shell()
 

@@ -60,7 +60,9 @@ Piece = Device | Conductor | Joint | Shield | Circuit | SwitchRow | Condition | 
 # --- devices
 
 
-def a_device(name: str, part: Part, *, zone: str = "DRY", mount: Mapping[str, str] | None = None, **more: Any) -> Device:
+def a_device(
+    name: str, part: Part, *, zone: str = "DRY", mount: Mapping[str, str] | None = None, **more: Any
+) -> Device:
     """Place a part; `mount` joins own posts to other posts without length."""
     return Device(id=name, part=part, zone=zone, mounts=tuple(sorted((mount or {}).items())), **more)
 
@@ -107,12 +109,16 @@ def a_shunt(name: str, measures: str = "HOUSE", rating_a: float = 500.0) -> Devi
 
 def a_load(name: str, current_a: float = 5.0, *, volts: float = 12.0, motor: bool = False, **more: Any) -> Device:
     """Place a load between its posts pos and neg."""
-    return a_device(name, Load(id="load", voltage_v=volts, current_a=current_a, is_motor=motor, max_device_a=1000.0), **more)
+    return a_device(
+        name, Load(id="load", voltage_v=volts, current_a=current_a, is_motor=motor, max_device_a=1000.0), **more
+    )
 
 
 def a_source(name: str, max_a: float = 60.0, *, volts: float = 12.0, limited: bool = True) -> Device:
     """Place a charge source between its posts out and neg."""
-    part = Source(id="source", outputs=(Terminals(post="out", return_post="neg", max_a=max_a, voltage_v=volts, limited=limited),))
+    part = Source(
+        id="source", outputs=(Terminals(post="out", return_post="neg", max_a=max_a, voltage_v=volts, limited=limited),)
+    )
     return a_device(name, part)
 
 
@@ -137,7 +143,11 @@ def a_conductor(name: str, start: str, end: str, *, size: str = "6 AWG", length:
     length_m = read_number(length, Dimension.LENGTH)
     if more.pop("enclosed", False):
         more["enclosed_m"] = length_m
-    facts: dict[str, Any] = {"cable": SINGLE, "length_unit": "ft" if length.endswith(("ft", "in")) else "m", "zones": ("DRY",)}
+    facts: dict[str, Any] = {
+        "cable": SINGLE,
+        "length_unit": "ft" if length.endswith(("ft", "in")) else "m",
+        "zones": ("DRY",),
+    }
     return Conductor(id=name, start=start, end=end, size=read_size(size), length_m=length_m, **{**facts, **more})
 
 
@@ -152,9 +162,13 @@ def a_bond(name: str, start: str, end: str, **more: Any) -> Conductor:
     return a_conductor(name, start, end, is_bond=True, **more)
 
 
-def a_circuit(name: str, *conductors: str, current_a: float | None = 5.0, service: str = "general", **more: Any) -> Circuit:
+def a_circuit(
+    name: str, *conductors: str, current_a: float | None = 5.0, service: str = "general", **more: Any
+) -> Circuit:
     """Name a circuit by its conductors."""
-    return Circuit(id=name, name=name, service=service, current_a=current_a, conductors=tuple(sorted(conductors)), **more)
+    return Circuit(
+        id=name, name=name, service=service, current_a=current_a, conductors=tuple(sorted(conductors)), **more
+    )
 
 
 def a_row(name: str, kind: str = "normal", **switches: str) -> SwitchRow:

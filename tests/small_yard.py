@@ -293,9 +293,7 @@ class Yard:
         """Return the yard without the lines that start so; each must be one line of all files together."""
         yard = self
         for start in starts:
-            lines = [
-                x for text in yard.files.values() for x in text.splitlines() if x.strip().startswith(start)
-            ]
+            lines = [x for text in yard.files.values() for x in text.splitlines() if x.strip().startswith(start)]
             assert len(lines) == 1, f"{len(lines)} lines start with {start!r}"
             yard = yard.edit(f"{lines[0]}\n", "")
         return yard

@@ -90,7 +90,14 @@ def test_a_run_that_could_not_be_done_ends_with_2_and_says_why(words: list[str],
 
 @pytest.mark.parametrize(
     "words",
-    [[], ["chek"], ["check", "--workers", "0"], ["check", "--workers", "x"], ["check", "--workers", "²"], ["check", "a", "b"]],
+    [
+        [],
+        ["chek"],
+        ["check", "--workers", "0"],
+        ["check", "--workers", "x"],
+        ["check", "--workers", "²"],
+        ["check", "a", "b"],
+    ],
 )
 def test_a_command_line_that_cannot_be_understood_ends_with_2(words: list[str]) -> None:
     done = run(*words)
@@ -115,7 +122,9 @@ def test_the_version_is_told() -> None:
 
 
 def test_the_version_is_told_without_loading_what_is_slow() -> None:
-    script = "import sys\nfrom checker.cli import main\ntry:\n    main(['--version'])\nfinally:\n    print(*sys.modules)"
+    script = (
+        "import sys\nfrom checker.cli import main\ntry:\n    main(['--version'])\nfinally:\n    print(*sys.modules)"
+    )
     done = subprocess.run([sys.executable, "-c", script], cwd=ROOT, capture_output=True, text=True, check=False)
     loaded = set(done.stdout.split())
     assert "checker.cli" in loaded
@@ -155,7 +164,10 @@ def test_only_the_named_hulls_are_checked(tmp_path: Path) -> None:
 
 
 def test_reports_written_twice_are_the_same_bytes_and_stale_ones_are_removed(tmp_path: Path) -> None:
-    yard, reports = write(tmp_path / "yard", {**DORY, "hulls/b.yaml": HULL.replace("DORY-1", "DORY-2")}), tmp_path / "out"
+    yard, reports = (
+        write(tmp_path / "yard", {**DORY, "hulls/b.yaml": HULL.replace("DORY-1", "DORY-2")}),
+        tmp_path / "out",
+    )
     done = run("check", yard, "--reports", reports, *DAY)
     assert done.stderr == f"4 reports written to {reports}\n"
     first = files_in(reports)
@@ -190,7 +202,9 @@ def test_reports_name_no_place_of_the_machine(tmp_path: Path) -> None:
 # --- the same bytes everywhere
 
 
-def outputs(yard: Path, reports: Path, *words: str, cwd: Path = ROOT, **environment: str) -> tuple[str, dict[str, bytes]]:
+def outputs(
+    yard: Path, reports: Path, *words: str, cwd: Path = ROOT, **environment: str
+) -> tuple[str, dict[str, bytes]]:
     done = run("check", yard, "--reports", reports, *DAY, *words, cwd=cwd, **environment)
     assert done.returncode == 1, done.stderr
     assert "Traceback" not in done.stderr
@@ -255,7 +269,9 @@ def test_a_closed_pipe_ends_quietly(words: tuple[str, ...]) -> None:
 @pytest.mark.skipif(os.name == "nt", reason="needs a shell with pipes")
 def test_output_that_is_cut_off_after_its_first_line_ends_quietly() -> None:
     command = f"'{sys.executable}' -m checker check fleet_example --today 2026-12-01 | head -n 1"
-    done = subprocess.run(["sh", "-c", command], cwd=ROOT, capture_output=True, text=True, encoding="utf-8", check=False)
+    done = subprocess.run(
+        ["sh", "-c", command], cwd=ROOT, capture_output=True, text=True, encoding="utf-8", check=False
+    )
     assert done.stderr == ""
     assert done.stdout.startswith("error: ")
     assert done.stdout.count("\n") == 1
@@ -367,7 +383,9 @@ def test_the_name_of_a_file_or_folder_never_steers_a_terminal_or_starts_a_line(t
 
 def test_a_very_long_text_does_not_make_a_very_long_report(tmp_path: Path) -> None:
     files = edited("hulls/dory-1.yaml", "hull: DORY-1", "hull: " + "x" * 100_000)
-    files = edited("classes/dory-14/class.yaml", "size: 6 AWG, length: 0.1 m", f"size: {'9' * 100_000} AWG, length: 0.1 m", files)
+    files = edited(
+        "classes/dory-14/class.yaml", "size: 6 AWG, length: 0.1 m", f"size: {'9' * 100_000} AWG, length: 0.1 m", files
+    )
     files["hulls/dory-2.yaml"] = HULL.replace("DORY-1", "DORY-2").replace("[]", f"[{'o' * 40}]") + "k" * 900 + ": 1\n"
     done = run("check", write(tmp_path, files), *DAY)
     assert done.returncode == 1

@@ -106,9 +106,7 @@ def test_the_installed_code_is_the_wheels_and_not_the_checkouts(installed: Path,
     assert Path(schemas) == Path(module).parents[1] / "_schemas"
 
 
-def test_the_installed_command_checks_the_example_fleet_as_the_checkout_does(
-    installed: Path, tmp_path: Path
-) -> None:
+def test_the_installed_command_checks_the_example_fleet_as_the_checkout_does(installed: Path, tmp_path: Path) -> None:
     shutil.copytree(ROOT / "fleet_example", tmp_path / "yard", ignore=shutil.ignore_patterns("reports"))
     words = ["check", "yard", "--today", "2026-12-01"]
     here = "import sys; sys.path.insert(0, sys.argv.pop(1)); from checker.cli import main; sys.exit(main())"

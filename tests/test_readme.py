@@ -16,9 +16,7 @@ ROOT = Path(__file__).resolve().parents[1]
 README = (ROOT / "README.md").read_text(encoding="utf-8")
 TODAY = ["--today", "2026-12-01"]
 YARD = dict(re.findall(r"^`([\w/.-]+\.yaml)`\n\n```yaml\n(.*?)^```", README, flags=re.DOTALL | re.MULTILINE))
-QUOTED = re.findall(
-    r"`(fleet_example/[\w/.-]+)`:\n\n```yaml\n(.*?)^```", README, flags=re.DOTALL | re.MULTILINE
-)
+QUOTED = re.findall(r"`(fleet_example/[\w/.-]+)`:\n\n```yaml\n(.*?)^```", README, flags=re.DOTALL | re.MULTILINE)
 SHELL = re.findall(r"^```sh\n(.*?)\n```", README, flags=re.DOTALL | re.MULTILINE)
 SHOWN = [
     line
@@ -66,9 +64,7 @@ def test_the_small_yard_has_a_file_of_every_kind_that_is_needed() -> None:
     ]
 
 
-def test_the_small_yard_passes_with_everything_assessed(
-    yard: Path, capsys: pytest.CaptureFixture[str]
-) -> None:
+def test_the_small_yard_passes_with_everything_assessed(yard: Path, capsys: pytest.CaptureFixture[str]) -> None:
     assert main(["check", str(yard), *TODAY]) == 0
     printed = capsys.readouterr().out.splitlines()
     assert "hull DORY-01 (in-build, no options): passes" in printed
@@ -80,9 +76,7 @@ def test_the_small_yard_fails_as_told_once_its_fuse_is_moved_away(
     yard: Path, capsys: pytest.CaptureFixture[str]
 ) -> None:
     design = yard / "classes/dory-7/class.yaml"
-    design.write_text(
-        YARD["classes/dory-7/class.yaml"].replace("length: 6 in", "length: 9 in"), encoding="utf-8"
-    )
+    design.write_text(YARD["classes/dory-7/class.yaml"].replace("length: 6 in", "length: 9 in"), encoding="utf-8")
     assert main(["check", str(yard), "--only", "DORY-01", *TODAY]) == 1
     printed = capsys.readouterr().out
     found = re.findall(r"^error: (\S+) of .*\[(.*)\]$", printed, flags=re.MULTILINE)
@@ -108,9 +102,7 @@ def test_the_hull_that_readme_calls_sound_passes() -> None:
 @pytest.mark.parametrize(("name", "text"), QUOTED)
 def test_every_block_of_the_format_stands_in_the_example(name: str, text: str) -> None:
     whole = plain((ROOT / name).read_text(encoding="utf-8"))
-    wrong = {
-        path: (value, at(whole, path)) for path, value in leaves(plain(text)) if at(whole, path) != value
-    }
+    wrong = {path: (value, at(whole, path)) for path, value in leaves(plain(text)) if at(whole, path) != value}
     assert wrong == {}
 
 
@@ -127,9 +119,7 @@ def test_what_is_not_recorded_is_not_assessed(tmp_path: Path, capsys: pytest.Cap
         copy.write_text(re.sub(r"(?ms)^shields:\n.*\Z", "shields: not recorded\n", text), encoding="utf-8")
     assert main(["check", str(tmp_path), "--only", "TND-031", *TODAY]) == 0
     printed = capsys.readouterr().out
-    found = re.findall(
-        r"^not assessed: (\S+).*\[(.*)\]\n(?:  .*\n)*?  fill in: (.*)$", printed, flags=re.MULTILINE
-    )
+    found = re.findall(r"^not assessed: (\S+).*\[(.*)\]\n(?:  .*\n)*?  fill in: (.*)$", printed, flags=re.MULTILINE)
     assert [(check, field) for _, check, field in found] == [("shunt-bypass", "shields")]
 
 
@@ -140,9 +130,7 @@ def test_ci_runs_the_tests_by_the_command_of_the_readme() -> None:
 
 
 def test_each_of_the_two_first_commands_makes_its_own_environment() -> None:
-    made = [
-        command for command in SHELL if command.startswith("python3 -m venv .venv && .venv/bin/pip install")
-    ]
+    made = [command for command in SHELL if command.startswith("python3 -m venv .venv && .venv/bin/pip install")]
     assert made == SHELL[:2]
 
 

@@ -46,9 +46,7 @@ def test_a_question_about_the_command_loads_nothing_slow(words: list[str]) -> No
 def test_explaining_a_check_loads_no_validator_and_no_graph_library() -> None:
     status, modules = loaded("explain", "shunt-bypass")
     assert status == 0
-    assert [
-        name for name in ("jsonschema", "referencing", "networkx", "multiprocessing") if name in modules
-    ] == []
+    assert [name for name in ("jsonschema", "referencing", "networkx", "multiprocessing") if name in modules] == []
 
 
 def test_checking_one_hull_loads_no_graph_library_and_starts_no_processes() -> None:

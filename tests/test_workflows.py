@@ -58,9 +58,7 @@ def test_the_workflow_runs_on_pull_requests_and_on_main_with_read_rights_only() 
 
 
 def test_the_workflow_runs_the_oldest_python_that_is_promised() -> None:
-    promised = re.search(
-        r'requires-python = ">=([0-9.]+)"', (ROOT / "pyproject.toml").read_text(encoding="utf-8")
-    )
+    promised = re.search(r'requires-python = ">=([0-9.]+)"', (ROOT / "pyproject.toml").read_text(encoding="utf-8"))
     assert promised is not None
     (job,) = read(CI)["jobs"].values()
     assert job["strategy"]["matrix"]["python"] == [promised[1], "3.13"]

@@ -122,7 +122,9 @@ def _hull_name(document: Document) -> str:
     return shown(name if isinstance(name, str) else document.file)
 
 
-def _design(class_id: str, documents: Sequence[Document], options: Sequence[Document], faults: list[Fault]) -> ClassDesign:
+def _design(
+    class_id: str, documents: Sequence[Document], options: Sequence[Document], faults: list[Fault]
+) -> ClassDesign:
     base = _merge_sections(documents, faults)
     read = _read_options(options, base, faults)
     head = base.data.get("class", {})
@@ -219,9 +221,16 @@ def _add_designs(assembly: Assembly, design: ClassDesign) -> None:
         assembly.content.setdefault(key, design.with_options(options))
         assembly.subjects.append(
             Subject(
-                id=name, is_hull=False, class_id=design.id, options=options, status="design",
-                revision=design.revision, key=key, at=at, at_revision=at,
-            )  # fmt: skip
+                id=name,
+                is_hull=False,
+                class_id=design.id,
+                options=options,
+                status="design",
+                revision=design.revision,
+                key=key,
+                at=at,
+                at_revision=at,
+            )
         )
 
 
@@ -257,13 +266,21 @@ def _add_hull(assembly: Assembly, document: Document, class_ids: set[str]) -> No
     assembly.content.setdefault(key, applied)
     assembly.subjects.append(
         Subject(
-            id=name, is_hull=True, class_id=design.id, options=options, status=row.text("status"),
-            revision=row.whole("revision"), changes=tuple(patches), key=key, at=row.at("hull"), at_revision=row.at("revision"),
-        )  # fmt: skip
+            id=name,
+            is_hull=True,
+            class_id=design.id,
+            options=options,
+            status=row.text("status"),
+            revision=row.whole("revision"),
+            changes=tuple(patches),
+            key=key,
+            at=row.at("hull"),
+            at_revision=row.at("revision"),
+        )
     )
     if row.whole("revision") > design.revision:
-        row.fault("bad-value", row.at("revision"),
-                  f"hull “{name}” is at class revision {row.whole('revision')}, but the class is at {design.revision}")  # fmt: skip
+        message = f"hull “{name}” is at class revision {row.whole('revision')}, but the class is at {design.revision}"
+        row.fault("bad-value", row.at("revision"), message)
 
 
 def _hull_options(row: Entry, design: ClassDesign) -> tuple[str, ...] | None:

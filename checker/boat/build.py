@@ -188,7 +188,7 @@ def _add_circuit(shop: _Workshop, row: Entry) -> None:
     if row.has("conductors"):
         for name in ("feed", "cable", "load"):
             if row.has(name):
-                row.fault("bad-value", row.key_at(name), f"circuit “{row.id}” has conductors of its own and “{name}” too",
+                row.fault("bad-value", row.key_at(name), f"circuit “{row.id}” has conductors of its own and “{name}”",
                           "a branch is written by feed, cable and load, a trunk by its conductors")  # fmt: skip
         _add_trunk(shop, row)
     else:
@@ -619,8 +619,4 @@ def _engine(shop: _Workshop, row: Entry) -> Engine:
         block = None
     elif block not in shop.devices:
         row.unknown("device", str(block), row.at("block"), shop.devices)
-    return Engine(
-        id=row.id, fuel=row.text("fuel", "none"), mounting=row.text("mounting"), block=block, at=row.at()
-    )
-
-
+    return Engine(id=row.id, fuel=row.text("fuel", "none"), mounting=row.text("mounting"), block=block, at=row.at())

@@ -136,7 +136,9 @@ def _band(entry: Entry) -> Band:
         point = BandPoint(float(row.get("multiple", 0)), earliest_s or 0.0, math.inf if latest_s is None else latest_s)
         before = points[-1] if points else None
         if point.latest_s < point.earliest_s or (before is not None and before.multiple >= point.multiple):
-            entry.fault("bad-value", entry.at("points", index), "points rise in their multiple, and open late after early")
+            entry.fault(
+                "bad-value", entry.at("points", index), "points rise in their multiple, and open late after early"
+            )
         points.append(point)
     factor = entry.data.get("engine_space_factor", 1.0)
     return Band(id=entry.id, points=tuple(points), engine_space_factor=float(factor), at=entry.at())

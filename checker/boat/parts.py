@@ -165,7 +165,7 @@ class Terminals:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Source:
-    """Describe a charge source or converter: outputs that feed, inputs that draw, posts joined inside by a resistance in ohm."""
+    """Describe a charge source or converter: outputs that feed, inputs that draw, posts joined inside (ohm)."""
 
     id: str
     outputs: tuple[Terminals, ...]

@@ -151,9 +151,18 @@ def check(
 
     def decorate(function: Callable[[Case], Iterator[Outcome]]) -> Check:
         card = Card(
-            id=function.__name__.replace("_", "-"), title=title, level=level, basis=basis, citation=citation, why=why,
-            text=inspect.cleandoc(function.__doc__ or ""), exemptions=exemptions, caution=caution, catalogue=catalogue, can_be_waived=True,
-        )  # fmt: skip
+            id=function.__name__.replace("_", "-"),
+            title=title,
+            level=level,
+            basis=basis,
+            citation=citation,
+            why=why,
+            text=inspect.cleandoc(function.__doc__ or ""),
+            exemptions=exemptions,
+            caution=caution,
+            catalogue=catalogue,
+            can_be_waived=True,
+        )
         return Check(card, function, per_set)
 
     return decorate

@@ -73,4 +73,3 @@ def role_claim(case: Case) -> Iterator[Outcome]:
             yield role_claim.found(case, place, told)
         else:
             yield role_claim.passed(case, place)
-

@@ -197,7 +197,8 @@ def maker_device(case: Case) -> Iterator[Outcome]:
             yield maker_device.not_assessed(case, Place(circuit.device, load.at, circuit.id), fault, "max_device")
             continue
         told = Told(
-            fault=f"{ampere(device.part.rating_a)} stands ahead of {load.id}, whose maker allows {ampere(load.max_device_a)}",
+            fault=f"{ampere(device.part.rating_a)} stands ahead of {load.id}, "
+            f"whose maker allows {ampere(load.max_device_a)}",
             remedy=f"fit {ampere(load.max_device_a)} or less",
             inputs=(("device", ampere(device.part.rating_a)), ("maker", ampere(load.max_device_a))),
         )

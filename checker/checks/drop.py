@@ -92,7 +92,10 @@ def _told_drop(case: Case, circuit: Circuit, drop: Drop, limit: DropLimit, from_
     told_fraction, _ = measured(Measure("drop", drop.fraction, limit.fraction, ""))
     facts = [("current", ampere(circuit.current_a or 0)), ("limit", percent(limit.fraction))]
     for conductor in conductors:
-        facts += [(f"{conductor.id} size", conductor.size.text), (f"{conductor.id} length", f"{conductor.length_m:.3f} m")]
+        facts += [
+            (f"{conductor.id} size", conductor.size.text),
+            (f"{conductor.id} length", f"{conductor.length_m:.3f} m"),
+        ]
     if from_bank:
         # The shared way counts by what it loses, so that a thinner feeder makes a waiver lapse.
         own = {c.id for c in conductors}
@@ -105,9 +108,7 @@ def _told_drop(case: Case, circuit: Circuit, drop: Drop, limit: DropLimit, from_
     )
 
 
-def _drop_remedy(
-    case: Case, circuit: Circuit, conductors: list[Conductor], drop: Drop, limit: DropLimit
-) -> str:
+def _drop_remedy(case: Case, circuit: Circuit, conductors: list[Conductor], drop: Drop, limit: DropLimit) -> str:
     """Offer the smallest gauge, and the longest run, that keep the drop and every other check."""
     own = {c.id for c in conductors}
     own_v = sum(volts for name, volts in drop.terms if own & set(name.split("+")))
@@ -155,11 +156,16 @@ def _length_fault(case: Case, conductor: Conductor) -> tuple[str, str] | None:
     if conductor.route_m:
         ratio = conductor.length_m / conductor.route_m
         if not LEAST_ROUTE_RATIO <= ratio <= MOST_ROUTE_RATIO:
-            told = f"measures {length(conductor.length_m, unit)}, but its route adds up to {length(conductor.route_m, unit)}"
-            return told, "write the length of this one conductor, one way, or correct the route"
+            given, added = length(conductor.length_m, unit), length(conductor.route_m, unit)
+            return (
+                f"measures {given}, but its route adds up to {added}",
+                "write the length of this one conductor, one way, or correct the route",
+            )
     back = _only_back(case, conductor)
     if back is not None and abs(conductor.length_m / back.length_m - 2) < DOUBLE_TOLERANCE * 2:
-        told = f"is {length(conductor.length_m, unit)}, exactly twice its return {back.id} ({length(back.length_m, unit)})"
+        told = (
+            f"is {length(conductor.length_m, unit)}, exactly twice its return {back.id} ({length(back.length_m, unit)})"
+        )
         return told, f"write its one-way length, e.g. {length(back.length_m, unit)}"
     return None
 

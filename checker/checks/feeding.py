@@ -96,7 +96,12 @@ class _State:
     """Judge conductors in one switch state."""
 
     def __init__(
-        self, case: Case, potentials: Potentials, study: ExposureStudy, allowed: dict[str, float], exempt: dict[str, str]
+        self,
+        case: Case,
+        potentials: Potentials,
+        study: ExposureStudy,
+        allowed: dict[str, float],
+        exempt: dict[str, str],
     ) -> None:
         self._case = case
         self._state = potentials.state
@@ -120,7 +125,9 @@ class _State:
         if exposure.worst_a <= found.allowed_a * (1 + 1e-9):
             return replace(found, kind=Kind.NO_FIGURE) if found.allowed_a == UNKNOWN_ALLOWED_A else found
         if conductor.role == BANK and role_holds(self._case, conductor):
-            return replace(found, kind=Kind.EXEMPT, note="part of its bank: its length counts into what leaves the bank")
+            return replace(
+                found, kind=Kind.EXEMPT, note="part of its bank: its length counts into what leaves the bank"
+            )
         return self._beyond(edge, found)
 
     def _beyond(self, edge: Edge, found: Feeding) -> Feeding:

@@ -160,7 +160,9 @@ def _judge_exit(case: Case, conductor: Conductor, place: Place, bare_m: float) -
             inputs=(*_facts(conductor), ("bare tail", short_length(bare_m))),
         )
 
-    return sheath_exit.judge(case, place, Measure("bare length", bare_m, most_m, "m", shown_in=conductor.length_unit), told)
+    return sheath_exit.judge(
+        case, place, Measure("bare length", bare_m, most_m, "m", shown_in=conductor.length_unit), told
+    )
 
 
 @check(
@@ -183,7 +185,9 @@ def insulation_rating(case: Case) -> Iterator[Outcome]:
         engine = next((z for z in conductor.zones if case.boat.zones[z].is_engine_space), None)
         least_c = rule.elsewhere_min_c if engine is None else rule.engine_space_min_c
         hottest_c = max((case.boat.zones[z].ambient_c for z in conductor.zones), default=0.0)
-        measure = Measure("insulation", conductor.cable.insulation_c, max(least_c, hottest_c), "C", at_least=True, is_stepped=True)
+        measure = Measure(
+            "insulation", conductor.cable.insulation_c, max(least_c, hottest_c), "C", at_least=True, is_stepped=True
+        )
         yield _judge_insulation(case, conductor, measure, engine)
 
 

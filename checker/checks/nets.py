@@ -169,7 +169,9 @@ def load_return(case: Case) -> Iterator[Outcome]:
             continue
         seen.add(device.id)
         post, word = floating
-        if any(case.studies.usual.net[case.studies.network.index[bus]] == case.studies.usual.net[post] for bus in split):
+        if any(
+            case.studies.usual.net[case.studies.network.index[bus]] == case.studies.usual.net[post] for bus in split
+        ):
             continue  # told once, at the bus that is not joined
         told = Told(
             fault=f"its {word} {case.studies.network.posts[post]} leads to no battery in any switch state",
@@ -188,7 +190,9 @@ def _floating_end(case: Case, feed: int, back: int, *, is_source: bool) -> tuple
     """
     network = case.studies.network
     others = (
-        [(tie.feed, tie.back) for tie in network.loads] if is_source else [(tie.out, tie.back) for tie in network.sources]
+        [(tie.feed, tie.back) for tie in network.loads]
+        if is_source
+        else [(tie.out, tie.back) for tie in network.sources]
     )
     for potentials in case.studies.potentials:
         if potentials.battery_island[feed] == potentials.battery_island[back]:
@@ -247,9 +251,9 @@ def _split_buses(case: Case) -> list[str]:
     own = {usual.net[source.back] for source in case.studies.network.sources}
     split: list[str] = []
     for device in case.boat.devices.values():
-        if isinstance(device.part, Bus) and usual.net[index[device.id]] in backs - own:
-            if not _is_anchored(case, index[device.id]):
-                split.append(device.id)
+        is_return_bus = isinstance(device.part, Bus) and usual.net[index[device.id]] in backs - own
+        if is_return_bus and not _is_anchored(case, index[device.id]):
+            split.append(device.id)
     return split
 
 

@@ -95,9 +95,9 @@ def _device_in_return(case: Case, conductor: Conductor) -> str:
     ends = {case.boat.conductors[c].end for c in circuit.conductors} if circuit else set()
     ends |= {case.boat.conductors[c].start for c in circuit.conductors} if circuit else set()
     for device in case.boat.devices.values():
-        if isinstance(device.part, Overcurrent) and usual.is_return(index[f"{device.id}.line"]):
-            if ends & {f"{device.id}.line", f"{device.id}.load"}:
-                return device.id
+        posts = {f"{device.id}.line", f"{device.id}.load"}
+        if isinstance(device.part, Overcurrent) and ends & posts and usual.is_return(index[f"{device.id}.line"]):
+            return device.id
     return ""
 
 
@@ -139,9 +139,7 @@ def protection_distance(case: Case) -> Iterator[Outcome]:
 def _told_far(case: Case, feeding: Feeding) -> Told:
     run = feeding.run
     assert run is not None
-    pieces = " + ".join(
-        f"{name} {short_length(case.boat.conductors[name].length_m)}" for name in run.conductors
-    )
+    pieces = " + ".join(f"{name} {short_length(case.boat.conductors[name].length_m)}" for name in run.conductors)
     rule = case.limits.distance
     open_to_sheath = feeding.limit_m < rule.enclosed_m and run.length_m <= rule.enclosed_m
     sheath = f", or lay all of it in a sheath or conduit (at most {kept_length(rule.enclosed_m)})"
@@ -228,7 +226,9 @@ def _judge_rating(case: Case, feeding: Feeding, kind: Kind) -> Iterator[Outcome]
 def _told_rating(case: Case, feeding: Feeding) -> Told:
     conductor = feeding.conductor
     bearing = case.bearings.of(conductor)
-    bears = f"allows {ampere(feeding.allowed_a)}" + (f" (bears {ampere(bearing.ampacity_a)}: {bearing.words})" if bearing else "")
+    bears = f"allows {ampere(feeding.allowed_a)}" + (
+        f" (bears {ampere(bearing.ampacity_a)}: {bearing.words})" if bearing else ""
+    )
     verb = "protects" if feeding.terms and feeding.terms[0][0] in case.boat.devices else "can feed"
     where = {
         Kind.STEP: f"{conductor.size.text} steps down behind {_sum(feeding)} with no device at the step, but {bears}",
@@ -295,9 +295,7 @@ def return_protection(case: Case) -> Iterator[Outcome]:
                 yield _judge_return(case, place, conductor, measure, failed.load, failed.device)
 
 
-def _judge_return(
-    case: Case, place: Place, conductor: Conductor, measure: Measure, load: str, device: str
-) -> Outcome:
+def _judge_return(case: Case, place: Place, conductor: Conductor, measure: Measure, load: str, device: str) -> Outcome:
     def told() -> Told:
         return Told(
             fault=f"a failed {load} sends {ampere(measure.value)} (by {device}) through {conductor.size.text}, "

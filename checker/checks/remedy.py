@@ -84,9 +84,9 @@ def _bears(case: Case, conductor: Conductor, size: Size) -> bool:
         return False
     roles = case.limits.exemptions.ampacity_exempt_roles
     current_a = continuous_a(case, conductor)
-    if current_a is not None and not exempt_as(case, conductor, roles, "roles"):
-        if current_a > bearing.ampacity_a * (1 + 1e-9):
-            return False
+    is_exempt = bool(exempt_as(case, conductor, roles, "ampacity_exempt_roles"))
+    if current_a is not None and not is_exempt and current_a > bearing.ampacity_a * (1 + 1e-9):
+        return False
     return case_exposure_a(case, conductor.id) <= allowed_a * (1 + 1e-9)
 
 

@@ -75,7 +75,9 @@ def _round_it(case: Case, metering: Metering, words: str) -> Outcome:
     """Tell a path from stud to stud; the part named is the one that does not belong there."""
     boat = case.boat
     shields = {s.id for s in boat.shields or ()}
-    strange = [p for p in metering.bypass_parts if p in shields or (p in boat.conductors and boat.conductors[p].is_bond)]
+    strange = [
+        p for p in metering.bypass_parts if p in shields or (p in boat.conductors and boat.conductors[p].is_bond)
+    ]
     wires = [p for p in metering.bypass_parts if p in boat.conductors]
     blamed = (strange or [p for p in wires if boat.conductors[p].role != "bank"] or wires or [metering.shunt])[0]
     at = boat.conductors[blamed].at if blamed in boat.conductors else boat.devices[metering.shunt].at

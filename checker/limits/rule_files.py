@@ -37,9 +37,7 @@ from checker.units import METRE_PER_FOOT, awg_number, metre_from_inch
 def read_applies(table: Table) -> Applicability:
     """Read which boats the set binds."""
     citation, figures = _cited(table, ("binds_petrol_inboard",))
-    return Applicability(
-        citation=citation, figures=figures, binds_petrol_inboard=table.flag("binds_petrol_inboard")
-    )
+    return Applicability(citation=citation, figures=figures, binds_petrol_inboard=table.flag("binds_petrol_inboard"))
 
 
 def read_ampacity(table: Table) -> AmpacityTable:
@@ -254,9 +252,7 @@ def read_material(table: Table) -> MaterialRule:
 
 def read_drop(table: Table) -> DropRule:
     """Read the voltage-drop groups and the constant."""
-    citation, figures = _cited(
-        table, ("critical_percent", "general_percent", "critical_services", "k_ohm_cmil_per_ft")
-    )
+    citation, figures = _cited(table, ("critical_percent", "general_percent", "critical_services", "k_ohm_cmil_per_ft"))
     return DropRule(
         citation=citation,
         figures=figures,

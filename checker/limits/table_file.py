@@ -99,9 +99,7 @@ class Table:
 
     def tables(self, key: str) -> tuple[Table, ...]:
         """Return a list of mappings under a key."""
-        return tuple(
-            _as_table(f"{self.where}: {key}[{index}]", value) for index, value in enumerate(self._list(key))
-        )
+        return tuple(_as_table(f"{self.where}: {key}[{index}]", value) for index, value in enumerate(self._list(key)))
 
     def citation(self) -> Citation:
         """Return the citation of this table; a table that cites nothing is refused."""

@@ -146,7 +146,9 @@ def _crossing(upper: Curve, lower: Curve, good_a: float, bad_a: float) -> float:
     return good_a
 
 
-def withstand_ratio(curve: Curve, k2s2: float, low_a: float, high_a: float, valid_up_to_s: float) -> tuple[float, float]:
+def withstand_ratio(
+    curve: Curve, k2s2: float, low_a: float, high_a: float, valid_up_to_s: float
+) -> tuple[float, float]:
     """Return the largest I²t/(k²S²) over a range of fault currents, and the current it occurs at.
 
     Only where the device has certainly opened within the time for which the adiabatic

@@ -267,5 +267,3 @@ def max_flow(feeds: dict[int, float], limits: list[tuple[int, int, float]], sink
     if sink not in graph or "sources" not in graph:
         return own
     return own + float(nx.maximum_flow_value(graph, "sources", sink))
-
-

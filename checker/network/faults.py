@@ -7,6 +7,7 @@ greatest output where a fault is largest, and left out where it is smallest.
 
 from __future__ import annotations
 
+import itertools
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
@@ -169,7 +170,7 @@ def opening_s(points: Sequence[tuple[float, float]], multiple: float) -> float:
     """
     if not points or multiple < points[0][0] * (1 - 1e-12):
         return math.inf
-    for (x0, t0), (x1, t1) in zip(points, points[1:], strict=False):
+    for (x0, t0), (x1, t1) in itertools.pairwise(points):
         if multiple <= x1 * (1 + 1e-12):
             if math.isinf(t0):
                 return t1 if multiple >= x1 * (1 - 1e-12) else math.inf

@@ -101,9 +101,7 @@ class Grid:
                 found.setdefault(island, tie)
         return found
 
-    def _possible(
-        self, draws: Sequence[Draw], feeds: Sequence[Feed]
-    ) -> tuple[list[Draw], list[Feed], frozenset[int]]:
+    def _possible(self, draws: Sequence[Draw], feeds: Sequence[Feed]) -> tuple[list[Draw], list[Feed], frozenset[int]]:
         """Leave out loads that nothing can feed and sources that nothing can take from.
 
         An array feeds the input of its controller: that input draws what the array gives,
@@ -310,8 +308,7 @@ class Flow:
         """
         volts, place = self.volts, self.grid.place
         known = {
-            edge.index: (volts[place[edge.a]] - volts[place[edge.b]]) * siemens
-            for edge, siemens in self.grid.resistive
+            edge.index: (volts[place[edge.a]] - volts[place[edge.b]]) * siemens for edge, siemens in self.grid.resistive
         }
         return known | self._free_currents(known)
 

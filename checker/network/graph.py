@@ -8,6 +8,7 @@ Two conductors in parallel are two edges.
 
 from __future__ import annotations
 
+import itertools
 import math
 from dataclasses import dataclass
 from enum import Enum
@@ -165,7 +166,7 @@ def build_network(boat: Boat) -> Network:
         join(EdgeKind.JOINT, joint.start, joint.end, joint.id, joint.resistance_ohm)
     for shield in boat.shields or ():
         joins = shield.joins or ()
-        for a, b in zip(joins, joins[1:], strict=False):
+        for a, b in itertools.pairwise(joins):
             join(EdgeKind.SHIELD, a, b, shield.id)
     return Network(tuple(posts), tuple(edges), *_ties(boat, index), index[boat.reference])
 

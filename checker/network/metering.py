@@ -98,7 +98,7 @@ def _unmetered(
     found: list[Unmetered] = []
     joined = _reach(at, bat)
     for device in boat.devices.values():
-        if device.id == shunt or device.belongs_to == shunt or not isinstance(device.part, (Load, Source, Metal)):
+        if shunt in (device.id, device.belongs_to) or not isinstance(device.part, (Load, Source, Metal)):
             continue
         what = {Load: "load", Source: "charge source", Metal: "metal part"}[type(device.part)]
         posts = [network.index[f"{device.id}.{p}" if p else device.id] for p in device.part.posts]

@@ -114,15 +114,19 @@ def _gather(
             carried[parent] = max(carried.get(parent, (0.0, "", "")), amount)
             beyond[index] = amount
     block = groups(len(network.posts), ((e.a, e.b) for n in order for e in at[n] if e.index not in bridges))
+    # What comes into a ring anywhere but at its post nearest the bank may go round either side of it.
+    nearest: set[int] = set()
     round_it: dict[int, tuple[float, str, str]] = {}
     for node in order:
-        round_it[block[node]] = max(round_it.get(block[node], (0.0, "", "")), carried.get(node, (0.0, "", "")))
+        ring = block[node]
+        if ring in nearest:
+            round_it[ring] = max(round_it.get(ring, (0.0, "", "")), carried.get(node, (0.0, "", "")))
+        nearest.add(ring)
     for node in order:
         for edge in at[node]:
             if edge.kind is not EdgeKind.CONDUCTOR:
                 continue
             in_loop = edge.index not in bridges
-            # Of what comes into a ring any side of it could carry all.
-            amount = round_it[block[node]] if in_loop else beyond.get(edge.index, (0.0, "", ""))
+            amount = round_it.get(block[node], (0.0, "", "")) if in_loop else beyond.get(edge.index, (0.0, "", ""))
             if amount[0] > worst.get(edge.part, ReturnExposure(0.0, "", "", False)).current_a or edge.part not in worst:
                 worst[edge.part] = ReturnExposure(*amount, in_loop)

@@ -72,9 +72,7 @@ def _expanded(row: SwitchRow, switches: dict[str, Switch], forbidden: list[Switc
     for combination in itertools.islice(itertools.product(*choices), MOST_STATES * 16):
         if any(set(other.switches) <= set(combination) for other in forbidden):
             continue
-        closed = frozenset(
-            (name, a, b) for name, state in combination for a, b in dict(switches[name].states)[state]
-        )
+        closed = frozenset((name, a, b) for name, state in combination for a, b in dict(switches[name].states)[state])
         open_choices = [
             f"{n} {s}" for n, s in combination if n not in named and (n in guarded or len(_widest(switches[n])) > 1)
         ]

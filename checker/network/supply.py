@@ -31,9 +31,7 @@ class SupplyWay:
     start_back: int
 
 
-def study_supply(
-    boat: Boat, network: Network, potentials: Potentials, of_bank: frozenset[str]
-) -> dict[str, SupplyWay]:
+def study_supply(boat: Boat, network: Network, potentials: Potentials, of_bank: frozenset[str]) -> dict[str, SupplyWay]:
     """Return the way of every circuit to its bank, by circuit; `of_bank` are the bank's own conductors."""
     live = live_edges(network, potentials.state)
     feed = neighbours(network, [i for i in live if not potentials.is_return(network.edges[i].a)])

@@ -40,7 +40,9 @@ def groups(size: int, pairs: Iterable[tuple[int, int]]) -> list[int]:
     return [root(node) for node in range(size)]
 
 
-def path_between(at: Neighbours, start: int, goals: Iterable[int], without: frozenset[str] = frozenset()) -> list[Edge] | None:
+def path_between(
+    at: Neighbours, start: int, goals: Iterable[int], without: frozenset[str] = frozenset()
+) -> list[Edge] | None:
     """Return the edges of a path with the fewest edges, leaving out some parts; None if there is none."""
     wanted = set(goals)
     came: dict[int, Edge | None] = {start: None}
@@ -81,7 +83,7 @@ def shortest_tree(at: Neighbours, goals: Iterable[int], weights: dict[int, float
 
     Equal ways are told apart by fewer edges, then by the order of the edges.
     """
-    cost: dict[int, tuple[float, int]] = {goal: (0.0, 0) for goal in goals}
+    cost: dict[int, tuple[float, int]] = dict.fromkeys(goals, (0.0, 0))
     came: dict[int, Edge | None] = dict.fromkeys(cost)
     waiting = [(0.0, 0, -1, goal) for goal in sorted(cost)]
     done: set[int] = set()

@@ -97,9 +97,11 @@ def _passes(study: Study) -> list[dict[str, Any]]:
             told = [_number(x) for x in (measure.value, measure.limit, measure.headroom_fraction)]
         places = groups.setdefault(key, {})
         # A part that one check looks at more than once has each look under a name of its own.
-        times = sum(name == outcome.part or name.startswith(f"{outcome.part} #") for name in places) if (
-            outcome.part in places
-        ) else 0
+        times = (
+            sum(name == outcome.part or name.startswith(f"{outcome.part} #") for name in places)
+            if (outcome.part in places)
+            else 0
+        )
         places[f"{outcome.part} #{times + 1}" if times else outcome.part] = told
     return [
         {

@@ -59,7 +59,8 @@ def passes_text(passes: Sequence[Outcome]) -> str:
 def _head(subject: SubjectResult) -> Iterator[str]:
     kind = "hull" if subject.is_hull else "option set"
     yield f"{kind}: {subject.id}"
-    yield f"class: {subject.class_id} ({flat(subject.class_name)}), revision {subject.revision} of {subject.class_revision}"
+    revision = f"revision {subject.revision} of {subject.class_revision}"
+    yield f"class: {subject.class_id} ({flat(subject.class_name)}), {revision}"
     yield f"options: {', '.join(subject.options) or 'none'}"
     yield f"as-built changes: {', '.join(subject.changes) or 'none'}"
     yield f"status: {subject.status}"

@@ -128,8 +128,13 @@ def _misplaced(name: str) -> Fault:
         remedy = f"rename it to {shown(name.rpartition('.')[0])}.yaml"
         return Fault("unreadable-file", Span(name, 1, 1), "files of a yard end in .yaml", remedy)
     meant = nearest(name.removesuffix(".yaml"), ("yard", "waivers"))  # without the ending, in which all names agree
-    remedy = f"did you mean {meant}.yaml?" if meant else (
-        "a yard keeps yard.yaml, waivers.yaml, parts/*.yaml, classes/ID/*.yaml, classes/ID/options/*.yaml, hulls/*.yaml"
+    remedy = (
+        f"did you mean {meant}.yaml?"
+        if meant
+        else (
+            "a yard keeps yard.yaml, waivers.yaml, parts/*.yaml, classes/ID/*.yaml, classes/ID/options/*.yaml, "
+            "hulls/*.yaml"
+        )
     )
     return Fault("unreadable-file", Span(name, 1, 1), "no kind of document is kept at this place", remedy)
 

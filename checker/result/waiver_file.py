@@ -25,9 +25,7 @@ def read_waivers(
     return [waiver for waiver in waivers if waiver is not None], faults
 
 
-def _waiver(
-    row: Entry, hulls: Collection[str], classes: Collection[str], checks: Mapping[str, bool]
-) -> Waiver | None:
+def _waiver(row: Entry, hulls: Collection[str], classes: Collection[str], checks: Mapping[str, bool]) -> Waiver | None:
     known = True
     for name, what, ids in (("hull", "hull", hulls), ("class", "class", classes), ("check", "check", checks)):
         if row.has(name) and row.text(name) not in ids:
@@ -39,7 +37,9 @@ def _waiver(
     try:
         expires = datetime.date.fromisoformat(row.text("expires"))
     except ValueError:
-        row.fault("bad-value", row.at("expires"), f"expires: “{row.text('expires')}” is no date", "write e.g. 2028-05-29")
+        row.fault(
+            "bad-value", row.at("expires"), f"expires: “{row.text('expires')}” is no date", "write e.g. 2028-05-29"
+        )
         return None
     if not known:
         return None

@@ -14,7 +14,11 @@ from checker.finding import NOWHERE
 from checker.reading.yard_files import read_yard
 from tests.dory_yard import CLASS, DORY, HULL, OPTION, checked, edited, place, told, write
 
-CLASS_FILE, OPTION_FILE, HULL_FILE = "classes/dory-14/class.yaml", "classes/dory-14/options/lamp.yaml", "hulls/dory-1.yaml"
+CLASS_FILE, OPTION_FILE, HULL_FILE = (
+    "classes/dory-14/class.yaml",
+    "classes/dory-14/options/lamp.yaml",
+    "hulls/dory-1.yaml",
+)
 IDLE = "correct the id or the value, or take the line out"
 
 
@@ -52,7 +56,11 @@ def test_more_option_sets_than_can_be_studied_are_a_fault_and_not_a_hang(tmp_pat
         files[f"classes/dory-14/options/o{number}.yaml"] = text
     assembly = assemble(read_yard(write(tmp_path, files)))
     assert [(fault.check, str(fault.at), fault.message) for fault in assembly.faults] == [
-        ("bad-value", place(CLASS_FILE, "class:"), f"class “dory-14” has more than {MOST_OPTION_SETS} legal option sets")
+        (
+            "bad-value",
+            place(CLASS_FILE, "class:"),
+            f"class “dory-14” has more than {MOST_OPTION_SETS} legal option sets",
+        )
     ]
     assert [subject.id for subject in assembly.subjects] == ["dory-14", "DORY-1"]
 
@@ -208,7 +216,12 @@ def test_a_patch_that_removes_what_is_not_there_is_told(tmp_path: Path) -> None:
 def test_a_change_that_sets_nothing_is_told(tmp_path: Path) -> None:
     files = changes("{}")
     assert told(checked(tmp_path, files)) == [
-        ("patch-without-effect", place(HULL_FILE, "DEV-1", files), "change DEV-1 sets nothing", "write what was changed")
+        (
+            "patch-without-effect",
+            place(HULL_FILE, "DEV-1", files),
+            "change DEV-1 sets nothing",
+            "write what was changed",
+        )
     ]
 
 
@@ -243,7 +256,11 @@ def test_a_hull_whose_change_removes_a_whole_section_is_told_and_does_not_crash(
 
 def found(tmp_path: Path, files: dict[str, str]) -> list[tuple[str, str, str]]:
     """Return place, message and remedy of each unknown reference."""
-    return [(at, fault, remedy) for check, at, fault, remedy in told(checked(tmp_path, files)) if check == "unknown-reference"]
+    return [
+        (at, fault, remedy)
+        for check, at, fault, remedy in told(checked(tmp_path, files))
+        if check == "unknown-reference"
+    ]
 
 
 @pytest.mark.parametrize(
@@ -303,9 +320,7 @@ def test_a_name_of_nothing_in_a_class_is_told_at_its_place_with_the_nearest(
 def test_a_name_of_nothing_is_told_once_however_many_boats_have_it(tmp_path: Path) -> None:
     files = edited(CLASS_FILE, "W3: {from: BAT.neg, to: NEG", "W3: {from: BAT.neg, to: NAG")
     files["hulls/dory-2.yaml"] = HULL.replace("DORY-1", "DORY-2").replace("[]", "[OPT-LAMP]")
-    assert found(tmp_path, files) == [
-        (place(CLASS_FILE, "W3"), "there is no post for W3 “NAG”", "did you mean “NEG”?")
-    ]
+    assert found(tmp_path, files) == [(place(CLASS_FILE, "W3"), "there is no post for W3 “NAG”", "did you mean “NEG”?")]
 
 
 def test_an_option_that_removes_what_is_still_named_elsewhere_is_told_where_it_is_named(tmp_path: Path) -> None:
@@ -337,7 +352,12 @@ def test_a_class_in_which_every_state_is_forbidden_is_told(tmp_path: Path) -> No
 def test_a_switch_without_a_state_is_told(tmp_path: Path) -> None:
     files = edited("parts/all.yaml", "states: {open: [], closed: [[in, out]]}", "states: {}")
     assert told(checked(tmp_path, files)) == [
-        ("bad-value", place("parts/all.yaml", "{}}\n  wire", files), "parts “toggle” has no state", "add one, e.g. `open: []`")
+        (
+            "bad-value",
+            place("parts/all.yaml", "{}}\n  wire", files),
+            "parts “toggle” has no state",
+            "add one, e.g. `open: []`",
+        )
     ]
 
 
@@ -383,7 +403,11 @@ def test_the_order_of_fields_in_a_file_changes_nothing_but_places(tmp_path: Path
     plain, other = checked(tmp_path / "a", dict(files)), checked(tmp_path / "b", mixed)
     assert told(other) == told(plain) == []
     outcomes = [
-        sorted((s.id, o.verdict.value, o.check, o.part, o.fault, o.remedy, str(o.measure)) for s in r.subjects for o in s.outcomes)
+        sorted(
+            (s.id, o.verdict.value, o.check, o.part, o.fault, o.remedy, str(o.measure))
+            for s in r.subjects
+            for o in s.outcomes
+        )
         for r in (plain, other)
     ]
     assert outcomes[0] == outcomes[1]

@@ -165,7 +165,9 @@ def test_the_places_of_a_patch_are_counted_from_its_own_top() -> None:
         ({"a": 1}, {}, []),
     ],
 )
-def test_the_lines_of_a_patch_that_change_nothing_are_named(target: Any, patch: Any, idle: list[tuple[str, ...]]) -> None:
+def test_the_lines_of_a_patch_that_change_nothing_are_named(
+    target: Any, patch: Any, idle: list[tuple[str, ...]]
+) -> None:
     assert list(without_effect(target, patch)) == idle
 
 

@@ -83,14 +83,10 @@ def test_main_fuse_larger_than_its_bus_is_found_once_a_load_can_draw_it() -> Non
         "      T1: {from: BUS-P, to: THRUSTER.pos, size: 2 AWG, length: 1 m}\n"
         "      T2: {from: THRUSTER.neg, to: BUS-N, size: 2 AWG, length: 1 m}\n"
     )
-    yard = SOUND.also(thruster).also_parts(
-        "thruster: {kind: load, voltage: 12 V, current: 100 A, motor: true}"
-    )
+    yard = SOUND.also(thruster).also_parts("thruster: {kind: load, voltage: 12 V, current: 100 A, motor: true}")
     line = "BUS-P: {part: bus-250, zone: LOCKER, name: positive bus}"
     rating = "bus-250: {kind: bus, rating: 250 A}"
-    assert found(yard.edit(rating, rating.replace("250 A}", "149 A}"))) == [
-        ("bus-rating", "BUS-P", NEITHER, line)
-    ]
+    assert found(yard.edit(rating, rating.replace("250 A}", "149 A}"))) == [("bus-rating", "BUS-P", NEITHER, line)]
     assert found(yard.edit(rating, rating.replace("250 A}", "150 A}"))) == []
 
 

@@ -26,9 +26,7 @@ from tests.small_yard import (
 FAULTY = SOUND.edit("feed: P1\n    protect: 5 A", "feed: P1\n    protect: 10 A")
 THE_FINDING = ("maker-device", "P1", NEITHER, "protect: 10 A")
 FINGERPRINT = fingerprint(finding(FAULTY, "maker-device", "P1"))
-TWICE = SOUND.edit(
-    "to: F-MAIN.line, size: 2 AWG, length: 5.9 in", "to: F-MAIN.line, size: 2 AWG, length: 8 in"
-)
+TWICE = SOUND.edit("to: F-MAIN.line, size: 2 AWG, length: 5.9 in", "to: F-MAIN.line, size: 2 AWG, length: 8 in")
 TWICE_LINE = "M1: {from: BAT-H.pos, to: F-MAIN.line, size: 2 AWG, length: 8 in}"
 
 
@@ -42,9 +40,7 @@ def waived(yard: Yard, **changed: str) -> Yard:
     return yard.with_file("waivers.yaml", f"waivers:\n  W-1:\n{rows}")
 
 
-def accepted(
-    yard: Yard, today: datetime.date = datetime.date(2026, 12, 1)
-) -> list[tuple[str, str, str, str]]:
+def accepted(yard: Yard, today: datetime.date = datetime.date(2026, 12, 1)) -> list[tuple[str, str, str, str]]:
     """Return what a waiver accepts."""
     return tell(yard, outcomes(yard, Verdict.ACCEPTED, today))
 
@@ -127,9 +123,7 @@ def hull(text: str) -> Yard:
 
 def test_change_that_sets_what_is_already_so_is_found_at_its_line() -> None:
     """FLT-02: the meant change never happened."""
-    yard = hull(
-        "  AB-1:\n    what: longer cable\n    state: recorded\n    set: {circuits: {PLOTTER: {tail: 0.5 m}}}\n"
-    )
+    yard = hull("  AB-1:\n    what: longer cable\n    state: recorded\n    set: {circuits: {PLOTTER: {tail: 0.5 m}}}\n")
     assert found(yard) == [
         ("patch-without-effect", "hulls/skiff-1.yaml", NEITHER, "set: {circuits: {PLOTTER: {tail: 0.5 m}}}")
     ]
@@ -137,17 +131,13 @@ def test_change_that_sets_what_is_already_so_is_found_at_its_line() -> None:
 
 def test_change_that_removes_what_is_not_there_is_found_at_its_line() -> None:
     """FLT-02: a mistyped id."""
-    yard = hull(
-        "  AB-1:\n    what: no plotter\n    state: recorded\n    set:\n      circuits:\n        PLOTER: null\n"
-    )
+    yard = hull("  AB-1:\n    what: no plotter\n    state: recorded\n    set:\n      circuits:\n        PLOTER: null\n")
     assert found(yard) == [("patch-without-effect", "hulls/skiff-1.yaml", NEITHER, "PLOTER: null")]
 
 
 def test_change_that_changes_something_is_sound() -> None:
     """FLT-02."""
-    yard = hull(
-        "  AB-1:\n    what: longer cable\n    state: recorded\n    set: {circuits: {PLOTTER: {tail: 0.6 m}}}\n"
-    )
+    yard = hull("  AB-1:\n    what: longer cable\n    state: recorded\n    set: {circuits: {PLOTTER: {tail: 0.6 m}}}\n")
     assert found(yard) == []
 
 

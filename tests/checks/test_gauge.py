@@ -166,9 +166,7 @@ def test_18_awg_core_may_be_30_in_out_of_its_sheath(bare_tail: str) -> None:
 
 def test_16_awg_core_may_leave_its_sheath_for_any_length() -> None:
     """CON-06."""
-    assert (
-        found(SOUND.edit("cable: 18 AWG\n    bare_tail: 6 in", "cable: 16 AWG\n    bare_tail: 40 in")) == []
-    )
+    assert found(SOUND.edit("cable: 18 AWG\n    bare_tail: 6 in", "cable: 16 AWG\n    bare_tail: 40 in")) == []
 
 
 def bundled(bow_light_too: bool) -> Yard:
@@ -177,9 +175,7 @@ def bundled(bow_light_too: bool) -> Yard:
     The pump draws 15 A over 14 AWG through the engine space: 35 A x 0.85 x 0.6 = 17.85 A, and
     14.875 A where 0.5 is the factor.
     """
-    yard = SOUND.edit(
-        "cabin-way: {zone: CABIN, length: 2 m, lay: single}", "cabin-way: {zone: CABIN, length: 2 m}"
-    )
+    yard = SOUND.edit("cabin-way: {zone: CABIN, length: 2 m, lay: single}", "cabin-way: {zone: CABIN, length: 2 m}")
     yard = yard.edit("engine-way]\n    tail: 0.5 m", "engine-way]\n    tail: 0.1 m\n    current: 15 A")
     route = "route: [cabin-way, bow-way]\n    tail: 1 ft"
     return yard.edit("length: 16 ft 5 in", route) if bow_light_too else yard
@@ -232,9 +228,7 @@ def test_insulation_is_held_against_a_zone_hotter_than_the_table() -> None:
     assert found(sense_lead_of("80 C").edit("name: engine space, ambient: 50 C", hot)) == []
 
 
-@pytest.mark.parametrize(
-    "facts", ["material: aluminium", "strands: solid", "insulated: false", "welding: true"]
-)
+@pytest.mark.parametrize("facts", ["material: aluminium", "strands: solid", "insulated: false", "welding: true"])
 def test_conductor_that_is_not_insulated_stranded_copper_is_found(facts: str) -> None:
     """CON-15."""
     line = C2.replace("length", "type: other, length")
@@ -320,13 +314,9 @@ def test_metric_size_is_not_assessed_by_rules_printed_in_awg() -> None:
 
 def test_metric_size_is_assessed_where_the_yard_lets_the_next_smaller_gauge_speak() -> None:
     """6 AWG is the next gauge below 16 mm2: 120 A by the table."""
-    yard = METRIC_FEED.edit(
-        "name: Small Yard\n", "name: Small Yard\nhouse: {metric_sizes: next-smaller-awg}\n"
-    )
+    yard = METRIC_FEED.edit("name: Small Yard\n", "name: Small Yard\nhouse: {metric_sizes: next-smaller-awg}\n")
     assert not_assessed(yard) == []
-    assert {("ampacity", "D1", LAW), ("device-rating", "D1", LAW), ("minimum-size", "D1", LAW)} <= passed(
-        yard
-    )
+    assert {("ampacity", "D1", LAW), ("device-rating", "D1", LAW), ("minimum-size", "D1", LAW)} <= passed(yard)
 
 
 def test_metric_size_judged_by_the_next_smaller_gauge_can_be_too_thin() -> None:

@@ -117,18 +117,14 @@ def test_load_of_the_voltage_of_its_net_is_sound(voltage: str) -> None:
 def test_load_without_a_return_conductor_is_found() -> None:
     """RET-01."""
     yard = SOUND.without("V3:")
-    assert found(yard) == [
-        ("load-return", "REGULATOR", NEITHER, "REGULATOR: {part: regulator, zone: ENGINE-SPACE}")
-    ]
+    assert found(yard) == [("load-return", "REGULATOR", NEITHER, "REGULATOR: {part: regulator, zone: ENGINE-SPACE}")]
     assert "return REGULATOR.gnd" in finding(yard, "load-return", "REGULATOR").fault
 
 
 def test_load_without_a_feed_conductor_is_found() -> None:
     """RET-01."""
     yard = SOUND.without("V2:")
-    assert found(yard) == [
-        ("load-return", "REGULATOR", NEITHER, "REGULATOR: {part: regulator, zone: ENGINE-SPACE}")
-    ]
+    assert found(yard) == [("load-return", "REGULATOR", NEITHER, "REGULATOR: {part: regulator, zone: ENGINE-SPACE}")]
     assert "feed REGULATOR.sense" in finding(yard, "load-return", "REGULATOR").fault
 
 

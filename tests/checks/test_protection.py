@@ -45,10 +45,7 @@ def test_conductor_from_a_battery_post_without_a_device_is_found() -> None:
     line = "H1: {from: BAT-H.pos, to: HORN.pos, size: 14 AWG, length: 4 m}"
     yard = horn(line, HORN_BACK)
     assert found(yard) == [("unprotected-conductor", "H1", BOTH, line)]
-    assert (
-        "BAT-H.pos feeds it with no overcurrent device"
-        in finding(yard, "unprotected-conductor", "H1", LAW).fault
-    )
+    assert "BAT-H.pos feeds it with no overcurrent device" in finding(yard, "unprotected-conductor", "H1", LAW).fault
 
 
 @pytest.mark.parametrize("ahead", ["6.9 in", "7 in", "0.1778 m"])
@@ -114,9 +111,7 @@ def charger_fuse_behind_studs(last: str) -> Yard:
         "      C5: {from: BAT-H.pos, to: STUD-1, size: 10 AWG, length: 2 in}"
     )
     yard = SOUND.edit("C3: {from: F-CHARGER.line, to: BAT-H.pos, size: 10 AWG, length: 0.1 m}", pieces)
-    return yard.also(
-        "devices:\n  STUD-1: {part: bus-100, zone: LOCKER}\n  STUD-2: {part: bus-100, zone: LOCKER}\n"
-    )
+    return yard.also("devices:\n  STUD-1: {part: bus-100, zone: LOCKER}\n  STUD-2: {part: bus-100, zone: LOCKER}\n")
 
 
 def test_short_pieces_in_a_row_add_up_and_are_found_at_the_last() -> None:
@@ -161,9 +156,7 @@ def test_sleeve_over_part_of_the_piece_does_not_count() -> None:
     assert "covers only part" in finding(yard, "protection-distance", "M1", LAW).fault
 
 
-@pytest.mark.parametrize(
-    ("length", "enclosed"), [("30 in", "30 in"), ("30 in", "full"), ("0.762 m", "30 in")]
-)
+@pytest.mark.parametrize(("length", "enclosed"), [("30 in", "30 in"), ("30 in", "full"), ("0.762 m", "30 in")])
 def test_sleeve_over_the_whole_piece_counts(length: str, enclosed: str) -> None:
     """PRO-03, T-12."""
     assert found(enclosed_main(length, enclosed)) == []
@@ -200,9 +193,7 @@ def test_device_beyond_7_in_without_a_reason_is_not_assessed_under_the_law() -> 
 
 def test_piece_in_a_conduit_over_its_whole_length_counts_as_enclosed() -> None:
     """T-12: the pipe is 0.5 m; a tail of 1 in outside it is too much."""
-    yard = SOUND.edit(
-        "size: 2 AWG, length: 5.9 in", "size: 2 AWG, route: [locker-pipe], place_reason: no room"
-    )
+    yard = SOUND.edit("size: 2 AWG, length: 5.9 in", "size: 2 AWG, route: [locker-pipe], place_reason: no room")
     assert found(yard) == []
     bare = yard.edit("route: [locker-pipe], place", "route: [locker-pipe], tail: 1 in, place")
     assert [told[:3] for told in found(bare)] == [("protection-distance", "M1", BOTH)]
@@ -267,9 +258,7 @@ def test_device_above_what_either_set_allows_is_found_at_the_conductor() -> None
 
 def test_device_between_both_limits_is_found_under_the_voluntary_set_alone() -> None:
     """PRO-04, T-13."""
-    assert found(SOUND.edit(ALT_FUSE, ALT_FUSE.replace("80 A", "150 A"))) == [
-        ("device-rating", "A1", PRACTICE, A1)
-    ]
+    assert found(SOUND.edit(ALT_FUSE, ALT_FUSE.replace("80 A", "150 A"))) == [("device-rating", "A1", PRACTICE, A1)]
 
 
 def test_device_above_the_ampacity_but_within_150_percent_is_sound_by_law() -> None:
@@ -573,9 +562,7 @@ def test_sense_lead_with_its_fuse_near_the_battery_is_sound() -> None:
 
 def test_cranking_conductors_carry_no_fuse() -> None:
     """T-01."""
-    assert {
-        ("unprotected-conductor", part, one) for part in ("S1", "S2") for one in (LAW, PRACTICE)
-    } <= passed(SOUND)
+    assert {("unprotected-conductor", part, one) for part in ("S1", "S2") for one in (LAW, PRACTICE)} <= passed(SOUND)
 
 
 def test_conductor_that_branches_off_the_cranking_circuit_needs_its_fuse() -> None:

@@ -69,25 +69,19 @@ THIN_BACK = (
 
 GAUGE_CASES = [
     pytest.param(HOT_ALTERNATOR, "ampacity", "A1", ALT_LEAD, id="ampacity"),
-    pytest.param(
-        THIN_SENSE, "minimum-size", "V2", "to: REGULATOR.sense, size: 18 AWG", id="smallest size, single"
-    ),
+    pytest.param(THIN_SENSE, "minimum-size", "V2", "to: REGULATOR.sense, size: 18 AWG", id="smallest size, single"),
     pytest.param(THIN_LIGHTS, "minimum-size", "LIGHTS.out", "cable: 20 AWG", id="smallest size, in a sheath"),
     pytest.param(LARGE_ALT_FUSE, "device-rating", "A1", ALT_LEAD, id="device, single"),
     pytest.param(LARGE_BREAKER, "device-rating", "LIGHTS.out", "cable: 18 AWG", id="device, both cores"),
     pytest.param(WITH_HORN, "size-step", "X1", "to: HORN.pos, size: 16 AWG", id="step"),
     pytest.param(LONG_LIGHTS, "voltage-drop", "LIGHTS", "cable: 18 AWG", id="drop, general"),
-    pytest.param(
-        LONG_BOW_LIGHT, "voltage-drop", "BOW-LIGHT", "cable: 16 AWG\n    current: 2 A", id="drop, critical"
-    ),
+    pytest.param(LONG_BOW_LIGHT, "voltage-drop", "BOW-LIGHT", "cable: 16 AWG\n    current: 2 A", id="drop, critical"),
     pytest.param(THIN_BACK, "return-protection", "PUMP.back", BACK, id="return of a branch"),
 ]
 
 
 @pytest.mark.parametrize(("yard", "check", "part", "old"), GAUGE_CASES)
-def test_printed_gauge_mends_the_finding_and_makes_no_other(
-    yard: Yard, check: str, part: str, old: str
-) -> None:
+def test_printed_gauge_mends_the_finding_and_makes_no_other(yard: Yard, check: str, part: str, old: str) -> None:
     """REMEDY: one gauge for all limit sets; the one below it does not do."""
     size = gauge(yard, check, part)
     present = re.search(r"\S+ AWG", old)
@@ -163,9 +157,7 @@ def test_rating_that_the_maker_allows_mends_a_load_s_device() -> None:
     assert found(yard.edit("feed: P1\n    protect: 10 A", f"feed: P1\n    protect: {rating}")) == []
 
 
-@pytest.mark.parametrize(
-    ("pattern", "new"), [(r"a bus rated (\S+ A)", "rating: {}"), (r"at most (\S+ A)", "")]
-)
+@pytest.mark.parametrize(("pattern", "new"), [(r"a bus rated (\S+ A)", "rating: {}"), (r"at most (\S+ A)", "")])
 def test_printed_rating_of_a_bus_or_of_the_device_ahead_mends_it(pattern: str, new: str) -> None:
     """REMEDY: the panel's breakers let out 40 A; a feeder fuse of 30 A holds it to that."""
     yard = SOUND.edit("bus-100: {kind: bus, rating: 100 A}", "bus-100: {kind: bus, rating: 39 A}")
@@ -220,9 +212,7 @@ def test_printed_length_in_feet_is_not_rounded_up_over_the_limit() -> None:
     assert found(yard.edit("length: 30 ft", f"length: {longest}")) == []
 
 
-FAR_FUSE = SOUND.edit(
-    "to: F-MAIN.line, size: 2 AWG, length: 5.9 in", "to: F-MAIN.line, size: 2 AWG, length: 0.3 m"
-)
+FAR_FUSE = SOUND.edit("to: F-MAIN.line, size: 2 AWG, length: 5.9 in", "to: F-MAIN.line, size: 2 AWG, length: 0.3 m")
 
 
 @pytest.mark.parametrize("pattern", [r"within (\S+ m) \(", r"within \S+ m \((\S+ in)\)"])
@@ -234,9 +224,7 @@ def test_printed_distance_mends_a_device_that_is_too_far_off(pattern: str) -> No
 
 def test_printed_sheath_mends_a_device_that_is_too_far_off() -> None:
     """REMEDY: the law asks for the reason besides, and does not pass without it."""
-    assert (
-        "lay all of it in a sheath or conduit" in finding(FAR_FUSE, "protection-distance", "M1", LAW).remedy
-    )
+    assert "lay all of it in a sheath or conduit" in finding(FAR_FUSE, "protection-distance", "M1", LAW).remedy
     assert found(FAR_FUSE.edit("length: 0.3 m}\n      M2", "length: 0.3 m, enclosed: full}\n      M2")) == []
 
 

@@ -228,9 +228,7 @@ def test_instrument_that_does_not_belong_to_the_shunt_is_found_on_the_bank_s_sid
         ),
     ],
 )
-def test_what_was_not_recorded_leaves_the_shunt_not_assessed_and_never_passed(
-    old: str, new: str, line: str
-) -> None:
+def test_what_was_not_recorded_leaves_the_shunt_not_assessed_and_never_passed(old: str, new: str, line: str) -> None:
     """SHU-05, SHU-06: what could bypass the shunt was not looked at."""
     yard = SOUND.edit(old, new)
     assert found(yard) == []

@@ -37,9 +37,7 @@ def test_every_check_passes_at_least_once_under_every_set_that_has_a_rule() -> N
     for check in CHECKS:
         if check.id in TOLD_BY_DEVICE_RATING:
             continue
-        sets = (
-            {LAW} if check.id in LAW_ALONE else {PRACTICE} if check.id in PRACTICE_ALONE else {LAW, PRACTICE}
-        )
+        sets = {LAW} if check.id in LAW_ALONE else {PRACTICE} if check.id in PRACTICE_ALONE else {LAW, PRACTICE}
         expected |= {(check.id, one) for one in (sets if check.is_per_set else {""})}
     assert seen == expected
 

@@ -32,7 +32,9 @@ from checker.reading.yard_files import read_yard
 from checker.result.model import FleetResult, SubjectResult
 
 FLEET = Path(__file__).resolve().parents[2] / "fleet_example"
-DATA: dict[str, Any] = yaml.safe_load((Path(__file__).parent / "data" / "demo_scenario_results.yaml").read_text("utf-8"))
+DATA: dict[str, Any] = yaml.safe_load(
+    (Path(__file__).parent / "data" / "demo_scenario_results.yaml").read_text("utf-8")
+)
 TODAY = datetime.date(2026, 12, 1)
 
 CLASS = "tindral-36"
@@ -115,7 +117,9 @@ def pct_lost(amps: float, metres: float, awg: int, nominal_v: float = 12.0) -> f
 
 def test_the_hand_formula_gives_the_printed_drop_of_the_house_main() -> None:
     # M01: 250 A over 0.15 + 0.35 + 0.25 + 0.25 + 0.35 = 1.35 m of 4/0 AWG: 0.0563 V, 0.47 %.
-    assert pct_lost(250, 1.35, -3) == pytest.approx(DATA["circuits"]["M01"]["drop_pct_run"]["value"], abs=HALF_DIGIT_PCT)
+    assert pct_lost(250, 1.35, -3) == pytest.approx(
+        DATA["circuits"]["M01"]["drop_pct_run"]["value"], abs=HALF_DIGIT_PCT
+    )
 
 
 # --- voltage drop
@@ -470,7 +474,9 @@ def test_what_can_come_into_every_bus_is_the_printed_figure(bus: str) -> None:
         for flows in case_of(subject).studies.buses:
             for flow in flows:
                 if flow.bus == bus:
-                    most = max(most, sum(amps for name, amps in flow.comes_in if not (bus == "BUS-CH" and name == "F-CH")))
+                    most = max(
+                        most, sum(amps for name, amps in flow.comes_in if not (bus == "BUS-CH" and name == "F-CH"))
+                    )
     assert most == pytest.approx(printed)
 
 
@@ -498,7 +504,9 @@ def test_every_circuit_of_the_scenario_is_aboard_and_no_other() -> None:
 def told(name: str) -> list[tuple[str, str, str, str]]:
     """Return what a hull's report tells beside passes: verdict, level, check, part; sorted."""
     return sorted(
-        (o.verdict.value, o.level.value, o.check, o.part) for o in hull(name).outcomes if o.verdict is not Verdict.PASSED
+        (o.verdict.value, o.level.value, o.check, o.part)
+        for o in hull(name).outcomes
+        if o.verdict is not Verdict.PASSED
     )
 
 
@@ -524,7 +532,9 @@ def thin_drops(name: str) -> set[str]:
 
 
 def test_every_option_set_passes() -> None:
-    assert [s.id for s in fleet().subjects if not s.is_hull and any(o.verdict is not Verdict.PASSED for o in s.outcomes)] == []
+    assert [
+        s.id for s in fleet().subjects if not s.is_hull and any(o.verdict is not Verdict.PASSED for o in s.outcomes)
+    ] == []
 
 
 def test_nothing_is_wrong_with_the_files_of_the_fleet() -> None:
@@ -592,7 +602,9 @@ def test_hull_038_has_six_parts_that_could_spark_beside_the_stowed_petrol() -> N
     parts = ["CHG", "INV", "MPPT1", "MPPT2", "P11.load", "P25.load"]
     assert told("TND-038") == [("finding", "error", "ignition-protection", part) for part in parts]
     findings = [o for o in hull("TND-038").outcomes if o.verdict is Verdict.FINDING]
-    assert all(o.also_at[0].file == "hulls/tnd-038.yaml" for o in findings), "each names the line that brought the petrol"
+    assert all(o.also_at[0].file == "hulls/tnd-038.yaml" for o in findings), (
+        "each names the line that brought the petrol"
+    )
 
 
 def test_hull_038_passes_the_protection_distance_of_its_moved_fuse() -> None:

@@ -91,9 +91,7 @@ def test_the_metric_formula_and_copper_at_20_c_give_the_printed_drops() -> None:
     area_cmil = given["area_mm2"] / CIRCULAR_MIL_MM2
     drop = drop_v(given["current_a"], given["loop_length_m"], area_cmil, k)
     assert drop == pytest.approx(expected["drop_v"], abs=example["tolerance_v"])
-    copper_drop_v = given["current_a"] * copper_resistance_ohm(
-        given["loop_length_m"], given["area_mm2"], 20.0
-    )
+    copper_drop_v = given["current_a"] * copper_resistance_ohm(given["loop_length_m"], given["area_mm2"], 20.0)
     assert copper_drop_v == pytest.approx(expected["copper_20c_drop_v"], abs=0.0005)
 
 
@@ -123,9 +121,7 @@ def test_the_engine_space_takes_15_per_cent_of_105_c_conductors(awg: str) -> Non
 
 def test_bundles_of_50_volts_and_more_bear_what_the_chart_prints() -> None:
     example = EXAMPLES["AMP-02"]
-    bundled_a = [
-        federal_ampacity_a("18", 105) * FEDERAL.bundle.factor_from_50_v(count) for count in example["counts"]
-    ]
+    bundled_a = [federal_ampacity_a("18", 105) * FEDERAL.bundle.factor_from_50_v(count) for count in example["counts"]]
     in_engine_space_a = [a * FEDERAL.engine_factor.at(105) for a in bundled_a]
     assert bundled_a == pytest.approx(example["expected_a"], abs=example["tolerance_a"])
     assert in_engine_space_a == pytest.approx(example["expected_engine_space_a"], abs=example["tolerance_a"])
@@ -154,9 +150,7 @@ def test_a_conductor_of_115_a_takes_the_next_standard_device() -> None:
 
 def test_a_next_standard_device_of_exactly_150_per_cent_is_allowed() -> None:
     example = EXAMPLES["OCP-03"]
-    short_list = replace(
-        VOLUNTARY.device_rating, standard_ratings_a=tuple(map(float, example["given"]["ratings_a"]))
-    )
+    short_list = replace(VOLUNTARY.device_rating, standard_ratings_a=tuple(map(float, example["given"]["ratings_a"])))
     allowed_a = short_list.largest_allowed_a(example["given"]["ampacity_a"])
     assert allowed_a == example["expected"]["largest_a"]
 

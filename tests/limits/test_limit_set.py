@@ -143,9 +143,7 @@ def refused(folder: Path, file: str, old: str, new: str) -> str:
         ("set.yaml", "[ignition]", "[]", "voluntary-dc/ignition.yaml: the file cannot be read"),
     ],
 )
-def test_a_malformed_table_is_refused_by_name(
-    tmp_path: Path, file: str, old: str, new: str, message: str
-) -> None:
+def test_a_malformed_table_is_refused_by_name(tmp_path: Path, file: str, old: str, new: str, message: str) -> None:
     assert message in refused(tmp_path, file, old, new)
 
 

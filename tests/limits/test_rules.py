@@ -36,9 +36,7 @@ def metric(area_mm2: float) -> Size:
     return Size(f"{area_mm2:g} mm2", area_mm2)
 
 
-def row_at(
-    limits: LimitSet, size: Size, insulation_c: float, *, next_smaller: bool = False
-) -> AmpacityRow | None:
+def row_at(limits: LimitSet, size: Size, insulation_c: float, *, next_smaller: bool = False) -> AmpacityRow | None:
     return limits.ampacity.at(size, insulation_c, next_smaller_awg=next_smaller)
 
 
@@ -116,9 +114,7 @@ def test_the_voluntary_bundle_factor_changes_at_its_counts(count: int, factor: f
 
 
 @pytest.mark.parametrize(("count", "extra"), [(4, 0.857), (7, 0.714), (25, 0.571)])
-def test_the_bundle_totals_are_the_printed_footnotes_times_the_bundled_table(
-    count: int, extra: float
-) -> None:
+def test_the_bundle_totals_are_the_printed_footnotes_times_the_bundled_table(count: int, extra: float) -> None:
     # Table VI-B is 0.7 of VI-A; the footnotes print three digits, so the product is within 0.0005.
     assert VOLUNTARY.bundle.factor(count) == pytest.approx(0.7 * extra, abs=0.0005)
 

@@ -127,7 +127,9 @@ def test_a_bus_between_two_banks_is_counted_both_ways() -> None:
 
 
 def test_a_collector_on_the_bank_has_no_limit_by_devices() -> None:
-    assert through("STUD", *house(a_bus("STUD"), a_conductor("x", "BAT.pos", "STUD"), *branch("C", "STUD", 90.0))) == [90.0]
+    assert through("STUD", *house(a_bus("STUD"), a_conductor("x", "BAT.pos", "STUD"), *branch("C", "STUD", 90.0))) == [
+        90.0
+    ]
     collector: list[Piece] = [a_battery("B2"), a_conductor("n2", "B2.neg", "BUS-N"), a_bus("STUD")]
     joined = [a_conductor("x", "BAT.pos", "STUD"), a_conductor("y", "B2.pos", "STUD")]
     assert through("STUD", *house(*collector, *joined)) == [INF]

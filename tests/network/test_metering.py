@@ -178,7 +178,11 @@ def test_a_switch_that_joins_both_sides_of_the_shunt_is_a_path_round_it() -> Non
 
 
 def test_a_shunt_turned_round_is_told_and_nothing_else_is() -> None:
-    pieces = [*without(metered(), "sb", "ss"), a_conductor("sb", "STUD", "SH.sys"), a_conductor("ss", "SH.bat", "BUS-N")]
+    pieces = [
+        *without(metered(), "sb", "ss"),
+        a_conductor("sb", "STUD", "SH.sys"),
+        a_conductor("ss", "SH.bat", "BUS-N"),
+    ]
     assert metering(*pieces).is_turned
     assert found_in(a_boat(*pieces), shunt_bypass, shunt_direction) == [("shunt-direction", "SH")]
 

@@ -183,7 +183,11 @@ def test_a_load_behind_a_reversed_string_stands_across_nothing() -> None:
 
 def feeding(load: Piece, feed: str, back: str) -> list[Piece]:
     """Return a load and its two conductors."""
-    return [load, a_conductor(f"{load.id}-out", feed, f"{load.id}.pos"), a_conductor(f"{load.id}-back", f"{load.id}.neg", back)]
+    return [
+        load,
+        a_conductor(f"{load.id}-out", feed, f"{load.id}.pos"),
+        a_conductor(f"{load.id}-back", f"{load.id}.neg", back),
+    ]
 
 
 def test_a_12_v_load_on_24_v_is_found() -> None:
@@ -203,7 +207,13 @@ def test_a_12_v_load_on_the_middle_of_a_24_v_bank_has_its_voltage_but_taps_the_b
 
 
 def test_a_load_whose_return_is_missing_is_found() -> None:
-    pieces: list[Piece] = [BUS, a_battery("A"), a_conductor("n", "A.neg", "BUS-N"), a_load("L"), a_conductor("o", "A.pos", "L.pos")]
+    pieces: list[Piece] = [
+        BUS,
+        a_battery("A"),
+        a_conductor("n", "A.neg", "BUS-N"),
+        a_load("L"),
+        a_conductor("o", "A.pos", "L.pos"),
+    ]
     assert found_in(a_boat(*pieces), load_return) == [("load-return", "L")]
     assert volts(studied(*pieces), "L.neg") is None
 

@@ -45,7 +45,11 @@ def battery(name: str = "BAT") -> list[Piece]:
 
 def consumer(name: str, feed: str) -> list[Piece]:
     """Return a load behind a feed, with its return."""
-    return [a_load(name), a_conductor(f"{name}-out", feed, f"{name}.pos"), a_conductor(f"{name}-back", f"{name}.neg", "BUS-N")]
+    return [
+        a_load(name),
+        a_conductor(f"{name}-out", feed, f"{name}.pos"),
+        a_conductor(f"{name}-back", f"{name}.neg", "BUS-N"),
+    ]
 
 
 # --- one way
@@ -58,7 +62,11 @@ def test_a_fuse_on_the_battery_post_leaves_no_run() -> None:
 
 def test_the_run_to_the_first_fuse_is_its_conductor() -> None:
     boat = studied(
-        BUS, *battery(), a_fuse("F", 100.0), a_conductor("W", "BAT.pos", "F.line", length="5 in"), *consumer("L", "F.load")
+        BUS,
+        *battery(),
+        a_fuse("F", 100.0),
+        a_conductor("W", "BAT.pos", "F.line", length="5 in"),
+        *consumer("L", "F.load"),
     )
     assert runs_of(boat) == {
         "W": Run("BAT.pos", ("W",), pytest.approx(0.127), "F", True, ("BAT.pos", "W", "F.line"))  # type: ignore[arg-type]
@@ -314,14 +322,18 @@ def test_a_link_between_two_batteries_is_unprotected_where_only_one_end_meets_a_
         ("39.9 in", True, []), ("40 in", True, []), ("1.016 m", True, []), ("40.1 in", True, ["W"]),
     ],
 )  # fmt: skip
-def test_a_run_behind_a_step_is_held_to_7_in_open_and_40_in_enclosed(text: str, enclosed: bool, found: list[str]) -> None:
+def test_a_run_behind_a_step_is_held_to_7_in_open_and_40_in_enclosed(
+    text: str, enclosed: bool, found: list[str]
+) -> None:
     pieces = [
         BUS, *battery(), a_fuse("F", 200.0, mount={"line": "BAT.pos"}), a_bus("STUD"), a_fuse("G", 10.0),
         a_conductor("thick", "F.load", "STUD", size="2/0 AWG", length="3 m"),
         a_conductor("W", "STUD", "G.line", size="14 AWG", length=text, enclosed=enclosed, place_reason="no room nearer"),
         *consumer("L", "G.load"),
     ]  # fmt: skip
-    assert [part for _, part in found_in(a_boat(*pieces), protection_distance, unprotected_conductor, size_step)] == found
+    assert [
+        part for _, part in found_in(a_boat(*pieces), protection_distance, unprotected_conductor, size_step)
+    ] == found
 
 
 def test_the_lengths_here_are_no_cause_of_another_finding() -> None:

@@ -74,14 +74,20 @@ def test_a_row_that_closes_no_more_than_another_is_not_studied() -> None:
         a_bus("BUS-N"), a_switch("SW"), a_switch("LINK"), a_row("in-use", SW="closed", LINK="open"),
         a_row("left", SW="open", LINK="open"), a_row("emergency", "abnormal", SW="closed", LINK="closed"),
     )  # fmt: skip
-    assert [(state.id, state.is_normal) for state in study_states(boat).kept] == [("in-use", True), ("emergency", False)]
+    assert [(state.id, state.is_normal) for state in study_states(boat).kept] == [
+        ("in-use", True),
+        ("emergency", False),
+    ]
 
 
 def test_a_normal_state_is_kept_though_an_abnormal_one_closes_more() -> None:
     boat = a_boat(
         a_bus("BUS-N"), a_switch("LINK"), a_row("emergency", "abnormal", LINK="closed"), a_row("in-use", LINK="open")
     )
-    assert [(state.id, state.is_normal) for state in study_states(boat).kept] == [("in-use", True), ("emergency", False)]
+    assert [(state.id, state.is_normal) for state in study_states(boat).kept] == [
+        ("in-use", True),
+        ("emergency", False),
+    ]
 
 
 def test_an_abnormal_state_that_closes_no_more_than_a_normal_one_is_not_studied() -> None:
@@ -184,9 +190,7 @@ def test_an_uncovered_combination_is_told_however_large_the_table() -> None:
 
 
 def test_the_edges_of_a_state_are_its_contacts_and_everything_else() -> None:
-    boat = a_boat(
-        a_bus("BUS-N"), a_switch("SEL", CHANGEOVER), a_fuse("F", 5.0), a_conductor("W", "SEL.out", "F.line")
-    )
+    boat = a_boat(a_bus("BUS-N"), a_switch("SEL", CHANGEOVER), a_fuse("F", 5.0), a_conductor("W", "SEL.out", "F.line"))
     network = build_network(boat)
     for state in study_states(boat).kept:
         live = [network.edges[i] for i in live_edges(network, state)]
@@ -229,9 +233,7 @@ def all_states(boat: Boat) -> list[SwitchState]:
     switches = [(d.id, d.part) for d in boat.devices.values() if isinstance(d.part, Switch)]
     found = []
     for chosen in itertools.product(*(part.states for _, part in switches)):
-        closed = {
-            (name, a, b) for (name, _), (_, pairs) in zip(switches, chosen, strict=True) for a, b in pairs
-        }
+        closed = {(name, a, b) for (name, _), (_, pairs) in zip(switches, chosen, strict=True) for a, b in pairs}
         found.append(SwitchState("x", True, frozenset(closed), "x"))
     return found
 

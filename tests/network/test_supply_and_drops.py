@@ -182,7 +182,10 @@ def test_a_yards_rule_may_make_a_service_critical() -> None:
     boat = a_boat(*house(*branch()))
     plain, strict = case_of(boat), case_of(boat, House(drop_critical=("lighting",)))
     limits = [drop_limit(case, boat.circuits["LIGHT"]) for case in (plain, strict)]
-    assert [(limit.fraction, limit.is_yard_rule) for limit in limits if limit is not None] == [(0.10, False), (0.03, True)]
+    assert [(limit.fraction, limit.is_yard_rule) for limit in limits if limit is not None] == [
+        (0.10, False),
+        (0.03, True),
+    ]
 
 
 # --- parallel conductors
@@ -280,7 +283,11 @@ def test_the_parts_of_a_circuit_before_and_behind_an_open_contact_both_count() -
 
 
 @settings(max_examples=40, deadline=None)
-@given(st.lists(st.tuples(st.sampled_from(["2 AWG", "6 AWG", "10 AWG", "14 AWG"]), st.integers(1, 90)), min_size=1, max_size=6))
+@given(
+    st.lists(
+        st.tuples(st.sampled_from(["2 AWG", "6 AWG", "10 AWG", "14 AWG"]), st.integers(1, 90)), min_size=1, max_size=6
+    )
+)
 def test_a_chain_of_any_pieces_drops_their_sum(chain: list[tuple[str, int]]) -> None:
     posts = ["FB.load", *(f"S{n}" for n in range(len(chain) - 1)), "L.pos"]
     outs: list[Piece] = [

@@ -256,7 +256,9 @@ def facts_of(document: dict[str, Any]) -> Iterator[tuple[str, ...]]:
 def test_the_json_parses_and_tells_every_hull_that_the_text_tells(reports: Reports) -> None:
     document = json.loads(reports["result.json"])
     hulls = [subject for subject in document["subjects"] if subject["kind"] == "hull"]
-    assert [f"hulls/{subject['id']}.txt" for subject in hulls] == [name for name in reports if name.startswith("hulls/")]
+    assert [f"hulls/{subject['id']}.txt" for subject in hulls] == [
+        name for name in reports if name.startswith("hulls/")
+    ]
     for subject in hulls:
         text = reports[f"hulls/{subject['id']}.txt"]
         totals = dict(re.findall(r"^  (finding|accepted|not assessed|passed): (\d+)$", text, re.M))

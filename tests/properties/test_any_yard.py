@@ -57,7 +57,9 @@ class Mutation:
         self._texts = sorted(
             {v for data in files.values() for p in paths_in(data) if isinstance(v := value_at(data, p), str)}
         )
-        self._names = sorted({step for data in files.values() for p in paths_in(data) for step in p if isinstance(step, str)})
+        self._names = sorted(
+            {step for data in files.values() for p in paths_in(data) for step in p if isinstance(step, str)}
+        )
 
     def mutant(self) -> dict[str, str]:
         """Return the files with one to four values changed."""

@@ -86,7 +86,12 @@ def drop_of(boat: Boat, circuit: str, *, from_bank: bool) -> float:
 
 
 @settings(max_examples=60, deadline=None)
-@given(st.sampled_from(GAUGES), st.sampled_from(GAUGES), st.sampled_from(["W2", "W4", "pump-out", "pump-back"]), st.booleans())
+@given(
+    st.sampled_from(GAUGES),
+    st.sampled_from(GAUGES),
+    st.sampled_from(["W2", "W4", "pump-out", "pump-back"]),
+    st.booleans(),
+)
 def test_thicker_copper_never_drops_more_in_any_circuit(one: str, other: str, name: str, from_bank: bool) -> None:
     thin, thick = sorted((one, other), key=GAUGES.index)
     boat = a_boat(*sound_pieces())
@@ -106,7 +111,11 @@ def test_thicker_copper_never_bears_less(set_id: str, insulation_c: float, zone:
     cable = replace(SINGLE, insulation_c=insulation_c)
     for unit, names in (("AWG", GAUGES), ("mm2", METRIC)):
         borne = [
-            bearings.of(a_conductor(f"W{name}", "BUS-N", "BUS-N", size=f"{name} {unit}", cable=cable, zones=(zone,), company=company))
+            bearings.of(
+                a_conductor(
+                    f"W{name}", "BUS-N", "BUS-N", size=f"{name} {unit}", cable=cable, zones=(zone,), company=company
+                )
+            )
             for name in names
         ]
         amps = [b.ampacity_a for b in borne if b is not None]
@@ -125,7 +134,9 @@ def test_better_insulation_never_bears_less(set_id: str, zone: str) -> None:
         borne = []
         for insulation_c in (60, 75, 80, 90, 105, 125):
             cable = replace(SINGLE, insulation_c=float(insulation_c))
-            wire = a_conductor(f"W{gauge}-{insulation_c}", "BUS-N", "BUS-N", size=f"{gauge} AWG", cable=cable, zones=(zone,))
+            wire = a_conductor(
+                f"W{gauge}-{insulation_c}", "BUS-N", "BUS-N", size=f"{gauge} AWG", cable=cable, zones=(zone,)
+            )
             borne.append(bearings.of(wire))
         amps = [b.ampacity_a for b in borne if b is not None]
         assert amps == sorted(amps)
@@ -151,7 +162,12 @@ def test_a_length_given_in_feet_and_in_metres_gets_one_verdict(tenths: int, name
     boat = a_boat(*sound_pieces())
     for set_id in LIMIT_SET_IDS:
         both = [
-            verdicts(outcomes_of(changed(boat, name, length_m=read_number(text, Dimension.LENGTH), length_unit=unit), limit_set=set_id))
+            verdicts(
+                outcomes_of(
+                    changed(boat, name, length_m=read_number(text, Dimension.LENGTH), length_unit=unit),
+                    limit_set=set_id,
+                )
+            )
             for text, unit in ((in_feet(tenths), "ft"), (in_metres(tenths), "m"))
         ]
         assert both[0] == both[1]
@@ -162,7 +178,9 @@ def test_7_in_typed_in_any_unit_is_within_7_in() -> None:
     for text in ("7 in", "0.1778 m", "17.78 cm", "177.8 mm"):
         length_m = read_number(text, Dimension.LENGTH)
         assert found_in(changed(boat, "W1", length_m=length_m), protection_distance, unprotected_conductor) == []
-        assert found_in(changed(boat, "W1", length_m=length_m * 1.001), protection_distance) == [("protection-distance", "W1")]
+        assert found_in(changed(boat, "W1", length_m=length_m * 1.001), protection_distance) == [
+            ("protection-distance", "W1")
+        ]
 
 
 # --- what flows
@@ -258,7 +276,9 @@ def test_the_order_of_the_conductors_changes_nothing_of_what_reaches_them(
 
 @settings(max_examples=40, deadline=None)
 @given(st.sampled_from([5.0, 10.0, 15.0, 20.0, 30.0, 60.0, 100.0]), st.sampled_from([1.0, 1.5, 2.0, 4.0]))
-def test_a_larger_fuse_never_makes_a_finding_about_what_protects_its_conductors_go_away(rating_a: float, times: float) -> None:
+def test_a_larger_fuse_never_makes_a_finding_about_what_protects_its_conductors_go_away(
+    rating_a: float, times: float
+) -> None:
     checks = (device_rating, size_step, double_feed, unprotected_conductor)
     for set_id in LIMIT_SET_IDS:
         # By part: beyond the main fuse's rating the same conductor is told as a step behind that one.
@@ -276,7 +296,9 @@ def test_a_longer_piece_ahead_of_the_first_fuse_is_never_better_placed(one: int,
     found = []
     for tenths in sorted((one, other)):
         length_m = tenths * 0.00254
-        longer = changed(boat, "W1", length_m=length_m, enclosed_m=length_m if enclosed else 0.0, place_reason="no room nearer")
+        longer = changed(
+            boat, "W1", length_m=length_m, enclosed_m=length_m if enclosed else 0.0, place_reason="no room nearer"
+        )
         found.append(found_in(longer, protection_distance, unprotected_conductor))
     assert not Counter(found[0]) - Counter(found[1])
 
@@ -357,7 +379,18 @@ def decided(folder: Path) -> dict[str, list[tuple[Any, ...]]]:
     assert result.file_outcomes == ()
     return {
         s.id: sorted(
-            (o.verdict.value, o.check, o.part, o.limit_set, o.state, PLACE.sub("", o.fault), o.remedy, o.path, repr(o.measure), o.inputs)
+            (
+                o.verdict.value,
+                o.check,
+                o.part,
+                o.limit_set,
+                o.state,
+                PLACE.sub("", o.fault),
+                o.remedy,
+                o.path,
+                repr(o.measure),
+                o.inputs,
+            )
             for o in s.outcomes
         )
         for s in result.subjects

@@ -103,9 +103,7 @@ def test_a_number_that_starts_with_a_zero_is_refused(written: str, remedy: str) 
 
 @pytest.mark.parametrize("written", [".inf", "-.inf", "+.INF", ".nan", ".NaN"])
 def test_infinity_and_not_a_number_are_refused(written: str) -> None:
-    assert told(f"a: {written}") == [
-        f"1:4 “{written}” is no figure that can be checked (write a finite quantity)"
-    ]
+    assert told(f"a: {written}") == [f"1:4 “{written}” is no figure that can be checked (write a finite quantity)"]
 
 
 @pytest.mark.parametrize("written", ["1e400", "-1e999", "874e74773669"])

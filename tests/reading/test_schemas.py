@@ -206,8 +206,7 @@ def test_every_kind_of_part_leads_to_its_own_definition() -> None:
     definitions = SCHEMAS["parts.json"]["$defs"]
     kinds = definitions["part"]["properties"]["kind"]["enum"]
     led_to = [
-        (rule["if"]["properties"]["kind"]["const"], rule["then"]["$ref"])
-        for rule in definitions["part"]["allOf"]
+        (rule["if"]["properties"]["kind"]["const"], rule["then"]["$ref"]) for rule in definitions["part"]["allOf"]
     ]
     assert led_to == [(kind, f"#/$defs/{kind}") for kind in kinds]
     assert [definitions[kind]["properties"]["kind"]["const"] for kind in kinds] == kinds
@@ -255,9 +254,7 @@ SPELLINGS = {
         ["id", "part_id", "band_id", "zone_id", "way_id", "option_id", "state_id"],
         (["BUS-N", "24H-1", "a", "A" * 40], ["", "-a", "a.b", "a b", "A" * 41, "é"]),
     ),
-    **dict.fromkeys(
-        ["device_id", "circuit_or_device"], (["SW-H", "P22.switch"], ["P22.", ".switch", "P22.load.pos"])
-    ),
+    **dict.fromkeys(["device_id", "circuit_or_device"], (["SW-H", "P22.switch"], ["P22.", ".switch", "P22.load.pos"])),
     **dict.fromkeys(
         ["post", "device_or_post"],
         (["BUS-N", "BAT-S.pos", "P22.load.pos"], ["a.b.c.d", "BAT-S pos", "BAT-S..pos"]),
@@ -422,9 +419,7 @@ def test_a_fault_is_found_once_at_its_place(kind: str, document: Document, expec
     assert faults(kind, document) == [expected]
 
 
-@pytest.mark.parametrize(
-    "more", [{"kind": "fuse"}, {"kind": "breaker", "trip_free": True, "reset": "manual"}]
-)
+@pytest.mark.parametrize("more", [{"kind": "fuse"}, {"kind": "breaker", "trip_free": True, "reset": "manual"}])
 def test_a_rating_beside_ratings_is_refused_at_the_rating(more: Document) -> None:
     part = {**FUSE, **more, "ratings": {"5 A": {}}}
     assert faults("parts", {"parts": {"F": part}}) == [("parts/F/rating", "pattern")]
@@ -447,9 +442,7 @@ def test_a_patch_may_remove_anything_that_has_a_key() -> None:
     assert faults("changes", patch) == []
     assert faults("changes", {"circuits": {"M14": None, "M05": {"conductors": {"W030": None}}}}) == []
     assert faults("changes", {"conductors": {"W1": {"route": None, "size": None, "role": None}}}) == []
-    assert (
-        faults("changes", {"devices": {"F-H": {"mount": {"line": None}, "positions": {"last": None}}}}) == []
-    )
+    assert faults("changes", {"devices": {"F-H": {"mount": {"line": None}, "positions": {"last": None}}}}) == []
 
 
 def test_a_patch_may_be_every_document_that_is_a_class() -> None:

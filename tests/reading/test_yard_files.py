@@ -155,9 +155,9 @@ def test_a_linked_folder_is_told_and_not_passed_over(tmp_path: Path) -> None:
     write(tmp_path / "elsewhere", {"lamp.yaml": DORY["classes/dory-14/options/lamp.yaml"]})
     yard = write(tmp_path / "yard", {k: v for k, v in DORY.items() if "options" not in k})
     (yard / "classes/dory-14/options").symlink_to(tmp_path / "elsewhere")
-    assert (
-        "classes/dory-14/options:1:1 unreadable-file: a linked folder is not read (copy the files in)"
-    ) in faults(read_yard(yard))
+    assert ("classes/dory-14/options:1:1 unreadable-file: a linked folder is not read (copy the files in)") in faults(
+        read_yard(yard)
+    )
 
 
 @needs_links
