@@ -272,17 +272,19 @@ def return_protection(case: Case) -> Iterator[Outcome]:
     conductor bears all of it.
     """
     done: set[str] = set()
-    feeds_at_fault = {f.conductor.id for f in feedings(case) if f.kind in (Kind.RATING, Kind.STEP, Kind.DOUBLE)}
+    feeds = {f.conductor.id: f.kind for f in feedings(case)}
     for potentials, returns in zip(case.studies.potentials, case.studies.returns, strict=True):
         for name, failed in sorted(returns.items()):
             conductor = case.boat.conductors[name]
-            allowed_a = case.bearings.allowed_a(conductor)
-            if name in done or failed.current_a in (0.0, float("inf")) or conductor.is_bond:
+            if name in done or failed.current_a == 0 or conductor.is_bond:
                 continue
-            done.add(name)
             if protection_exemption(case, conductor) or (conductor.role == BANK and role_holds(case, conductor)):
                 continue
+            if failed.current_a == float("inf") and _is_told_or_cranks(case, failed.load, feeds):
+                continue
+            done.add(name)
             place = at_conductor(conductor, state=case.studies.state_words(potentials.state))
+            allowed_a = case.bearings.allowed_a(conductor)
             if allowed_a is None:
                 fault = f"the table has no row for {conductor.size.text}"
                 yield return_protection.not_assessed(case, place, fault, METRIC_FIELD)
@@ -291,14 +293,27 @@ def return_protection(case: Case) -> Iterator[Outcome]:
             if not measure.holds and failed.is_in_loop:
                 fault = f"{failed.load} can send {ampere(failed.current_a)} through it and a return beside it"
                 yield return_protection.not_assessed(case, place, fault, "the solved network (shared returns)")
-            elif measure.holds or not _told_at_feed(case, conductor, feeds_at_fault):
+            elif measure.holds or not _told_at_feed(case, conductor, feeds):
                 yield _judge_return(case, place, conductor, measure, failed.load, failed.device)
 
 
+def _is_told_or_cranks(case: Case, load: str, feeds: dict[str, Kind]) -> bool:
+    """Tell whether the missing device ahead of a load is told at its feed, or the load is a cranking motor."""
+    for name, kind in feeds.items():
+        conductor = case.boat.conductors[name]
+        owners = [case.boat.device_of(post) for post in (conductor.start, conductor.end)]
+        is_its_own = any(owner is not None and owner.id == load for owner in owners)
+        if is_its_own and (kind in (Kind.OPEN, Kind.FAR) or name in case.studies.cranking):
+            return True
+    return False
+
+
 def _judge_return(case: Case, place: Place, conductor: Conductor, measure: Measure, load: str, device: str) -> Outcome:
+    by = f"by {device}" if device else "no device in its feed"
+
     def told() -> Told:
         return Told(
-            fault=f"a failed {load} sends {ampere(measure.value)} (by {device}) through {conductor.size.text}, "
+            fault=f"a failed {load} sends {ampere(measure.value)} ({by}) through {conductor.size.text}, "
             f"which allows {ampere(measure.limit)}",
             remedy=smallest_gauge_words(case, conductor),
             inputs=(("size", conductor.size.text), ("device", f"{device} {ampere(measure.value)}")),
@@ -307,8 +322,9 @@ def _judge_return(case: Case, place: Place, conductor: Conductor, measure: Measu
     return return_protection.judge(case, place, measure, told)
 
 
-def _told_at_feed(case: Case, conductor: Conductor, feeds_at_fault: set[str]) -> bool:
+def _told_at_feed(case: Case, conductor: Conductor, feeds: dict[str, Kind]) -> bool:
     """Tell whether the same cable is already reported by its feed conductor: one cause, one finding."""
     circuit = case.boat.circuits.get(conductor.circuit)
     own = [case.boat.conductors[name] for name in circuit.conductors] if circuit else []
-    return any(c.id in feeds_at_fault and c.size.area_mm2 <= conductor.size.area_mm2 for c in own)
+    told = (Kind.RATING, Kind.STEP, Kind.DOUBLE)
+    return any(feeds.get(c.id) in told and c.size.area_mm2 <= conductor.size.area_mm2 for c in own)

@@ -17,6 +17,9 @@ from checker.network.potentials import Potentials
 from checker.network.states import live_edges
 from checker.network.walk import Neighbours, groups, neighbours
 
+Sent = tuple[float, str, str]  # ampere, load, device
+NOTHING: Sent = (0.0, "", "")
+
 
 @dataclass(frozen=True, slots=True)
 class ReturnExposure:
@@ -45,11 +48,11 @@ def study_returns(network: Network, potentials: Potentials) -> dict[str, ReturnE
         tops = [post for b in batteries for post in (b.pos, b.neg) if not potentials.is_return(post)]
         sinks = [post for b in batteries for post in (b.pos, b.neg) if potentials.is_return(post)]
         widths = _widths(network, feed, tops)
-        sent: dict[int, tuple[float, str, str]] = {}
+        sent: dict[int, Sent] = {}
         for name, start, end in _shortable(network):
             width = widths.get(start)
             if width and potentials.is_return(end):
-                sent[end] = max(sent.get(end, (0.0, "", "")), (width[0], name, width[1]))
+                sent[end] = max(sent.get(end, NOTHING), (width[0], name, width[1]))
         _gather(network, back, bridges, sinks, sent, worst)
     return worst
 
@@ -85,7 +88,7 @@ def _gather(
     at: Neighbours,
     bridges: frozenset[int],
     sinks: list[int],
-    sent: dict[int, tuple[float, str, str]],
+    sent: dict[int, Sent],
     worst: dict[str, ReturnExposure],
 ) -> None:
     """Carry what loads send towards the bank, and note the most over each conductor."""
@@ -105,28 +108,31 @@ def _gather(
                     came[far] = edge.index
                     waiting.append(far)
     carried = dict(sent)
-    beyond: dict[int, tuple[float, str, str]] = {}
+    beyond: dict[int, Sent] = {}
     for node in reversed(order):
-        amount = carried.get(node, (0.0, "", ""))
+        amount = carried.get(node, NOTHING)
         index = came[node]
         if index >= 0:
             parent = network.edges[index].other(node)
-            carried[parent] = max(carried.get(parent, (0.0, "", "")), amount)
+            carried[parent] = max(carried.get(parent, NOTHING), amount)
             beyond[index] = amount
     block = groups(len(network.posts), ((e.a, e.b) for n in order for e in at[n] if e.index not in bridges))
-    # What comes into a ring anywhere but at its post nearest the bank may go round either side of it.
+    round_it = _round_rings(order, block, carried)
+    for node in order:
+        for edge in (e for e in at[node] if e.kind is EdgeKind.CONDUCTOR):
+            in_loop = edge.index not in bridges
+            amount = round_it.get(block[node], NOTHING) if in_loop else beyond.get(edge.index, NOTHING)
+            if edge.part not in worst or amount[0] > worst[edge.part].current_a:
+                worst[edge.part] = ReturnExposure(*amount, in_loop)
+
+
+def _round_rings(order: list[int], block: list[int], carried: dict[int, Sent]) -> dict[int, Sent]:
+    """Return for each ring what may go round either side of it: what comes in anywhere but nearest the bank."""
     nearest: set[int] = set()
-    round_it: dict[int, tuple[float, str, str]] = {}
+    found: dict[int, Sent] = {}
     for node in order:
         ring = block[node]
         if ring in nearest:
-            round_it[ring] = max(round_it.get(ring, (0.0, "", "")), carried.get(node, (0.0, "", "")))
+            found[ring] = max(found.get(ring, NOTHING), carried.get(node, NOTHING))
         nearest.add(ring)
-    for node in order:
-        for edge in at[node]:
-            if edge.kind is not EdgeKind.CONDUCTOR:
-                continue
-            in_loop = edge.index not in bridges
-            amount = round_it.get(block[node], (0.0, "", "")) if in_loop else beyond.get(edge.index, (0.0, "", ""))
-            if amount[0] > worst.get(edge.part, ReturnExposure(0.0, "", "", False)).current_a or edge.part not in worst:
-                worst[edge.part] = ReturnExposure(*amount, in_loop)
+    return found

@@ -584,3 +584,17 @@ def test_voluntary_set_alone_finds_the_same_missing_device() -> None:
     yard = horn(line, HORN_BACK).edit("[cfr33-183-i, voluntary-dc]", "[voluntary-dc]")
     assert found(yard) == [("unprotected-conductor", "H1", PRACTICE, line)]
     assert found(PRACTICE_ONLY) == []
+
+
+def test_return_of_a_load_that_sits_on_a_live_stud_without_a_device_is_found() -> None:
+    """PRO-01: the horn's feed post sits on the stud of the main fuse's line: no conductor, and no device either.
+
+    Only its return can tell: a horn that fails as a short sends all that the battery gives through it.
+    """
+    horn = (
+        "devices:\n  HORN: {part: horn, zone: LOCKER, mount: {pos: F-MAIN.line}}\n"
+        "circuits:\n  HORNS:\n    {name: Horn, service: horn, current: 5 A,\n"
+        "     conductors: {X9: {from: HORN.neg, to: BUS-N, size: 12 AWG, length: 1 m}}}\n"
+    )
+    yard = SOUND.also_parts("horn: {kind: load, voltage: 12 V, current: 5 A, max_device: 10 A}").also(horn)
+    assert ("return-protection", "X9") in [row[:2] for row in found(yard)]
