@@ -47,7 +47,7 @@ class Studied:
     faults: tuple[Fault, ...] = ()
 
 
-FEWEST_FOR_WORKERS = 24
+FEWEST_FOR_WORKERS = 8
 """Distinct boats below which starting worker processes costs more than it saves."""
 
 
