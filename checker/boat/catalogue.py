@@ -74,6 +74,7 @@ def _battery(entry: Entry) -> Part | None:
         resistance_full_ohm=entry.number("resistance_full", Dimension.RESISTANCE),
         resistance_low_ohm=entry.number("resistance_low", Dimension.RESISTANCE),
         short_circuit_a=entry.number("short_circuit", Dimension.CURRENT),
+        cranking_a=entry.number("cranking_amps", Dimension.CURRENT),
     )
 
 

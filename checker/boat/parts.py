@@ -24,6 +24,7 @@ class Battery:
     resistance_full_ohm: float | None = None
     resistance_low_ohm: float | None = None
     short_circuit_a: float | None = None
+    cranking_a: float | None = None
     at: Span = field(default=NOWHERE, compare=False, repr=False)
 
     posts: tuple[str, ...] = ("pos", "neg")

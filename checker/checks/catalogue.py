@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from checker.checks.check import Check
 from checker.checks.claims import role_claim, unlisted_state
+from checker.checks.coordination import device_carries_load, rating_order, selectivity
 from checker.checks.devices import (
     breaker_type,
     bus_rating,
@@ -14,6 +15,15 @@ from checker.checks.devices import (
     maker_device,
 )
 from checker.checks.drop import one_way_length, return_size, voltage_drop, voltage_drop_from_bank
+from checker.checks.faults import conductor_withstand, far_end_clearing, interrupting_capacity
+from checker.checks.flows import (
+    minimum_voltage,
+    polarised_device,
+    solved_ampacity,
+    solved_drop,
+    solved_rating,
+    working_point,
+)
 from checker.checks.gauge import ampacity, conductor_material, insulation_rating, minimum_size, sheath_exit
 from checker.checks.nets import (
     bank_tap,
@@ -62,6 +72,18 @@ CHECKS: tuple[Check, ...] = (
     voltage_drop,
     voltage_drop_from_bank,
     one_way_length,
+    working_point,
+    solved_ampacity,
+    solved_drop,
+    minimum_voltage,
+    solved_rating,
+    polarised_device,
+    interrupting_capacity,
+    far_end_clearing,
+    conductor_withstand,
+    selectivity,
+    rating_order,
+    device_carries_load,
     shunt_bypass,
     shunt_direction,
     shunt_rating,

@@ -28,6 +28,7 @@ from checker.limits.rules import (
     EngineFactor,
     IgnitionRule,
     InsulationRule,
+    InterruptingRule,
     Judged,
     MaterialRule,
     MinimumSize,
@@ -56,6 +57,7 @@ __all__ = [
     "EngineFactor",
     "IgnitionRule",
     "InsulationRule",
+    "InterruptingRule",
     "Judged",
     "LimitSet",
     "MaterialRule",
@@ -64,12 +66,14 @@ __all__ = [
     "Rule",
     "SelfLimitingSource",
     "SizeExemptions",
+    "least_selectivity_ratio",
     "limit_set_ids",
     "load_limit_set",
     "metric_sizes",
     "read_limit_set",
     "standard_ratings",
     "standard_ratings_citations",
+    "start_s",
     "surge_s",
     "thin_margin_citation",
     "thin_margin_fraction",
@@ -104,6 +108,7 @@ class LimitSet:
     drop: DropRule | None
     insulation: InsulationRule | None
     ignition: IgnitionRule | None
+    interrupting: InterruptingRule | None
 
     def citations(self) -> tuple[tuple[str, Citation], ...]:
         """Return every citation with the table, or the figure of a table, it belongs to."""
@@ -185,6 +190,7 @@ def read_limit_set(folder: Path) -> LimitSet:
         drop=rule_or_none("drop", rule_files.read_drop),
         insulation=rule_or_none("insulation", rule_files.read_insulation),
         ignition=rule_or_none("ignition", rule_files.read_ignition),
+        interrupting=rule_or_none("interrupting", rule_files.read_interrupting),
     )
     _expect_whole(head, folder, limits)
     return limits
@@ -193,7 +199,7 @@ def read_limit_set(folder: Path) -> LimitSet:
 def _expect_whole(head: Table, folder: Path, limits: LimitSet) -> None:
     """Refuse a set whose files and tables do not belong together."""
     if tuple(sorted(head.names("silent_on"))) != limits.silent_on:
-        head.refuse("silent_on may name drop, insulation and ignition only")
+        head.refuse("silent_on may name drop, insulation, ignition and interrupting only")
     tables = {field.name for field in fields(limits) if isinstance(getattr(limits, field.name), Rule)}
     if strays := sorted({path.stem for path in folder.glob("*.yaml")} - tables - {"set"}):
         head.refuse(f"{strays[0]}.yaml is no table of this set")
@@ -233,6 +239,24 @@ def metric_sizes() -> tuple[Size, ...]:
     table = common_table("metric_sizes")
     table.expect(("citation", "sizes_mm2"))
     return tuple(Size(f"{area_mm2:g} mm2", area_mm2) for area_mm2 in table.numbers("sizes_mm2"))
+
+
+@cache
+def least_selectivity_ratio() -> float:
+    """Return the least ratio of the ratings of two devices in series where a part has no band."""
+    table = common_table("selectivity")
+    table.expect(("citation", "least_ratio"))
+    table.citation()
+    return table.number("least_ratio")
+
+
+@cache
+def start_s() -> float:
+    """Return how long a load may draw its peak while it starts, s."""
+    table = common_table("start")
+    table.expect(("citation", "start_s"))
+    table.citation()
+    return table.number("start_s")
 
 
 @cache

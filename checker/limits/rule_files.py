@@ -22,6 +22,8 @@ from checker.limits.rules import (
     EngineFactor,
     IgnitionRule,
     InsulationRule,
+    InterruptingRow,
+    InterruptingRule,
     Judged,
     MaterialRule,
     MinimumSize,
@@ -116,6 +118,25 @@ def _bundle_row(row: Table) -> BundleRow:
     if most is not None and most < least:
         row.refuse(f"max {most} is below min {least}")
     return BundleRow(least, most, _factor(row))
+
+
+def read_interrupting(table: Table) -> InterruptingRule:
+    """Read the interrupting capacities; the last row is open."""
+    citation, figures = _cited(table, ("rows",))
+    rows = tuple(_interrupting_row(row) for row in table.tables("rows"))
+    bounds = [row.cranking_up_to_a for row in rows]
+    if not rows or bounds[-1] is not None or None in bounds[:-1]:
+        table.refuse("rows: the last row, and it alone, must be open, without cranking_up_to_a")
+    closed = [bound for bound in bounds if bound is not None]
+    if closed != sorted(set(closed)):
+        table.refuse("rows must rise in cranking_up_to_a")
+    return InterruptingRule(citation=citation, figures=figures, rows=rows)
+
+
+def _interrupting_row(row: Table) -> InterruptingRow:
+    row.expect(("main_a", "branch_a"), ("cranking_up_to_a",))
+    bound = row.number("cranking_up_to_a") if row.has("cranking_up_to_a") else None
+    return InterruptingRow(bound, row.number("main_a"), row.number("branch_a"))
 
 
 def read_minimum_size(table: Table) -> MinimumSize:

@@ -290,3 +290,25 @@ class DeviceVoltage(Rule):
     """Lowest voltage rating of a device over the nominal voltage of its circuit."""
 
     least_nominal_factor: float
+
+
+@dataclass(frozen=True, slots=True)
+class InterruptingRow:
+    """Least interrupting capacity up to a number of cranking amperes; None in the open last row."""
+
+    cranking_up_to_a: float | None
+    main_a: float
+    branch_a: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class InterruptingRule(Rule):
+    """Least interrupting capacity by the cranking amperes of all batteries that feed the place."""
+
+    rows: tuple[InterruptingRow, ...]
+
+    def least_a(self, cranking_a: float, *, is_main: bool) -> float:
+        """Return the least capacity of the first device behind a battery, or of one behind it, A."""
+        fitting = (r for r in self.rows if r.cranking_up_to_a is None or cranking_a <= r.cranking_up_to_a)
+        row = next(fitting)
+        return row.main_a if is_main else row.branch_a

@@ -2,22 +2,25 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 from functools import cached_property
 
 from checker.boat.hull import Boat
 from checker.network.buses import BusFlow, study_buses
 from checker.network.conditions import Operation, operations
+from checker.network.coordination import Pair, curve_of, device_pairs, selective_up_to_a
 from checker.network.cranking import bank_conductors, cranking_conductors, take_off_conductors
 from checker.network.demand import BankCurrent, bank_currents
 from checker.network.exposure import ExposureStudy, study_exposure
-from checker.network.flow import Copper
+from checker.network.faults import FarEnd, FaultLevels, far_ends
+from checker.network.flow import Copper, Grid
 from checker.network.graph import EdgeKind, Network, build_network
 from checker.network.metering import Metering, study_metering
 from checker.network.potentials import Potentials, study_potentials
 from checker.network.returns import ReturnExposure, study_returns
 from checker.network.solved import SolvedConditions, solve_operations
-from checker.network.states import States, SwitchState, live_edges, study_states
+from checker.network.states import States, SwitchState, live_edges, places, study_states
 from checker.network.supply import SupplyWay, study_supply
 from checker.network.walk import groups
 
@@ -29,6 +32,12 @@ class Coppers:
     working: Copper
     cold: Copper
     hot: Copper
+
+
+def _margin(row: tuple[Pair, float | None, float, str]) -> float:
+    """Return the share of the prospective current up to which a pair is selective."""
+    _, up_to_a, prospective_a, _ = row
+    return math.inf if up_to_a is None or not prospective_a else up_to_a / prospective_a
 
 
 class Studies:
@@ -90,6 +99,80 @@ class Studies:
     def conditions(self) -> SolvedConditions:
         """Return every operating condition solved."""
         return solve_operations(self.network, self.operations, self.coppers.working)
+
+    @cached_property
+    def fault_levels(self) -> tuple[FaultLevels, ...]:
+        """Return the largest fault currents, one record a state: cold copper, full batteries."""
+        return tuple(
+            FaultLevels(Grid(self.network, potentials.state, self.coppers.cold, is_full=True), potentials)
+            for potentials in self.potentials
+        )
+
+    @cached_property
+    def far_ends(self) -> dict[str, FarEnd]:
+        """Return for each device its far end, in the state where least flows: hot copper, low batteries."""
+        worst: dict[str, FarEnd] = {}
+        known = {potentials.state.closed: potentials for potentials in self.potentials}
+        for operation in self.operations:
+            if operation.state.closed not in known:
+                known[operation.state.closed] = study_potentials(self.network, operation.state)
+        for potentials in known.values():
+            grid = Grid(self.network, potentials.state, self.coppers.hot, is_full=False)
+            for name, far in far_ends(grid, potentials).items():
+                if name not in worst or far.current_a < worst[name].current_a * (1 - 1e-9):
+                    worst[name] = far
+        return worst
+
+    @cached_property
+    def selectivity(self) -> tuple[tuple[Pair, float | None, float, str], ...]:
+        """Return each pair of devices in series with the current up to which it is selective, and the prospective one.
+
+        In the normal state where the pair comes off worst; None where a part has no band. An
+        emergency link is closed by hand for minutes: what it would feed is no matter of selectivity.
+        """
+        worst: dict[tuple[str, str], tuple[Pair, float | None, float, str]] = {}
+        rows = zip(self.potentials, self.exposures, self.fault_levels, strict=True)
+        for potentials, study, levels in rows:
+            if not potentials.state.is_normal:
+                continue
+            for pair in device_pairs(self.boat, self.network, potentials, study):
+                upper, lower = (curve_of(self.boat, self.boat.devices[name]) for name in (pair.upper, pair.lower))
+                prospective_a = levels.largest_a(pair.post)
+                up_to_a = None
+                if upper.is_known and lower.is_known and prospective_a:
+                    up_to_a = selective_up_to_a(upper, lower, prospective_a)
+                row = (pair, up_to_a, prospective_a, self.state_words(potentials.state))
+                key = (pair.upper, pair.lower)
+                if key not in worst or _margin(row) < _margin(worst[key]) - 1e-9:
+                    worst[key] = row
+        return tuple(worst[key] for key in sorted(worst))
+
+    def is_behind_device(self, name: str) -> bool:
+        """Tell whether another device stands between a device and every bank, in every state."""
+        edge = self.network.edges_of[name][0]
+        return all(
+            math.isfinite(max(study.exposures[edge.index].at_a, study.exposures[edge.index].at_b))
+            for study in self.exposures
+            if edge.index in study.exposures
+        )
+
+    @cached_property
+    def sole_devices(self) -> dict[str, str]:
+        """Return each device that serves one load and nothing else, with that load."""
+        region = places(self.network, self.usual.state, (EdgeKind.DEVICE,))
+        found: dict[str, str] = {}
+        ends: dict[int, list[str]] = {}
+        for edge in self.network.edges:
+            if edge.kind is EdgeKind.DEVICE:
+                for post in (edge.a, edge.b):
+                    ends.setdefault(region[post], []).append(edge.part)
+        loads: dict[int, list[str]] = {}
+        for load in self.network.loads:
+            loads.setdefault(region[load.feed], []).append(load.device)
+        for place, devices in ends.items():
+            if len(devices) == 1 and len(loads.get(place, ())) == 1:
+                found[devices[0]] = loads[place][0]
+        return found
 
     @cached_property
     def bank_currents(self) -> tuple[BankCurrent, ...]:

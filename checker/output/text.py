@@ -194,24 +194,27 @@ class Block:
 
 def grouped(result: FleetResult, verdict: Verdict) -> list[Block]:
     """Return each fault once, with the hulls and option sets that it is on, worst first."""
-    on: dict[tuple[Outcome, Acceptance | None], list[str]] = {}
+    # Two hulls whose figures differ only beyond the printed digits have one fault to a reader.
+    on: dict[tuple[object, ...], tuple[Outcome, Acceptance | None, list[str]]] = {}
     for outcome in result.file_outcomes:
         if outcome.verdict is verdict:
-            on[(outcome, None)] = []
+            on[(outcome,)] = (outcome, None, [])
     for subject in result.subjects:
         for outcome in subject.news:
             if outcome.verdict is verdict:
                 acceptance = subject.accepted.get(fingerprint(outcome)) if verdict is Verdict.ACCEPTED else None
-                on.setdefault((outcome, acceptance), []).append(subject.id)
-    blocks: dict[tuple[object, ...], list[tuple[Outcome, Acceptance | None]]] = {}
-    for (outcome, acceptance), names in on.items():
+                told = measure_words(outcome) if outcome.measure else ""
+                key = (*same_fault(outcome), outcome.limit_set, outcome.fault, told, fingerprint(outcome), acceptance)
+                on.setdefault(key, (outcome, acceptance, []))[2].append(subject.id)
+    blocks: dict[tuple[object, ...], list[tuple[Outcome, Acceptance | None, list[str]]]] = {}
+    for outcome, acceptance, names in on.values():
         key = (*same_fault(outcome), *((outcome.fault,) if not outcome.limit_set else ()), tuple(names))
-        blocks.setdefault(key, []).append((outcome, acceptance))
+        blocks.setdefault(key, []).append((outcome, acceptance, names))
     found = [
         Block(
-            tuple(outcome for outcome, _ in rows),
-            ", ".join(on[rows[0]]),
-            {fingerprint(outcome): acceptance for outcome, acceptance in rows if acceptance},
+            tuple(outcome for outcome, _, _ in rows),
+            ", ".join(rows[0][2]),
+            {fingerprint(outcome): acceptance for outcome, acceptance, _ in rows if acceptance},
         )
         for rows in blocks.values()
     ]

@@ -138,7 +138,7 @@ def refused(folder: Path, file: str, old: str, new: str) -> str:
             "set.yaml",
             "[ignition]",
             "[ignition, material]",
-            "silent_on may name drop, insulation and ignition",
+            "silent_on may name drop, insulation, ignition and interrupting",
         ),
         ("set.yaml", "[ignition]", "[]", "voluntary-dc/ignition.yaml: the file cannot be read"),
     ],
