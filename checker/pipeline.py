@@ -21,6 +21,7 @@ from checker.finding import NOWHERE, Card, Level, Outcome, Verdict
 from checker.limits.formulas import resistivity_ohm_mm2_per_m, study_figures
 from checker.limits.limit_set import LimitSet, limit_set_ids, load_limit_set
 from checker.network.flow import Copper
+from checker.network.ladder import Rung
 from checker.network.studies import Coppers, Studies
 from checker.reading.cards import FILE_CARDS
 from checker.reading.document import Fault
@@ -44,6 +45,7 @@ class Studied:
     passes: tuple[Outcome, ...] = ()
     thin: int = 0
     sets: tuple[SetUse, ...] = ()
+    ladder: tuple[Rung, ...] = ()
     faults: tuple[Fault, ...] = ()
 
 
@@ -155,19 +157,24 @@ class _Bench:
             return Studied(faults=tuple(faults))
         sets = _judged_by(boat, self._adopted)
         limits = tuple(load_limit_set(use.id) for use in sets)
-        outcomes = run_checks(boat, limits, self._house)
+        studies = study_boat(boat)
+        outcomes = run_checks(studies, limits, self._house)
         passes = pass_order(outcomes)
         thin = sum(is_thin(outcome.measure) for outcome in passes)
-        return Studied(news_order(outcomes), passes, thin, sets)
+        return Studied(news_order(outcomes), passes, thin, sets, studies.ladder)
+
+
+def study_boat(boat: Boat) -> Studies:
+    """Return the studies of a boat, none of them made yet."""
+    figures = study_figures()
+    temperatures_c = (figures.flow_copper_c, figures.cold_copper_c, figures.hot_copper_c)
+    return Studies(boat, Coppers(*(Copper(resistivity_ohm_mm2_per_m(t)) for t in temperatures_c)))
 
 
 def run_checks(
-    boat: Boat, limits: tuple[LimitSet, ...], house: House, checks: Sequence[Check] = CHECKS
+    studies: Studies, limits: tuple[LimitSet, ...], house: House, checks: Sequence[Check] = CHECKS
 ) -> list[Outcome]:
     """Hold one boat against limit sets; checks that rest on none run once."""
-    figures = study_figures()
-    temperatures_c = (figures.flow_copper_c, figures.cold_copper_c, figures.hot_copper_c)
-    studies = Studies(boat, Coppers(*(Copper(resistivity_ohm_mm2_per_m(t)) for t in temperatures_c)))
     if not limits:
         return []
     first = Case(studies, limits[0], limits, house)
@@ -292,6 +299,7 @@ class _Gatherer:
                     own=news_order(own),
                     passes=study.passes,
                     thin=study.thin,
+                    ladder=study.ladder,
                     accepted=waived.accepted,
                 )
             )
@@ -300,7 +308,7 @@ class _Gatherer:
             tool_version=__version__,
             subjects=tuple(results),
             studies=tuple(
-                Study(names[0], study.news, study.passes, study.thin, study.sets)
+                Study(names[0], study.news, study.passes, study.thin, study.sets, study.ladder)
                 for key, names in alike.items()
                 for study in (self._studied[key],)
             ),

@@ -25,6 +25,8 @@ from checker.boat.hull import (
     Zone,
 )
 from checker.boat.parts import (
+    Band,
+    BandPoint,
     Battery,
     Bus,
     Cable,
@@ -45,7 +47,7 @@ from checker.network.graph import Edge, EdgeKind, Network
 from checker.network.potentials import Potentials, study_potentials
 from checker.network.states import SwitchState, study_states
 from checker.network.studies import Studies
-from checker.pipeline import run_checks
+from checker.pipeline import run_checks, study_boat
 from checker.reading.quantity import Dimension, read_number, read_size
 
 INCH_M = 0.0254
@@ -53,6 +55,15 @@ DRY = Zone(id="DRY", name="dry and cool", ambient_c=30.0)
 SINGLE = Cable(
     id="single-105", insulation_c=105.0, material="copper", is_stranded=True, is_insulated=True, is_sheathed=False
 )
+
+FAST = Band(
+    id="fast",
+    points=(
+        BandPoint(1.35, 1.0, math.inf), BandPoint(2.0, 0.2, 4.0), BandPoint(10.0, 0.01, 0.02),
+        BandPoint(100.0, 0.0001, 0.0002), BandPoint(1000.0, 0.000001, 0.000002),
+    ),
+)  # fmt: skip
+"""Each stretch falls steeply enough that a larger fuse of the same band outlasts a smaller one."""
 
 Piece = Device | Conductor | Joint | Shield | Circuit | SwitchRow | Condition | Engine | Zone | Way
 
@@ -69,7 +80,10 @@ def a_device(
 
 def a_battery(name: str, volts: float = 12.0, *, bank: str = "HOUSE", **more: Any) -> Device:
     """Place a lead-acid battery."""
-    part = Battery(id="bat", voltage_v=volts, capacity_ah=100.0, chemistry="flooded-lead")
+    part = Battery(
+        id="bat", voltage_v=volts, capacity_ah=100.0, chemistry="flooded-lead", emf_full_v=volts * 12.8 / 12,
+        emf_low_v=volts * 11.9 / 12, resistance_full_ohm=0.004, resistance_low_ohm=0.006,
+    )  # fmt: skip
     return a_device(name, part, bank=bank, **more)
 
 
@@ -84,8 +98,11 @@ def a_metal(name: str) -> Device:
 
 
 def a_fuse(name: str, rating_a: float, *, volts: float = 32.0, mount: Mapping[str, str] | None = None) -> Device:
-    """Place a fuse between its posts line and load."""
-    return a_device(name, Overcurrent(id="fuse", is_breaker=False, rating_a=rating_a, voltage_v=volts), mount=mount)
+    """Place a fuse between its posts line and load; it is fast, and breaks whatever can flow."""
+    part = Overcurrent(
+        id="fuse", is_breaker=False, rating_a=rating_a, voltage_v=volts, interrupting_a=50_000.0, band=FAST
+    )
+    return a_device(name, part, mount=mount)
 
 
 def a_switch(
@@ -255,7 +272,7 @@ def outcomes_of(
 ) -> list[Outcome]:
     """Hold a boat against one limit set; all checks unless some are named."""
     house = house or House(next_smaller_awg=True)
-    return run_checks(boat, (load_limit_set(limit_set),), house, checks or CHECKS)
+    return run_checks(study_boat(boat), (load_limit_set(limit_set),), house, checks or CHECKS)
 
 
 def found_in(boat: Boat, *checks: Check, **more: Any) -> list[tuple[str, str]]:

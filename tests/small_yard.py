@@ -51,7 +51,8 @@ parts:
     kind: breaker
     voltage: 32 V
     interrupting: 5 kA
-    band: slow
+    band: quick
+    polarised: true
     resistance: 10 mohm
     trip_free: true
     reset: manual
@@ -61,9 +62,9 @@ parts:
   engine-block: {kind: metal}
   sacrificial-anode: {kind: metal}
   starter: {kind: load, voltage: 12 V, current: 200 A, motor: true, feed_post: B, return_post: case}
-  regulator: {kind: load, voltage: 12 V, current: 0.1 A, feed_post: sense, return_post: gnd}
-  monitor-head: {kind: load, voltage: 12 V, current: 0.05 A}
-  plotter: {kind: load, voltage: 12 V, current: 1 A, max_device: 5 A}
+  regulator: {kind: load, voltage: 12 V, current: 0.1 A, standby: 5 mA, feed_post: sense, return_post: gnd}
+  monitor-head: {kind: load, voltage: 12 V, current: 0.05 A, standby: 0.05 A}
+  plotter: {kind: load, voltage: 12 V, current: 1 A, min_voltage: 10 V, max_device: 5 A}
   cabin-lights: {kind: load, voltage: 12 V, current: 3 A, max_device: 10 A}
   cooling-pump: {kind: load, voltage: 12 V, current: 8 A, max_device: 15 A, motor: true}
   bow-light: {kind: load, voltage: 12 V, current: 0.5 A, max_device: 5 A}
@@ -82,7 +83,18 @@ bands:
       - {multiple: 2, earliest: 5 s, latest: 100 s}
       - {multiple: 4, earliest: 0.2 s, latest: 1 s}
       - {multiple: 10, earliest: 0.02 s, latest: 0.05 s}
-      - {multiple: 100, earliest: 0.0005 s, latest: 0.002 s}
+      - {multiple: 100, earliest: 0.0005 s, latest: 0.001 s}
+      - {multiple: 300, earliest: 0.0001 s, latest: 0.0002 s}
+  quick:
+    engine_space_factor: 0.9
+    points:
+      - {multiple: 1.2, earliest: 60 s, latest: never}
+      - {multiple: 1.5, earliest: 1 s, latest: 30 s}
+      - {multiple: 2, earliest: 0.2 s, latest: 4 s}
+      - {multiple: 4, earliest: 0.02 s, latest: 0.2 s}
+      - {multiple: 10, earliest: 0.002 s, latest: 0.01 s}
+      - {multiple: 100, earliest: 0.0002 s, latest: 0.0005 s}
+      - {multiple: 300, earliest: 0.00005 s, latest: 0.0001 s}
 """
 
 CLASS_YAML = """\

@@ -139,6 +139,7 @@ def _add_device(shop: _Workshop, row: Entry) -> None:
         bank=row.text("bank"),
         measures=row.text("measures"),
         belongs_to=row.text("belongs_to"),
+        is_engine_mounted=row.flag("engine_mounted"),
         mounts=mounts,
         at=row.at(),
         at_rating=at_rating,
@@ -205,6 +206,7 @@ def _add_trunk(shop: _Workshop, row: Entry) -> None:
         current_a=row.needed_number("current", Dimension.CURRENT),
         conductors=tuple(sorted(row.fields("conductors"))),
         voltage_v=row.number("voltage", Dimension.VOLTAGE),
+        always_on=row.text("always_on"),
         at=row.at(),
         at_current=row.at("current"),
     )
@@ -249,6 +251,7 @@ def _add_branch(shop: _Workshop, row: Entry) -> None:
         voltage_v=row.number("voltage", Dimension.VOLTAGE),
         load=f"{row.id}.load",
         device=device,
+        always_on=row.text("always_on"),
         at=row.at(),
         at_current=row.at("current") if row.has("current") else row.at("load"),
     )
@@ -604,7 +607,7 @@ def _can_run(shop: _Workshop, key: str, name: str) -> bool:
         return True
     device = shop.devices.get(key)
     if device is not None:
-        return isinstance(device.part, (Load, Source))
+        return isinstance(device.part, (Load, Source) if name == "loads" else Source)
     owner, _, post = key.rpartition(".")
     device = shop.devices.get(owner)
     if device is None or not isinstance(device.part, Source):

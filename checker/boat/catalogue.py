@@ -14,6 +14,7 @@ from checker.boat.parts import (
     Battery,
     Bus,
     Cable,
+    Diode,
     Load,
     Metal,
     Overcurrent,
@@ -178,6 +179,31 @@ def _switch(entry: Entry) -> Part | None:
     )
 
 
+def _diode(entry: Entry) -> Part | None:
+    posts = entry.items("posts")
+    paths = [(str(pair[0]), str(pair[1])) for pair in entry.data.get("passes", ())]
+    for index, pair in enumerate(paths):
+        for post in (post for post in pair if post not in posts):
+            entry.unknown(f"post on {entry.id}", post, entry.at("passes", index), posts)
+    drop_v = entry.needed_number("drop", Dimension.VOLTAGE)
+    resistance_ohm = entry.needed_number("resistance", Dimension.RESISTANCE)
+    if drop_v is None or resistance_ohm is None:
+        return None
+    if not resistance_ohm:
+        entry.fault("bad-value", entry.at("resistance"), "a diode has some resistance", "e.g. `resistance: 2 mohm`")
+        return None
+    return Diode(
+        id=entry.id,
+        at=entry.at(),
+        posts=posts,
+        paths=tuple(sorted(paths)),
+        drop_v=drop_v,
+        resistance_ohm=resistance_ohm,
+        continuous_a=entry.number("continuous", Dimension.CURRENT),
+        ignition_protected=entry.flag("ignition_protected"),
+    )
+
+
 def _shunt(entry: Entry) -> Part | None:
     rating_a = entry.needed_number("rating", Dimension.CURRENT)
     if rating_a is None:
@@ -280,6 +306,7 @@ _READERS: dict[str, Callable[[Entry], Part | None]] = {
     "bus": _bus,
     "metal": _metal,
     "switch": _switch,
+    "diode": _diode,
     "shunt": _shunt,
     "load": _load,
     "source": _source,

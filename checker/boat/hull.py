@@ -48,6 +48,7 @@ class Device:
     bank: str = ""
     measures: str = ""
     belongs_to: str = ""
+    is_engine_mounted: bool = False
     circuit: str = ""
     mounts: tuple[tuple[str, str], ...] = ()
     at: Span = field(default=NOWHERE, compare=False, repr=False)
@@ -120,6 +121,7 @@ class Circuit:
     voltage_v: float | None = None
     load: str = ""
     device: str = ""
+    always_on: str = ""
     at: Span = field(default=NOWHERE, compare=False, repr=False)
     at_current: Span = field(default=NOWHERE, compare=False, repr=False)
 

@@ -113,6 +113,24 @@ class Switch:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Diode:
+    """Describe what conducts one way only: an isolator, a blocking diode, a one-way disconnect.
+
+    `paths` are (anode, cathode) pairs of its posts. A path that conducts drops `drop_v` and,
+    over that, its resistance times the current.
+    """
+
+    id: str
+    posts: tuple[str, ...]
+    paths: tuple[tuple[str, str], ...]
+    drop_v: float
+    resistance_ohm: float
+    continuous_a: float | None = None
+    ignition_protected: bool = False
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Shunt:
     """Describe a monitoring shunt: `bat` faces the bank, `sys` the boat; `vbat`, `aux` are sense posts."""
 
@@ -201,4 +219,4 @@ class Cable:
     posts: tuple[str, ...] = ()
 
 
-Part = Battery | Overcurrent | Bus | Metal | Switch | Shunt | Load | Source | Cable
+Part = Battery | Overcurrent | Bus | Metal | Switch | Diode | Shunt | Load | Source | Cable

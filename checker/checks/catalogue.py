@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from checker.checks.bank import alike_batteries, bank_links, even_shares, inner_landing, string_device
 from checker.checks.check import Check
 from checker.checks.claims import role_claim, unlisted_state
 from checker.checks.coordination import device_carries_load, rating_order, selectivity
@@ -25,6 +26,15 @@ from checker.checks.flows import (
     working_point,
 )
 from checker.checks.gauge import ampacity, conductor_material, insulation_rating, minimum_size, sheath_exit
+from checker.checks.losses import (
+    ahead_of_switch,
+    alternator_cut_off,
+    charger_cut_off,
+    diode_way,
+    lost_return,
+    pump_stays_live,
+    standby_days,
+)
 from checker.checks.nets import (
     bank_tap,
     battery_loop,
@@ -84,6 +94,18 @@ CHECKS: tuple[Check, ...] = (
     selectivity,
     rating_order,
     device_carries_load,
+    alike_batteries,
+    even_shares,
+    inner_landing,
+    bank_links,
+    string_device,
+    alternator_cut_off,
+    charger_cut_off,
+    diode_way,
+    ahead_of_switch,
+    pump_stays_live,
+    lost_return,
+    standby_days,
     shunt_bypass,
     shunt_direction,
     shunt_rating,

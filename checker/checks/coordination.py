@@ -7,7 +7,7 @@ from collections.abc import Iterator
 from checker.boat.hull import Device
 from checker.boat.parts import Load, Overcurrent
 from checker.checks.check import Case, Place, Told, check
-from checker.checks.words import ampere, plain
+from checker.checks.words import ampere, plain, seconds
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.limit_set import least_selectivity_ratio, start_s
 from checker.network.coordination import Pair, curve_of
@@ -129,15 +129,15 @@ def device_carries_load(case: Case) -> Iterator[Outcome]:
 
 def _judge_start(case: Case, device: Device, load: Load, peak_a: float) -> Outcome:
     curve = curve_of(case.boat, device)
-    seconds = curve.earliest_s(peak_a)
+    opens_s = curve.earliest_s(peak_a)
     told = Told(
         fault=f"{load.id} starts with {ampere(peak_a)}, {plain(peak_a / curve.rating_a)} times the rating: "
-        f"{device.id} may open after {plain(seconds)} s",
+        f"{device.id} may open after {seconds(opens_s)}",
         remedy="a slower device, or the next rating that the conductor allows",
         inputs=(("peak", ampere(peak_a)), ("device", _part(device).id)),
     )
     place = Place(f"{device.id} while {load.id} starts", device.at_rating, device.circuit)
-    measure = Measure("holding time", seconds, start_s(), "s", at_least=True, is_stepped=True)
+    measure = Measure("holding time", opens_s, start_s(), "s", at_least=True, is_stepped=True)
     return device_carries_load.judge(case, place, measure, lambda: told)
 
 

@@ -6,7 +6,7 @@ import re
 from collections.abc import Iterator
 
 from checker.boat.hull import Device
-from checker.boat.parts import Bus, Load, Overcurrent, Source, Switch
+from checker.boat.parts import Bus, Diode, Load, Overcurrent, Source, Switch
 from checker.checks.check import Case, Place, Told, check
 from checker.checks.words import ampere, plain
 from checker.finding import Basis, Level, Measure, Outcome
@@ -254,7 +254,7 @@ def ignition_protection(case: Case) -> Iterator[Outcome]:
         zone = case.boat.zones[device.zone]
         if not zone.has_petrol_vapour:
             continue
-        if not isinstance(device.part, (Load, Source, Switch, Overcurrent)):
+        if not isinstance(device.part, (Load, Source, Switch, Diode, Overcurrent)):
             continue
         place = Place(device.id, device.at, device.circuit)
         if device.part.ignition_protected:

@@ -9,7 +9,7 @@ from checker.boat.hull import Device
 from checker.boat.parts import Battery, Overcurrent
 from checker.checks.check import Case, Place, Told, check
 from checker.checks.feeding import Kind, feedings
-from checker.checks.words import ampere, plain
+from checker.checks.words import ampere, plain, seconds
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.formulas import adiabatic, adiabatic_k, study_figures
 from checker.network.coordination import curve_of, withstand_ratio
@@ -139,8 +139,8 @@ def far_end_clearing(case: Case) -> Iterator[Outcome]:
 
 def _judge_far(case: Case, device: Device, part: Overcurrent, far: FarEnd, place: Place, limit_s: float) -> Outcome:
     curve = curve_of(case.boat, device)
-    seconds = curve.latest_s(far.current_a)
-    within = "may never open" if math.isinf(seconds) else f"may take {plain(seconds)} s to open"
+    opens_s = curve.latest_s(far.current_a)
+    within = "may never open" if math.isinf(opens_s) else f"may take {seconds(opens_s)} to open"
     told = Told(
         fault=f"a short circuit at {far.post} draws {ampere(round(far.current_a, 1))}, "
         f"{plain(far.current_a / curve.rating_a)} times its rating: it {within}",
@@ -148,7 +148,7 @@ def _judge_far(case: Case, device: Device, part: Overcurrent, far: FarEnd, place
         path=(device.id, *far.conductors, far.post),
         inputs=(("far end", far.post), ("current", ampere(round(far.current_a, 1))), ("device", part.id)),
     )
-    measure = Measure("opening time", seconds, limit_s, "s")
+    measure = Measure("opening time", opens_s, limit_s, "s")
     note = f"{ampere(round(far.current_a))} at {far.post}"
     return far_end_clearing.judge(case, place, measure, lambda: told, note=note)
 

@@ -113,7 +113,7 @@ class _State:
         self._runs = unprotected_runs(case.studies.network, potentials, study, allowed, freed)
         # Pieces ahead of others: they are judged where their run ends.
         self._onward = {name for run in self._runs.values() if run.device for name in run.conductors[:-1]}
-        self._place = places(case.studies.network, potentials.state, HAS_LENGTH_OR_OPENS)
+        self._place = places(case.studies.network, potentials.state, HAS_LENGTH_OR_OPENS, over_diodes=True)
 
     def feeding(self, edge: Edge) -> Feeding:
         """Return how one conductor stands."""

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from checker.boat.hull import Circuit, Conductor
-from checker.boat.parts import Bus, Load, Overcurrent, Switch
+from checker.boat.parts import Bus, Diode, Load, Overcurrent, Switch
 from checker.checks.check import Case, Place, Told, at_conductor, check
 from checker.checks.drops import drop_limit, nominal_v
 from checker.checks.remedy import smallest_gauge, together
@@ -28,8 +28,7 @@ def _solved(case: Case) -> tuple[Solved, ...]:
 
 
 def _is_surge(solved: Solved) -> bool:
-    seconds = solved.operation.condition.short_time_s
-    return seconds is not None and seconds <= surge_s()
+    return not solved.lasts_beyond(surge_s())
 
 
 def _unknown(case: Case) -> str:
@@ -285,7 +284,8 @@ def minimum_voltage(case: Case) -> Iterator[Outcome]:
         if not isinstance(solved.low, Flow):
             continue
         for draw in solved.operation.draws:
-            owner = case.boat.circuits[draw.name].load if draw.name in case.boat.circuits else draw.name
+            circuit = case.boat.circuits.get(draw.name)
+            owner = circuit.load if circuit is not None and circuit.load else draw.name
             device = case.boat.devices.get(owner)
             if device is None or not isinstance(device.part, Load) or not draw.current_a:
                 continue
@@ -346,7 +346,7 @@ def _part_currents(case: Case, solved: Solved) -> Iterator[tuple[str, float]]:
     for flow in solved.flows():
         edges = case.studies.network.edges
         for index, current_a in flow.currents_a.items():
-            if edges[index].kind in (EdgeKind.CONTACT, EdgeKind.DEVICE):
+            if edges[index].kind in (EdgeKind.CONTACT, EdgeKind.DEVICE, EdgeKind.DIODE):
                 yield edges[index].part, abs(current_a)
         for device in case.boat.devices.values():
             if isinstance(device.part, Bus):
@@ -356,6 +356,8 @@ def _part_currents(case: Case, solved: Solved) -> Iterator[tuple[str, float]]:
 def _rating_a(part: object, is_surge: bool) -> float | None:
     if isinstance(part, Switch):
         return part.intermittent_a if is_surge else part.continuous_a
+    if isinstance(part, Diode):
+        return None if is_surge else part.continuous_a
     if is_surge or not isinstance(part, (Bus, Overcurrent)):
         return None
     return part.rating_a

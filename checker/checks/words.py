@@ -19,6 +19,15 @@ def plain(value: float) -> str:
     return "0" if text == "-0" else text
 
 
+def seconds(value_s: float) -> str:
+    """Print a time with two digits that count: 0.0042 s, 0.17 s, 12 s."""
+    if value_s == float("inf"):
+        return "for ever"
+    digits = 0 if value_s <= 0 else max(0, 1 - math.floor(math.log10(value_s)))
+    text = f"{value_s:.{digits}f}"
+    return f"{text.rstrip('0').rstrip('.') if '.' in text else text} s"
+
+
 def length(value_m: float, unit: str = "m") -> str:
     """Print a length in the yard's unit, with inches beside short ones."""
     if unit == "ft":
@@ -69,5 +78,7 @@ def _with_unit(value: float, unit: str, decimals: int) -> str:
         return "unlimited"
     if unit == "":
         return f"{value * 100:.{decimals}f} %"
+    if unit == "s" and value < 0.01:
+        return seconds(value)
     text = f"{value:.{decimals}f}"
     return f"{text.rstrip('0').rstrip('.') if decimals == 2 else text} {unit}"

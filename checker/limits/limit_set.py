@@ -66,6 +66,7 @@ __all__ = [
     "Rule",
     "SelfLimitingSource",
     "SizeExemptions",
+    "bank_figures",
     "least_selectivity_ratio",
     "limit_set_ids",
     "load_limit_set",
@@ -257,6 +258,56 @@ def start_s() -> float:
     table.expect(("citation", "start_s"))
     table.citation()
     return table.number("start_s")
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class BankFigures:
+    """Figures of common practice for banks and for what draws on them while the boat is left."""
+
+    most_uneven_fraction: float
+    strings_without_device: int
+    least_days: float
+    usable_fraction: float
+
+
+@cache
+def bank_figures() -> BankFigures:
+    """Return the figures for banks."""
+    table = common_table("bank")
+    table.expect(("citation", "most_uneven_percent", "strings_without_device", "least_days", "usable_percent"))
+    table.citation()
+    return BankFigures(
+        most_uneven_fraction=table.number("most_uneven_percent") / 100,
+        strings_without_device=table.count("strings_without_device"),
+        least_days=table.number("least_days"),
+        usable_fraction=table.number("usable_percent") / 100,
+    )
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class AlwaysOnRule:
+    """What may stay live with all battery switches off, what must, and the figures of the loss studies."""
+
+    services: tuple[str, ...]
+    must_stay_live: tuple[str, ...]
+    heavy_return_a: float
+    shield_a: float
+
+
+@cache
+def always_on_rule() -> AlwaysOnRule:
+    """Return the rule for what stays live."""
+    table = common_table("always_on")
+    names = ("services", "must_stay_live", "heavy_return_a", "shield_a")
+    table.expect(("citation", *names), ("figures",))
+    table.citation()
+    table.figure_citations(names)
+    return AlwaysOnRule(
+        services=table.names("services"),
+        must_stay_live=table.names("must_stay_live"),
+        heavy_return_a=table.number("heavy_return_a"),
+        shield_a=table.number("shield_a"),
+    )
 
 
 @cache

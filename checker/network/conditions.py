@@ -76,7 +76,7 @@ def condition_state(boat: Boat, condition: Condition) -> SwitchState:
 
 
 def _draw(boat: Boat, network: Network, name: str, current_a: float) -> Draw:
-    owner = boat.circuits[name].load if name in boat.circuits else name
+    owner = (boat.circuits[name].load or name) if name in boat.circuits else name
     device = boat.devices.get(owner)
     if device is not None and isinstance(device.part, Load):
         part = device.part

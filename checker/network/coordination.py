@@ -84,7 +84,7 @@ def device_pairs(boat: Boat, network: Network, potentials: Potentials, study: Ex
         if edge.kind is not EdgeKind.DEVICE:
             continue
         for near, far, arriving in ((edge.a, edge.b, exposure.at_a), (edge.b, edge.a, exposure.at_b)):
-            if not arriving:
+            if not arriving or math.isinf(arriving):  # what a battery feeds directly stands under no device
                 continue
             for name, _ in study.terms(edge, near):
                 if name in boat.devices and isinstance(boat.devices[name].part, Overcurrent):

@@ -2,7 +2,7 @@
 
 With the loads' and sources' currents given, Kirchhoff's current law fixes the current of a
 bank that is alone on its island of ungrounded nets, without solving a network. Where two
-banks share an island, each is bounded by the sum of both.
+banks share an island, or diodes lead to several, each is bounded by the sum of both.
 """
 
 from __future__ import annotations
@@ -13,6 +13,7 @@ from dataclasses import dataclass
 from checker.network.conditions import Operation
 from checker.network.graph import Network
 from checker.network.potentials import Potentials, study_potentials
+from checker.network.states import leading_to, places_beyond
 
 
 @dataclass(frozen=True, slots=True)
@@ -41,11 +42,11 @@ def bank_currents(network: Network, operations: Sequence[Operation]) -> tuple[Ba
 def _in_condition(network: Network, operation: Operation, potentials: Potentials) -> list[BankCurrent]:
     drawn: dict[int, float] = {}
     for draw in operation.draws:
-        net = potentials.net[draw.feed]
-        drawn[net] = drawn.get(net, 0.0) + draw.current_a
+        for net in _behind(network, potentials, potentials.net[draw.feed]):
+            drawn[net] = drawn.get(net, 0.0) + draw.current_a
     for feed in operation.feeds:
-        net = potentials.net[feed.out]
-        drawn[net] = drawn.get(net, 0.0) - feed.current_a
+        for net in places_beyond(network, potentials.net, [potentials.net[feed.out]]):
+            drawn[net] = drawn.get(net, 0.0) - feed.current_a
     tops: dict[int, set[str]] = {}
     for bank, net in _bank_nets(network, potentials):
         tops.setdefault(net, set()).add(bank)
@@ -55,6 +56,12 @@ def _in_condition(network: Network, operation: Operation, potentials: Potentials
         for net, banks in sorted(tops.items())
         for bank in sorted(banks)
     ]
+
+
+def _behind(network: Network, potentials: Potentials, net: int) -> set[int]:
+    """Return a net and those that feed it through diodes; which of them does is not asked, so each is bounded."""
+    diodes = leading_to(network, potentials.net, [net])
+    return {net} | {potentials.net[network.edges[index].a] for index in diodes}
 
 
 def _bank_nets(network: Network, potentials: Potentials) -> list[tuple[str, int]]:

@@ -9,6 +9,7 @@ from __future__ import annotations
 
 import heapq
 from collections.abc import Iterable, Sequence
+from functools import cached_property
 
 
 class NotGroundedError(ValueError):
@@ -30,17 +31,18 @@ class Factor:
     def __init__(self, size: int, links: Iterable[tuple[int, int, float]], grounded: Iterable[int]) -> None:
         self._size = size
         self._grounded = frozenset(grounded)
-        diagonal = [0.0] * size
+        leak = [0.0] * size  # conductance of each place to the ground
         beside: list[dict[int, float]] = [{} for _ in range(size)]
         for a, b, conductance in links:
             if a == b:
                 continue
-            diagonal[a] += conductance
-            diagonal[b] += conductance
             if a not in self._grounded and b not in self._grounded:
                 beside[a][b] = beside[a].get(b, 0.0) - conductance
                 beside[b][a] = beside[b].get(a, 0.0) - conductance
-        self._steps = _eliminate(diagonal, beside, self._grounded)
+            else:
+                leak[a] += conductance
+                leak[b] += conductance
+        self._steps = _eliminate(leak, beside, self._grounded)
 
     def solve(self, injected_a: Sequence[float]) -> list[float]:
         """Return the voltages that injected currents make, V; both of shape (places,)."""
@@ -58,6 +60,49 @@ class Factor:
                 value -= share * x[far]
             x[node] = value
         return x
+
+    def solve_at(self, injected_a: dict[int, float], wanted: Iterable[int]) -> dict[int, float]:
+        """Return the voltages at some places only, for currents injected at a few, V.
+
+        A place's voltage needs those of the places it was still joined to when it was
+        eliminated, and theirs in turn: a short chain in a network that is nearly a tree.
+        """
+        rank = self._rank
+        values = {node: amps for node, amps in injected_a.items() if node in rank}
+        waiting = [rank[node] for node in values]
+        heapq.heapify(waiting)
+        done: set[int] = set()
+        while waiting:
+            step = heapq.heappop(waiting)
+            if step in done:
+                continue
+            done.add(step)
+            node, _, links = self._steps[step]
+            for far, share in links:
+                values[far] = values.get(far, 0.0) - share * values[node]
+                heapq.heappush(waiting, rank[far])
+        found: dict[int, float] = {}
+        for goal in wanted:
+            chain = [goal]
+            while chain:
+                node = chain[-1]
+                if node in found or node not in rank:
+                    found.setdefault(node, 0.0)
+                    chain.pop()
+                    continue
+                _, pivot, links = self._steps[rank[node]]
+                missing = [far for far, _ in links if far not in found]
+                if missing:
+                    chain += missing
+                    continue
+                found[node] = values.get(node, 0.0) / pivot - sum(share * found[far] for far, share in links)
+                chain.pop()
+        return found
+
+    @cached_property
+    def _rank(self) -> dict[int, int]:
+        """Return the step at which each place was eliminated."""
+        return {node: step for step, (node, _, _) in enumerate(self._steps)}
 
     def own_resistance(self) -> list[float]:
         """Return the resistance from each place to the ground, ohm, shape (places,).
@@ -82,11 +127,16 @@ def _pair(a: int, b: int) -> tuple[int, int]:
 
 
 def _eliminate(
-    diagonal: list[float], beside: list[dict[int, float]], grounded: frozenset[int]
+    leak: list[float], beside: list[dict[int, float]], grounded: frozenset[int]
 ) -> list[tuple[int, float, tuple[tuple[int, float], ...]]]:
-    """Eliminate the places, fewest neighbours first; return each with its pivot and its shares."""
+    """Eliminate the places, fewest neighbours first; return each with its pivot and its shares.
+
+    A pivot is reckoned as the sum of what leads away from its place, never as a difference: no
+    digit is lost, and a place without a ground ends with a pivot of exactly 0.
+    """
     steps: list[tuple[int, float, tuple[tuple[int, float], ...]]] = []
-    waiting = [(len(beside[node]), node) for node in range(len(beside)) if node not in grounded and diagonal[node]]
+    joined = [node for node in range(len(beside)) if node not in grounded and (leak[node] or beside[node])]
+    waiting = [(len(beside[node]), node) for node in joined]
     heapq.heapify(waiting)
     done = [False] * len(beside)
     while waiting:
@@ -94,10 +144,9 @@ def _eliminate(
         if done[node] or degree != len(beside[node]):
             continue
         done[node] = True
-        pivot = diagonal[node]
         links = sorted(beside[node].items())
-        total = sum(abs(value) for _, value in links)
-        if pivot <= 1e-14 * max(total, 1e-300):
+        pivot = leak[node] - sum(value for _, value in links)
+        if not pivot:
             raise NotGroundedError(f"place {node} is joined to no ground")
         shares = tuple((far, value / pivot) for far, value in links)
         steps.append((node, pivot, shares))
@@ -105,7 +154,7 @@ def _eliminate(
             row = beside[far]
             del row[node]
             value = links[position][1]
-            diagonal[far] -= share * value
+            leak[far] -= share * leak[node]
             for other, other_share in shares[position + 1 :]:
                 fill = row.get(other, 0.0) - other_share * value
                 row[other] = fill

@@ -13,6 +13,7 @@ up and one down give all ends. A true maximum flow runs only inside blocks that 
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 from dataclasses import dataclass, field
 from typing import Any
 
@@ -77,6 +78,8 @@ class ExposureStudy:
         return found
 
     def _beyond(self, edge: Edge, far: int) -> float:
+        if edge.kind is EdgeKind.DIODE and far == edge.b:
+            return 0.0
         exposure = self.exposures[edge.index]
         return exposure.at_a if far == edge.a else exposure.at_b
 
@@ -84,7 +87,8 @@ class ExposureStudy:
 def study_exposure(network: Network, potentials: Potentials, edges: list[int] | None = None) -> ExposureStudy:
     """Find what can reach both ends of every live ungrounded edge in the state of the potentials."""
     live = live_edges(network, potentials.state) if edges is None else edges
-    ungrounded = [i for i in live if not potentials.is_return(network.edges[i].a)]
+    passing = [*live, *(edge.index for edge in network.diodes)]
+    ungrounded = [i for i in passing if not potentials.is_return(network.edges[i].a)]
     names: dict[int, list[tuple[str, float]]] = {}
     supply = [0.0] * len(network.posts)
     for battery in network.batteries:
@@ -213,7 +217,8 @@ class _Sweep:
         """Work out what leaves a block over a bridge."""
         near = edge.a if self._block[edge.a] == root else edge.b
         far = edge.other(near)
-        self._coming[(edge.index, far)] = min(edge.rating_a, self._arriving(edge, near))
+        blocks = edge.kind is EdgeKind.DIODE and near == edge.b
+        self._coming[(edge.index, far)] = 0.0 if blocks else min(edge.rating_a, self._arriving(edge, near))
 
     def _arriving(self, edge: Edge, node: int) -> float:
         """Return what reaches the end of a bridge at a node, the bridge taken out."""
@@ -239,20 +244,31 @@ class _Sweep:
             for edge in self._at[node]
             if edge.a == node and edge.index not in self._bridges and edge.index != without and edge.a != edge.b
         ]
+
+        def is_free(edge: Edge) -> bool:
+            return math.isinf(edge.rating_a) and edge.kind is not EdgeKind.DIODE
+
         # Unlimited edges make their posts one; only where devices stand inside a loop is there more to do.
-        place = groups(len(self._network.posts), ((e.a, e.b) for e in inside if math.isinf(e.rating_a)))
+        place = groups(len(self._network.posts), ((e.a, e.b) for e in inside if is_free(e)))
         feeds: dict[int, float] = {}
         for node, amount in given.items():
             feeds[place[node]] = feeds.get(place[node], 0.0) + amount
         limited = [(place[e.a], place[e.b], e.rating_a) for e in inside if math.isfinite(e.rating_a)]
-        return max_flow(feeds, limited, place[sink])
+        one_way = [(place[e.a], place[e.b]) for e in inside if e.kind is EdgeKind.DIODE]
+        return max_flow(feeds, limited, place[sink], one_way)
 
 
-def max_flow(feeds: dict[int, float], limits: list[tuple[int, int, float]], sink: int) -> float:
-    """Return the most that can reach a node from the feeds through limits that pass either way."""
+def max_flow(
+    feeds: dict[int, float],
+    limits: list[tuple[int, int, float]],
+    sink: int,
+    one_way: Sequence[tuple[int, int]] = (),
+) -> float:
+    """Return the most that can reach a node from the feeds, through limits that pass either way and through diodes."""
     own = feeds.get(sink, 0.0)
     limits = [limit for limit in limits if limit[0] != limit[1]]
-    if math.isinf(own) or not limits or not any(amount for node, amount in feeds.items() if node != sink):
+    one_way = [pair for pair in one_way if pair[0] != pair[1]]
+    if math.isinf(own) or not (limits or one_way) or not any(amount for node, amount in feeds.items() if node != sink):
         return own
     import networkx as nx  # 0.1 s to load, and few boats have a loop with a device in it
 
@@ -264,6 +280,12 @@ def max_flow(feeds: dict[int, float], limits: list[tuple[int, int, float]], sink
         for start, end in ((a, b), (b, a)):
             before = graph.edges[start, end]["capacity"] if graph.has_edge(start, end) else 0.0
             graph.add_edge(start, end, capacity=before + limit)
+    for start, end in one_way:
+        graph.add_edge(start, end)
+        graph.edges[start, end].pop("capacity", None)  # an edge without one is unlimited
     if sink not in graph or "sources" not in graph:
         return own
-    return own + float(nx.maximum_flow_value(graph, "sources", sink))
+    try:
+        return own + float(nx.maximum_flow_value(graph, "sources", sink))
+    except nx.NetworkXUnbounded:  # a battery reaches it through diodes alone
+        return math.inf

@@ -28,25 +28,35 @@ class FaultLevels:
         self._grid = grid
         self._potentials = potentials
         network = grid.network
-        own = grid.factor.own_resistance()
-        rest = grid.at_rest_v
         self._level = [0.0] * len(network.posts)
         self._bottom = [""] * len(network.posts)
+        asked: dict[int, tuple[Grid, list[int]]] = {}
+        for post in range(len(network.posts)):
+            if not potentials.returns[post]:
+                feeding = grid.feeding(post)
+                asked.setdefault(id(feeding), (feeding, []))[1].append(post)
+        for feeding, posts in asked.values():
+            self._find(feeding, posts)
+        self._charging = self._charging_by_net()
+
+    def _find(self, grid: Grid, posts: list[int]) -> None:
+        network, potentials = grid.network, self._potentials
+        own = grid.factor.own_resistance()
+        rest = grid.at_rest_v
         for tie in _bottoms(grid, potentials):
             ground = grid.place[tie.neg]
             unit = [0.0] * len(network.posts)
             unit[ground] = 1.0
             column = grid.factor.solve(unit)
-            for post in range(len(network.posts)):
+            for post in posts:
                 place = grid.place[post]
-                if potentials.returns[post] or grid.island[place] != grid.island[ground]:
+                if grid.island[place] != grid.island[ground]:
                     continue
                 ohm = own[place] + own[ground] - 2 * column[place]
                 volts = abs(rest[place] - rest[ground])
                 if ohm > 0 and volts / ohm > self._level[post]:
                     self._level[post] = volts / ohm
                     self._bottom[post] = network.posts[tie.neg]
-        self._charging = self._charging_by_net()
 
     def _charging_by_net(self) -> dict[int, float]:
         total: dict[int, float] = {}
@@ -100,7 +110,7 @@ class FarEnd:
 def far_ends(grid: Grid, potentials: Potentials) -> dict[str, FarEnd]:
     """Return for each device the far end at which a fault draws least through it: hot copper, low batteries."""
     network = grid.network
-    live = [e for e in grid.edges if not potentials.returns[e.a]]
+    live = [e for e in (*grid.edges, *network.diodes) if not potentials.returns[e.a]]
     at = neighbours(network, [e.index for e in live])
     backs = {load.feed: load.back for load in network.loads} | {s.out: s.back for s in network.sources}
     worst: dict[str, FarEnd] = {}
@@ -109,7 +119,7 @@ def far_ends(grid: Grid, potentials: Potentials) -> dict[str, FarEnd]:
             continue
         for end, conductors in _stretch(network, at, edge):
             back = backs.get(end, network.reference)
-            current_a = _through(grid, edge, end, back)
+            current_a = _through(grid.feeding(end), edge, end, back)
             known = worst.get(edge.part)
             if current_a > 0 and (known is None or current_a < known.current_a):
                 worst[edge.part] = FarEnd(edge.part, network.posts[end], current_a, potentials.state, conductors)
@@ -128,7 +138,7 @@ def _stretch(network: Network, at: Neighbours, device: Edge) -> list[tuple[int, 
     terminals = {load.feed for load in network.loads} | {source.out for source in network.sources}
     while waiting:
         node, conductors = waiting.pop()
-        onward = [e for e in at[node] if e.kind not in OPENING and e.other(node) not in seen]
+        onward = [e for e in at[node] if e.kind not in OPENING and _leads_on(e, node) and e.other(node) not in seen]
         leaves = any(e.kind in OPENING and e.index != device.index for e in at[node])
         if conductors and (node in terminals or leaves or not onward):
             ends.append((node, conductors))
@@ -140,15 +150,18 @@ def _stretch(network: Network, at: Neighbours, device: Edge) -> list[tuple[int, 
     return ends
 
 
+def _leads_on(edge: Edge, node: int) -> bool:
+    """Tell whether current passes an edge from one of its posts."""
+    return edge.kind is not EdgeKind.DIODE or node == edge.a
+
+
 def _through(grid: Grid, device: Edge, end: int, back: int) -> float:
     """Return the current through a device for a fault between two posts, 0 where no battery feeds it."""
     place = grid.place
     if grid.island[place[end]] != grid.island[place[back]] or place[end] == place[back]:
         return 0.0
-    unit = [0.0] * len(place)
-    unit[place[end]] += 1.0
-    unit[place[back]] -= 1.0
-    answer = grid.factor.solve(unit)
+    needed = [place[end], place[back], place[device.a], place[device.b]]
+    answer = grid.factor.solve_at({place[end]: 1.0, place[back]: -1.0}, needed)
     ohm = answer[place[end]] - answer[place[back]]
     rest = grid.at_rest_v
     volts = rest[place[end]] - rest[place[back]]

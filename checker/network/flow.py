@@ -13,16 +13,17 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 
 from checker.network.conditions import CONSTANT_CURRENT, CONSTANT_POWER, RESISTIVE, Draw, Feed
 from checker.network.elimination import Factor
 from checker.network.graph import BatteryTie, Cell, Edge, LoadTie, Network
-from checker.network.states import SwitchState, live_edges
+from checker.network.states import SwitchState, leading_to, live_edges, places
 from checker.network.walk import groups
 
 MOST_STEPS = 60
+MOST_TURNS = 200
 SETTLED_V = 1e-10
 
 
@@ -55,10 +56,20 @@ class Grid:
         is_full: bool,
         without: frozenset[int] = frozenset(),
         without_batteries: frozenset[str] = frozenset(),
+        conducting: frozenset[int] = frozenset(),
     ) -> None:
         self.network = network
         self.state = state
-        self._edges = [network.edges[i] for i in live_edges(network, state) if i not in without]
+        self._with_diodes: dict[frozenset[int], Grid] = {conducting: self}
+
+        def sibling(conducting: frozenset[int]) -> Grid:
+            return Grid(network, state, copper, is_full=is_full, without=without,
+                        without_batteries=without_batteries, conducting=conducting)  # fmt: skip
+
+        self._sibling = sibling
+        self._diodes = [edge for edge in network.diodes if edge.index not in without]
+        self._on = [edge for edge in self._diodes if edge.index in conducting]
+        self._edges = [network.edges[i] for i in live_edges(network, state) if i not in without] + self._on
         self._ohm = {edge.index: copper.resistance_ohm(edge) for edge in self._edges}
         free = ((e.a, e.b) for e in self._edges if self._ohm[e.index] == 0)
         self.place = groups(len(network.posts), free)
@@ -107,14 +118,15 @@ class Grid:
         An array feeds the input of its controller: that input draws what the array gives,
         where the condition does not name it. Also returns the islands that such inputs hold.
         """
-        drawing = [d for d in draws if self.island[self.place[d.feed]] in self._powered]
+        drawing = [d for d in draws if self._is_fed(d)]
         feeding: list[Feed] = []
         taken: dict[int, float] = {}
         for feed in feeds:
             island = self.island[self.place[feed.out]]
-            if island in self._powered:
+            back = self.island[self.place[feed.back]]
+            if island in self._powered and back == island:  # else its current has no way back
                 feeding.append(feed)
-            elif island in self._inputs:
+            elif island in self._inputs and back == self.island[self.place[self._inputs[island].back]]:
                 feeding.append(feed)
                 taken[island] = taken.get(island, 0.0) + feed.current_a
         for island, current_a in sorted(taken.items()):
@@ -122,6 +134,11 @@ class Grid:
             name = f"{tie.device} input"
             drawing.append(Draw(name, tie.feed, tie.back, current_a, tie.voltage_v, CONSTANT_CURRENT))
         return drawing, feeding, frozenset(taken)
+
+    def _is_fed(self, draw: Draw) -> bool:
+        """Tell whether a battery can feed a load and take its current back."""
+        feed, back = self.island[self.place[draw.feed]], self.island[self.place[draw.back]]
+        return feed == back and feed in self._powered
 
     @cached_property
     def free_trees(self) -> list[list[tuple[Edge, int]]]:
@@ -160,10 +177,65 @@ class Grid:
             current_a = cell.emf_v / cell.resistance_ohm
             injected[self.place[battery.pos]] += current_a
             injected[self.place[battery.neg]] -= current_a
+        for diode in self._on:
+            current_a = diode.drop_v / self._ohm[diode.index]
+            injected[self.place[diode.a]] += current_a
+            injected[self.place[diode.b]] -= current_a
         return injected
 
+    def conducting(self, diodes: frozenset[int]) -> Grid:
+        """Return the same network with some diodes conducting and the others blocking."""
+        if diodes not in self._with_diodes:
+            self._with_diodes[diodes] = self._sibling(diodes)
+        return self._with_diodes[diodes]
+
+    def feeding(self, post: int) -> Grid:
+        """Return the same network with the diodes conducting that lead to a post, as in a fault there."""
+        if not self._diodes:
+            return self
+        reach = places(self.network, self.state, ())
+        return self.conducting(leading_to(self.network, reach, [reach[post]]))
+
     def solve(self, draws: Sequence[Draw], feeds: Sequence[Feed]) -> Flow | NoOperatingPoint:
-        """Solve one condition."""
+        """Solve one condition; each diode is found to conduct or to block, and agrees with the answer.
+
+        One diode is turned at a time, the first that disagrees: Murty's least-index method,
+        which ends for resistances in series with diodes (K. G. Murty, Math. Programming 7, 1974).
+        Which conduct is first found with every load at its given current.
+        """
+        if not self._diodes:
+            return self._solved(draws, feeds)
+        plain = [replace(draw, model=CONSTANT_CURRENT) for draw in draws]
+        on = frozenset(edge.index for edge in self._diodes)
+        answer: Flow | NoOperatingPoint = NoOperatingPoint(self.state.id, ())
+        for loads in (plain, draws):
+            for _ in range(MOST_TURNS):
+                grid = self.conducting(on)
+                answer = grid._solved(loads, feeds)
+                turned = grid._disagreeing(answer, feeds) if isinstance(answer, Flow) else None
+                if turned is None:
+                    break
+                on ^= {turned}
+            else:
+                return NoOperatingPoint(self.state.id, ())
+        return answer
+
+    def _disagreeing(self, flow: Flow, feeds: Sequence[Feed]) -> int | None:
+        """Return the first diode that conducts backward, or blocks what would flow forward."""
+        stranded = {self.island[self.place[feed.out]] for feed in feeds} - self._powered - set(self._inputs)
+        on = {edge.index for edge in self._on}
+        for edge in self._diodes:
+            above_v = flow.across(edge.a, edge.b) - edge.drop_v
+            if edge.index in on:
+                if above_v < -SETTLED_V:
+                    return edge.index
+            elif self.place[edge.a] != self.place[edge.b]:
+                is_alone = self.island[self.place[edge.a]] not in self._powered
+                if self.island[self.place[edge.a]] in stranded or (not is_alone and above_v > SETTLED_V):
+                    return edge.index
+        return None
+
+    def _solved(self, draws: Sequence[Draw], feeds: Sequence[Feed]) -> Flow | NoOperatingPoint:
         draws, feeds, held = self._possible(draws, feeds)
         injected = self._battery_currents()
         for feed in feeds:
@@ -208,6 +280,9 @@ class Grid:
             impedance.append(_across(self.factor.solve(unit), ports))
         volts = list(open_v)
         for _ in range(MOST_STEPS):
+            # Below half its nominal voltage a load of constant power is past the knee of its curve.
+            if any(not v > 0.5 * d.nominal_v for v, d in zip(volts, draws, strict=True) if d.model == CONSTANT_POWER):
+                break
             bent = [_current(draw, v) for draw, v in zip(draws, volts, strict=True)]
             lost = [sum(z * current for z, (current, _) in zip(row, bent, strict=True)) for row in impedance]
             wrong = [v - o + drop for v, o, drop in zip(volts, open_v, lost, strict=True)]
@@ -221,9 +296,6 @@ class Grid:
             if step is None:
                 break
             volts = [v - s for v, s in zip(volts, step, strict=True)]
-            # Below half its nominal voltage a load of constant power is past the knee of its curve.
-            if any(not v > 0.5 * d.nominal_v for v, d in zip(volts, draws, strict=True) if d.model == CONSTANT_POWER):
-                break
         return NoOperatingPoint(self.state.id, tuple(draw.name for draw in draws if draw.model == CONSTANT_POWER))
 
     def ohm(self, edge: Edge) -> float:
@@ -308,7 +380,8 @@ class Flow:
         """
         volts, place = self.volts, self.grid.place
         known = {
-            edge.index: (volts[place[edge.a]] - volts[place[edge.b]]) * siemens for edge, siemens in self.grid.resistive
+            edge.index: (volts[place[edge.a]] - volts[place[edge.b]] - edge.drop_v) * siemens
+            for edge, siemens in self.grid.resistive
         }
         return known | self._free_currents(known)
 
@@ -337,16 +410,22 @@ class Flow:
 
     def through_place(self, post: int) -> float:
         """Return the current that flows through the place of a post: all that flows in, A."""
-        place, posts = self.grid.place[post], self.grid.place
-        flows = [self.given_a[p] for p in range(len(posts)) if posts[p] == place]
+        return self._through[self.grid.place[post]]
+
+    @cached_property
+    def _through(self) -> list[float]:
+        """Return what flows into each place, A, shape (posts,) by place."""
+        inward = [0.0] * len(self.volts)
+        place = self.grid.place
+        for post, given in enumerate(self.given_a):
+            if given > 0:
+                inward[place[post]] += given
+        currents = self.currents_a
         for edge, _ in self.grid.resistive:
-            if posts[edge.a] == posts[edge.b]:
-                continue
-            if posts[edge.b] == place:
-                flows.append(self.currents_a[edge.index])
-            elif posts[edge.a] == place:
-                flows.append(-self.currents_a[edge.index])
-        return sum(flow for flow in flows if flow > 0)
+            current, a, b = currents[edge.index], place[edge.a], place[edge.b]
+            if a != b:
+                inward[b if current > 0 else a] += abs(current)
+        return inward
 
     def _free_currents(self, known: dict[int, float]) -> dict[int, float]:
         """Find the currents of edges without resistance by Kirchhoff's current law, tree by tree."""

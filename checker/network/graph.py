@@ -10,13 +10,14 @@ from __future__ import annotations
 
 import itertools
 import math
+from collections.abc import Iterator
 from dataclasses import dataclass
 from enum import Enum
 from functools import cached_property
 from typing import Any
 
 from checker.boat.hull import Boat
-from checker.boat.parts import Battery, Load, Overcurrent, Shunt, Source, Switch
+from checker.boat.parts import Battery, Diode, Load, Overcurrent, Part, Shunt, Source, Switch
 
 
 class EdgeKind(Enum):
@@ -29,6 +30,7 @@ class EdgeKind(Enum):
     SHUNT = "shunt"
     JOINT = "joint"
     SHIELD = "shield"
+    DIODE = "diode"
 
 
 @dataclass(frozen=True, slots=True)
@@ -36,7 +38,7 @@ class Edge:
     """Join two nodes. `rating_a` limits what passes: an overcurrent device's rating, else infinite.
 
     A conductor has a length and a copper area; whatever else joins has a resistance of its own,
-    0 where none is given.
+    0 where none is given. A diode passes current from its a to its b alone, and drops `drop_v` on top.
     """
 
     index: int
@@ -48,6 +50,7 @@ class Edge:
     length_m: float = 0.0
     area_mm2: float = 0.0
     resistance_ohm: float = 0.0
+    drop_v: float = 0.0
 
     def other(self, node: int) -> int:
         """Return the far node."""
@@ -118,6 +121,11 @@ class Network:
         return {post: number for number, post in enumerate(self.posts)}
 
     @cached_property
+    def diodes(self) -> tuple[Edge, ...]:
+        """Return the edges that conduct one way only; no switch state holds them."""
+        return tuple(edge for edge in self.edges if edge.kind is EdgeKind.DIODE)
+
+    @cached_property
     def memo(self) -> dict[Any, Any]:
         """Return what several studies of this graph reckon once, keyed by the reckoning and its state."""
         return {}
@@ -148,18 +156,9 @@ def build_network(boat: Boat) -> Network:
         facts = {"length_m": conductor.length_m, "area_mm2": conductor.size.area_mm2}
         join(kind, conductor.start, conductor.end, conductor.id, **facts)
     for device in boat.devices.values():
-        name, part = device.id, device.part
-        if isinstance(part, Overcurrent):
-            ends = f"{name}.line", f"{name}.load"
-            join(EdgeKind.DEVICE, *ends, name, part.resistance_ohm, rating_a=part.rating_a)
-        elif isinstance(part, Switch):
-            for a, b in sorted({pair for _, pairs in part.states for pair in pairs}):
-                join(EdgeKind.CONTACT, f"{name}.{a}", f"{name}.{b}", name, part.contact_ohm)
-        elif isinstance(part, Shunt):
-            join(EdgeKind.SHUNT, f"{name}.bat", f"{name}.sys", name, part.resistance_ohm)
-        elif isinstance(part, Source):
-            for a, b, ohm in part.joined:
-                join(EdgeKind.JOINT, f"{name}.{a}", f"{name}.{b}", name, ohm)
+        name = device.id
+        for kind, a, b, ohm, more in _inside(device.part):
+            join(kind, f"{name}.{a}", f"{name}.{b}", name, ohm, **more)
         for own, other in device.mounts:
             join(EdgeKind.JOINT, f"{name}.{own}" if own else name, other, name)
     for joint in boat.joints:
@@ -169,6 +168,23 @@ def build_network(boat: Boat) -> Network:
         for a, b in itertools.pairwise(joins):
             join(EdgeKind.SHIELD, a, b, shield.id)
     return Network(tuple(posts), tuple(edges), *_ties(boat, index), index[boat.reference])
+
+
+def _inside(part: Part) -> Iterator[tuple[EdgeKind, str, str, float | None, dict[str, float]]]:
+    """Yield what joins the posts of a part: kind, two posts, resistance, and what else its edge has."""
+    if isinstance(part, Overcurrent):
+        yield EdgeKind.DEVICE, "line", "load", part.resistance_ohm, {"rating_a": part.rating_a}
+    elif isinstance(part, Switch):
+        for a, b in sorted({pair for _, pairs in part.states for pair in pairs}):
+            yield EdgeKind.CONTACT, a, b, part.contact_ohm, {}
+    elif isinstance(part, Diode):
+        for a, b in part.paths:
+            yield EdgeKind.DIODE, a, b, part.resistance_ohm, {"drop_v": part.drop_v}
+    elif isinstance(part, Shunt):
+        yield EdgeKind.SHUNT, "bat", "sys", part.resistance_ohm, {}
+    elif isinstance(part, Source):
+        for a, b, ohm in part.joined:
+            yield EdgeKind.JOINT, a, b, ohm, {}
 
 
 def _ties(

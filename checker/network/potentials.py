@@ -84,6 +84,7 @@ def study_potentials(network: Network, state: SwitchState) -> Potentials:
         else:
             islands.tie(pos, neg, battery.voltage_v)
             placed.append(battery)
+    _tie_over_diodes(network, net, islands)
     by_batteries = {number: islands.root(number)[0] for number in set(net)}
     for source in _held_last(network):
         if islands.between(net[source.out], net[source.back]) is None:
@@ -98,6 +99,13 @@ def study_potentials(network: Network, state: SwitchState) -> Potentials:
         reference=network.reference,
         conflicts=tuple(conflicts),
     )
+
+
+def _tie_over_diodes(network: Network, net: list[int], islands: _Islands) -> None:
+    """Give a net that nothing but a diode joins to others their voltage; its drop is no nominal one."""
+    for edge in network.diodes:
+        if islands.between(net[edge.a], net[edge.b]) is None:
+            islands.tie(net[edge.b], net[edge.a], 0.0)
 
 
 def _held_last(network: Network) -> list[SourceTie]:

@@ -69,7 +69,7 @@ class _Walk:
     ) -> None:
         self._network = network
         edges = [network.edges[i] for i in live_edges(network, potentials.state)]
-        self._place = places(network, potentials.state, HAS_LENGTH_OR_OPENS)
+        self._place = places(network, potentials.state, HAS_LENGTH_OR_OPENS, over_diodes=True)
         self._device_at: dict[int, str] = {}
         self._leaving: dict[int, list[tuple[Edge, int]]] = {}
         entered: set[int] = set()

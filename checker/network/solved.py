@@ -18,6 +18,11 @@ class Solved:
     full: Flow | NoOperatingPoint
     low: Flow | NoOperatingPoint
 
+    def lasts_beyond(self, surge_s: float) -> bool:
+        """Tell whether the condition lasts longer than a surge."""
+        seconds = self.operation.condition.short_time_s
+        return seconds is None or seconds > surge_s
+
     def flows(self) -> tuple[Flow, ...]:
         """Return the solutions that exist."""
         return tuple(flow for flow in (self.full, self.low) if isinstance(flow, Flow))

@@ -9,6 +9,7 @@ from __future__ import annotations
 
 import itertools
 import math
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 
 from checker.boat.hull import Boat, SwitchRow
@@ -34,9 +35,10 @@ class SwitchState:
 
 @dataclass(frozen=True, slots=True)
 class States:
-    """Hold the states to study, normal ones first, and what the table of states leaves open."""
+    """Hold the states to study, normal ones first, every state that was found, and what the table leaves open."""
 
     kept: tuple[SwitchState, ...]
+    every: tuple[SwitchState, ...]
     unlisted: tuple[str, ...]
     are_too_many: bool
 
@@ -55,7 +57,8 @@ def study_states(boat: Boat) -> States:
             found.append(state)
         too_many = too_many or len(found) > MOST_STATES
     unlisted, are_all = _unlisted(boat, switches)
-    return States(tuple(_largest(found[:MOST_STATES])), tuple(unlisted), too_many or not are_all)
+    every = tuple(found[:MOST_STATES])
+    return States(tuple(_largest(list(every))), every, tuple(unlisted), too_many or not are_all)
 
 
 def _expanded(row: SwitchRow, switches: dict[str, Switch], forbidden: list[SwitchRow]) -> list[SwitchState]:
@@ -120,27 +123,51 @@ def _unlisted(boat: Boat, switches: dict[str, Switch]) -> tuple[list[str], bool]
 
 
 def live_edges(network: Network, state: SwitchState) -> list[int]:
-    """Return the indexes of the edges that conduct in a state; not to be changed."""
+    """Return the indexes of the edges that conduct both ways in a state; not to be changed."""
     key = ("live", state.closed)
     if key not in network.memo:
         closed = {(part, network.index[f"{part}.{a}"], network.index[f"{part}.{b}"]) for part, a, b in state.closed}
         network.memo[key] = [
             edge.index
             for edge in network.edges
-            if edge.kind is not EdgeKind.CONTACT or (edge.part, edge.a, edge.b) in closed
+            if edge.kind is not EdgeKind.DIODE
+            and (edge.kind is not EdgeKind.CONTACT or (edge.part, edge.a, edge.b) in closed)
         ]
     found: list[int] = network.memo[key]
     return found
 
 
-def places(network: Network, state: SwitchState, apart: tuple[EdgeKind, ...]) -> list[int]:
+def leading_to(network: Network, place: Sequence[int], goals: Iterable[int]) -> frozenset[int]:
+    """Return the diodes through which current can come to some places; `place` has shape (posts,)."""
+    reached = set(goals)
+    found: set[int] = set()
+    grown = True
+    while grown:
+        more = {e.index for e in network.diodes if place[e.b] in reached} - found
+        found |= more
+        reached |= {place[network.edges[index].a] for index in more}
+        grown = bool(more)
+    return frozenset(found)
+
+
+def places_beyond(network: Network, place: Sequence[int], starts: Iterable[int]) -> frozenset[int]:
+    """Return the places that current from some places can come to, through diodes too."""
+    reached = set(starts)
+    while more := {place[e.b] for e in network.diodes if place[e.a] in reached} - reached:
+        reached |= more
+    return frozenset(reached)
+
+
+def places(
+    network: Network, state: SwitchState, apart: tuple[EdgeKind, ...], *, over_diodes: bool = False
+) -> list[int]:
     """Return for each post the place it is at, shape (posts,): what no edge of the given kinds parts is one place.
 
-    Not to be changed.
+    A diode parts its posts unless it is asked to join them. Not to be changed.
     """
-    key = ("places", state.closed, apart)
+    key = ("places", state.closed, apart, over_diodes)
     if key not in network.memo:
-        live = (network.edges[i] for i in live_edges(network, state))
+        live = [network.edges[i] for i in live_edges(network, state)] + list(network.diodes if over_diodes else ())
         network.memo[key] = groups(len(network.posts), ((e.a, e.b) for e in live if e.kind not in apart))
     found: list[int] = network.memo[key]
     return found

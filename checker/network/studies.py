@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from functools import cached_property
 
 from checker.boat.hull import Boat
+from checker.network.bank import Bank, study_banks
 from checker.network.buses import BusFlow, study_buses
 from checker.network.conditions import Operation, operations
 from checker.network.coordination import Pair, curve_of, device_pairs, selective_up_to_a
@@ -14,8 +15,10 @@ from checker.network.cranking import bank_conductors, cranking_conductors, take_
 from checker.network.demand import BankCurrent, bank_currents
 from checker.network.exposure import ExposureStudy, study_exposure
 from checker.network.faults import FarEnd, FaultLevels, far_ends
-from checker.network.flow import Copper, Grid
-from checker.network.graph import EdgeKind, Network, build_network
+from checker.network.flow import Copper, Flow, Grid
+from checker.network.graph import EdgeKind, Network, SourceTie, build_network
+from checker.network.ladder import Rung, build_ladder
+from checker.network.losses import Diverted, all_off_state, cut_off_sources, diverted_currents, live_loads
 from checker.network.metering import Metering, study_metering
 from checker.network.potentials import Potentials, study_potentials
 from checker.network.returns import ReturnExposure, study_returns
@@ -32,6 +35,18 @@ class Coppers:
     working: Copper
     cold: Copper
     hot: Copper
+
+
+MOST_SMALLER_STATES = 16
+
+
+def _joins_banks(network: Network, potentials: Potentials) -> bool:
+    """Tell whether two banks are in parallel on one ungrounded net."""
+    banks: dict[int, set[str]] = {}
+    for battery in network.batteries:
+        if not potentials.is_return(battery.pos):
+            banks.setdefault(potentials.net[battery.pos], set()).add(battery.bank)
+    return any(len(names) > 1 for names in banks.values())
 
 
 def _margin(row: tuple[Pair, float | None, float, str]) -> float:
@@ -91,6 +106,38 @@ class Studies:
         return tuple(study_metering(self.boat, self.network, state) for state in self.states.kept)
 
     @cached_property
+    def banks(self) -> tuple[Bank, ...]:
+        """Return the structure of every bank."""
+        return study_banks(self.boat, self.network, self.usual)
+
+    @cached_property
+    def all_off(self) -> Potentials:
+        """Return nets and voltages with every switch off."""
+        return study_potentials(self.network, all_off_state(self.boat))
+
+    @cached_property
+    def live_when_off(self) -> frozenset[str]:
+        """Return the loads that stay live with every switch off."""
+        return live_loads(self.network, self.all_off)
+
+    @cached_property
+    def cut_off_sources(self) -> list[tuple[SourceTie, SwitchState]]:
+        """Return the sources that some switch state parts from every battery."""
+        sound = [*self.states.every, all_off_state(self.boat)] if not self.boat.switch_rows else self.states.every
+        return cut_off_sources(self.network, self.usual, sound)
+
+    def diverted(self, heavy_a: float) -> list[Diverted]:
+        """Return what other paths carry once a heavy return is open."""
+        if "diverted" not in self.network.memo:
+            solved = [s for s in self.conditions.solved if isinstance(s.full, Flow)]
+            flows = [s.full for s in solved if isinstance(s.full, Flow)]
+            self.network.memo["diverted"] = diverted_currents(
+                self.network, [s.operation for s in solved], flows, self.coppers.working, heavy_a
+            )
+        found: list[Diverted] = self.network.memo["diverted"]
+        return found
+
+    @cached_property
     def operations(self) -> tuple[Operation, ...]:
         """Return every operating condition, ready to be solved."""
         return operations(self.boat, self.network)
@@ -112,16 +159,27 @@ class Studies:
     def far_ends(self) -> dict[str, FarEnd]:
         """Return for each device its far end, in the state where least flows: hot copper, low batteries."""
         worst: dict[str, FarEnd] = {}
-        known = {potentials.state.closed: potentials for potentials in self.potentials}
-        for operation in self.operations:
-            if operation.state.closed not in known:
-                known[operation.state.closed] = study_potentials(self.network, operation.state)
-        for potentials in known.values():
+        for potentials in self._leanest:
             grid = Grid(self.network, potentials.state, self.coppers.hot, is_full=False)
             for name, far in far_ends(grid, potentials).items():
                 if name not in worst or far.current_a < worst[name].current_a * (1 - 1e-9):
                     worst[name] = far
         return worst
+
+    @property
+    def _leanest(self) -> list[Potentials]:
+        """Return states in which least may flow: normal ones, and conditions that close what these do not."""
+        known = [potentials for potentials in self.potentials if potentials.state.is_normal] or [self.usual]
+        if any(_joins_banks(self.network, potentials) for potentials in known):
+            # With two banks in parallel more flows than with either alone: the smaller states count too.
+            closed = {potentials.state.closed for potentials in known}
+            smaller = [state for state in self.states.every if state.is_normal and state.closed not in closed]
+            known += [study_potentials(self.network, state) for state in smaller[:MOST_SMALLER_STATES]]
+        for operation in self.operations:
+            closed_now = operation.state.closed
+            if not any(closed_now <= p.state.closed or p.state.closed <= closed_now for p in known):
+                known.append(study_potentials(self.network, operation.state))
+        return known
 
     @cached_property
     def selectivity(self) -> tuple[tuple[Pair, float | None, float, str], ...]:
@@ -147,6 +205,20 @@ class Studies:
                     worst[key] = row
         return tuple(worst[key] for key in sorted(worst))
 
+    @cached_property
+    def ladder(self) -> tuple[Rung, ...]:
+        """Return the protection from each bank down, in the first normal state."""
+        is_known = not any(b.full is None or b.low is None for b in self.network.batteries)
+        return build_ladder(
+            self.boat,
+            self.network,
+            self.usual,
+            self.exposures[0],
+            self.fault_levels[0] if is_known else None,
+            self.far_ends if is_known else {},
+            self.selectivity if is_known else (),
+        )
+
     def is_behind_device(self, name: str) -> bool:
         """Tell whether another device stands between a device and every bank, in every state."""
         edge = self.network.edges_of[name][0]
@@ -159,7 +231,7 @@ class Studies:
     @cached_property
     def sole_devices(self) -> dict[str, str]:
         """Return each device that serves one load and nothing else, with that load."""
-        region = places(self.network, self.usual.state, (EdgeKind.DEVICE,))
+        region = places(self.network, self.usual.state, (EdgeKind.DEVICE,), over_diodes=True)
         found: dict[str, str] = {}
         ends: dict[int, list[str]] = {}
         for edge in self.network.edges:
@@ -169,8 +241,9 @@ class Studies:
         loads: dict[int, list[str]] = {}
         for load in self.network.loads:
             loads.setdefault(region[load.feed], []).append(load.device)
+        banks = {region[post] for battery in self.network.batteries for post in (battery.pos, battery.neg)}
         for place, devices in ends.items():
-            if len(devices) == 1 and len(loads.get(place, ())) == 1:
+            if len(devices) == 1 and len(loads.get(place, ())) == 1 and place not in banks:
                 found[devices[0]] = loads[place][0]
         return found
 

@@ -34,7 +34,8 @@ class SupplyWay:
 def study_supply(boat: Boat, network: Network, potentials: Potentials, of_bank: frozenset[str]) -> dict[str, SupplyWay]:
     """Return the way of every circuit to its bank, by circuit; `of_bank` are the bank's own conductors."""
     live = live_edges(network, potentials.state)
-    feed = neighbours(network, [i for i in live if not potentials.is_return(network.edges[i].a)])
+    passing = [*live, *(edge.index for edge in network.diodes)]
+    feed = neighbours(network, [i for i in passing if not potentials.is_return(network.edges[i].a)])
     # Bonds and shields are no way for load current, though they conduct.
     back = neighbours(
         network,

@@ -10,6 +10,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from checker.finding import Card, Outcome, Verdict
+from checker.network.ladder import Rung
 from checker.result.gather import fingerprint
 from checker.result.model import FleetResult, SetUse, Study, SubjectResult
 
@@ -80,8 +81,21 @@ def _study(study: Study) -> dict[str, Any]:
         "name": study.name,
         "limit_sets": [_set_use(use) for use in study.sets],
         "found": [_Line(_outcome(outcome)) for outcome in study.news],
+        "protection": [_Line(_rung(rung)) for rung in study.ladder],
         "passed": _passes(study),
     }
+
+
+def _rung(rung: Rung) -> dict[str, Any]:
+    """Return one device of the ladder; what is not known is left out."""
+    facts: dict[str, Any] = {
+        "device": rung.device, "above": rung.above, "depth": rung.depth, "part": rung.part,
+        "rating_a": _number(rung.rating_a), "serves": list(rung.serves),
+        "prospective_a": _number(rung.prospective_a or None), "interrupting_a": _number(rung.interrupting_a),
+        "far_end": rung.far_post or None, "far_end_a": _number(rung.far_a or None), "opens_s": _number(rung.opens_s),
+        "selective_up_to_a": _number(rung.selective_up_to_a),
+    }  # fmt: skip
+    return {key: value for key, value in facts.items() if value is not None}
 
 
 def _passes(study: Study) -> list[dict[str, Any]]:

@@ -6,7 +6,9 @@ from collections import Counter
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
+from checker.checks.words import ampere, seconds
 from checker.finding import Card, Outcome, Verdict
+from checker.network.ladder import Rung
 from checker.output.lines import finding_lines, measure_words, same_fault, set_lines
 from checker.reading.words import flat
 from checker.result.gather import fingerprint, natural
@@ -47,13 +49,44 @@ def count(number: int, word: str) -> str:
 
 def hull_report(subject: SubjectResult, cards: Cards, passes: str | None = None) -> str:
     """Return the text report of one hull or option set; `passes` is its last part where that is written already."""
-    told = passes_text(subject.passes) if passes is None else passes
+    told = passes_text(subject.passes, subject.ladder) if passes is None else passes
     return "\n".join([*_head(subject), "", *_news(subject, cards), told])
 
 
-def passes_text(passes: Sequence[Outcome]) -> str:
-    """Return the part of a report that tells what passed; alike hulls have it in common."""
-    return "\n".join([*_exemptions(passes), *_looked_at(passes), *_measured(passes), ""])
+def passes_text(passes: Sequence[Outcome], ladder: Sequence[Rung]) -> str:
+    """Return the part of a report that tells the protection and what passed; alike hulls have it in common."""
+    return "\n".join([*ladder_lines(ladder), *_exemptions(passes), *_looked_at(passes), *_measured(passes), ""])
+
+
+def ladder_lines(ladder: Sequence[Rung]) -> Iterator[str]:
+    """Print the protection from each bank down, a device a line, each under the one above it."""
+    yield from ("", "protection, from each bank down")
+    bank = ""
+    for rung in ladder:
+        if rung.depth == 1 and rung.above != bank:
+            bank = rung.above
+            yield f"  bank {bank}"
+        serves = f"; serves {', '.join(rung.serves)}" if rung.serves else ""
+        facts = "".join(f"; {fact}" for fact in _rung_facts(rung))
+        yield f"{'  ' * (rung.depth + 1)}{rung.device} {ampere(rung.rating_a)} ({rung.part}){serves}{facts}"
+
+
+def _rung_facts(rung: Rung) -> Iterator[str]:
+    if rung.prospective_a:
+        breaks = "not written" if rung.interrupting_a is None else ampere(rung.interrupting_a)
+        yield f"{ampere(round(rung.prospective_a))} can flow, breaks {breaks}"
+    if rung.far_post:
+        opens = (
+            "no band"
+            if rung.opens_s is None
+            else ("may never open" if rung.opens_s == float("inf") else f"opens within {seconds(rung.opens_s)}")
+        )
+        yield f"far end {rung.far_post} {ampere(round(rung.far_a))}: {opens}"
+    if rung.is_alone:
+        yield f"in series with {rung.above}"
+    elif rung.selective_up_to_a is not None:
+        total = rung.selective_up_to_a >= rung.behind_a * (1 - 1e-9)
+        yield f"selective under {rung.above} {'in full' if total else 'up to ' + ampere(round(rung.selective_up_to_a))}"
 
 
 def _head(subject: SubjectResult) -> Iterator[str]:

@@ -6,6 +6,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 
 from checker.finding import Level, Outcome, Span, Verdict
+from checker.network.ladder import Rung
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,6 +33,7 @@ class Study:
     passes: tuple[Outcome, ...]
     thin: int
     sets: tuple[SetUse, ...]
+    ladder: tuple[Rung, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -71,6 +73,7 @@ class SubjectResult:
     own: tuple[Outcome, ...]
     passes: tuple[Outcome, ...]
     thin: int
+    ladder: tuple[Rung, ...]
     accepted: dict[str, Acceptance]
 
     @property

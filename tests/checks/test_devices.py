@@ -109,7 +109,8 @@ def test_second_feed_with_a_device_of_its_own_is_no_path_round_the_first() -> No
         "circuits:\n  SPARE:\n    name: Spare feed\n    service: feeder\n    current: 30 A\n    conductors:\n"
         "      X1: {from: F-SPARE.load, to: PANEL, size: 6 AWG, length: 1.5 m}\n"
     )
-    assert found(SOUND.also(second)) == []
+    bypassed = [told for told in found(SOUND.also(second)) if told[0] == "device-bypass"]
+    assert bypassed == []
 
 
 def test_device_larger_than_the_load_s_maker_allows_is_found_at_its_rating() -> None:
@@ -121,7 +122,7 @@ def test_device_larger_than_the_load_s_maker_allows_is_found_at_its_rating() -> 
 def test_device_as_large_as_the_load_s_maker_allows_is_sound() -> None:
     """LOD-01: 5 A of 5 A in the yard as it is; 10 A of 10 A here."""
     yard = SOUND.edit("feed: P1\n    protect: 5 A", "feed: P1\n    protect: 10 A")
-    assert found(yard.edit("current: 1 A, max_device: 5 A", "current: 1 A, max_device: 10 A")) == []
+    assert found(yard.edit("min_voltage: 10 V, max_device: 5 A", "min_voltage: 10 V, max_device: 10 A")) == []
     assert ("maker-device", "P1", NEITHER) in passed(SOUND)
 
 

@@ -46,7 +46,8 @@ def charger_by_the_engine(current: str) -> Yard:
 def other_sense_lead(new: str, service: str = "sense", current: str = "0.1 A") -> Yard:
     """Return the yard with another lead V2 to the regulator, which is an engine circuit if so told."""
     circuit = "    service: sense\n    current: 0.1 A\n"
-    return SOUND.edit(circuit, f"    service: {service}\n    current: {current}\n").edit(V2, new)
+    reason = "    always_on: the engine maker leaves it live\n" if service == "engine" else ""
+    return SOUND.edit(circuit, f"    service: {service}\n    current: {current}\n{reason}").edit(V2, new)
 
 
 def with_pigtail(length: str) -> Yard:

@@ -43,7 +43,8 @@ def is_mended(before: Yard, after: Yard, check: str, part: str) -> bool:
 
 HORN = (
     "devices:\n  HORN: {part: horn, zone: BOW}\n"
-    "circuits:\n  HORN:\n    name: Horn\n    service: horn\n    current: 5 A\n    conductors:\n"
+    "circuits:\n  HORN:\n    name: Horn\n    service: horn\n    always_on: heard aboard\n"
+    "    current: 5 A\n    conductors:\n"
     "      X1: {from: PANEL, to: HORN.pos, size: 16 AWG, length: 1 m}\n"
     "      X2: {from: HORN.neg, to: PANEL-N, size: 6 AWG, length: 1 m}\n"
 )
@@ -57,7 +58,7 @@ LARGE_BREAKER = SOUND.edit("protect: 10 A\n    legend: LIGHTS 10 A", "protect: 3
 THIN_LIGHTS = SOUND.edit("cable: 18 AWG", "cable: 20 AWG")
 LONG_LIGHTS = SOUND.edit("route: [cabin-way]\n    tail: 1 m", "length: 32 ft")
 LONG_BOW_LIGHT = SOUND.edit("length: 16 ft 5 in", "current: 2 A\n    length: 7 m")
-THIN_SENSE = SOUND.edit("service: sense\n    current: 0.1 A", "service: engine\n    current: 0.1 A").edit(
+THIN_SENSE = SOUND.edit("service: sense\n    current: 0.1 A", "service: engine\n    always_on: the engine maker leaves it live\n    current: 0.1 A").edit(
     "to: REGULATOR.sense, size: 16 AWG", "to: REGULATOR.sense, size: 18 AWG"
 )
 BACK = "back: {size: 18 AWG, length: 4 m}"

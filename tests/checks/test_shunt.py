@@ -95,6 +95,7 @@ def emergency_start(duration: str, short_time: str) -> Yard:
         "    switches: {SW-H: closed, SW-S: open, SW-X: closed}\n"
         "    loads: {STARTER: 200 A}\n"
         f"    short_time: {duration}\n"
+        "    judge_drop: false\n"  # it is the other bank that cranks
     )
     # In the other conditions the link is open: a switch that is not named counts as closed.
     for name in ("under-way", "moored", "start"):
@@ -102,23 +103,31 @@ def emergency_start(duration: str, short_time: str) -> Yard:
     return yard.edit("short_time: {current: 400 A, time: 10 s}", short_time)
 
 
+NOT_SELECTIVE = [  # the link's fuse is as large as the main one; it can be fed from either bank
+    ("selectivity", "F-MAIN under F-X1", NEITHER, "F-MAIN: {part: bolt-fuse, zone: LOCKER, rating: 150 A}"),
+    (
+        "selectivity", "F-X1 under F-MAIN", NEITHER,
+        "F-X1: {part: bolt-fuse, zone: LOCKER, rating: 150 A, mount: {line: BUS-P}}",
+    ),
+]  # fmt: skip
 SHORT = "continuous: 100 A, short_time: {current: 200 A, time: 5 s}"
 
 
 def test_emergency_start_above_what_the_shunt_bears_for_a_short_time_is_found() -> None:
     """SHU-04."""
     yard = emergency_start("5 s", SHORT.replace("200 A", "199 A"))
-    assert found(yard) == [("shunt-rating", "SHUNT in emergency", NEITHER, SHUNT)]
+    assert found(yard) == [*NOT_SELECTIVE, ("shunt-rating", "SHUNT in emergency", NEITHER, SHUNT)]
 
 
 def test_emergency_start_longer_than_the_short_time_is_held_to_the_continuous_figure() -> None:
     """SHU-04."""
-    assert found(emergency_start("5.1 s", SHORT)) == [("shunt-rating", "SHUNT in emergency", NEITHER, SHUNT)]
+    told = ("shunt-rating", "SHUNT in emergency", NEITHER, SHUNT)
+    assert found(emergency_start("5.1 s", SHORT)) == [*NOT_SELECTIVE, told]
 
 
 def test_emergency_start_within_what_the_shunt_bears_is_sound() -> None:
     """SHU-04."""
-    assert found(emergency_start("5 s", SHORT)) == []
+    assert found(emergency_start("5 s", SHORT)) == NOT_SELECTIVE
 
 
 def test_engine_ground_on_the_bank_s_post_is_found_with_all_that_stands_on_the_engine() -> None:
@@ -191,7 +200,8 @@ def test_separate_bow_bank_outside_the_house_shunt_is_sound() -> None:
         "devices:\n  BAT-BOW: {part: start-battery, zone: BOW, bank: BOW}\n"
         "  F-WINCH: {part: bolt-fuse, zone: BOW, rating: 80 A, mount: {line: BAT-BOW.pos}}\n"
         "  WINCH: {part: winch, zone: BOW}\n"
-        "circuits:\n  WINCH:\n    name: Winch\n    service: windlass\n    current: 50 A\n    conductors:\n"
+        "circuits:\n  WINCH:\n    name: Winch\n    service: windlass\n    current: 50 A\n"
+        "    always_on: the winch has its own bank\n    conductors:\n"
         "      X1: {from: F-WINCH.load, to: WINCH.pos, size: 4 AWG, length: 1 m}\n"
         "      X2: {from: WINCH.neg, to: BAT-BOW.neg, size: 4 AWG, length: 1 m}\n"
         "      X3: {from: BAT-BOW.neg, to: BUS-N, size: 4 AWG, length: 2 m}\n"
@@ -208,7 +218,10 @@ def test_instrument_that_does_not_belong_to_the_shunt_is_found_on_the_bank_s_sid
     """T-17."""
     line = "MONITOR: {part: monitor-head, zone: LOCKER, mount: {pos: SHUNT.vbat, neg: SHUNT.bat}}"
     yard = SOUND.edit(", belongs_to: SHUNT", "")
-    assert found(yard) == [("shunt-bypass", "MONITOR", NEITHER, line)]
+    assert found(yard) == [
+        ("ahead-of-switch", "MONITOR", NEITHER, line),  # what belongs to no shunt is a load like any other
+        ("shunt-bypass", "MONITOR", NEITHER, line),
+    ]
 
 
 @pytest.mark.parametrize(
@@ -247,4 +260,7 @@ def test_shunt_without_any_condition_is_not_assessed() -> None:
     """SHU-04."""
     (text,) = [t for name, t in SOUND.files.items() if name.startswith("classes")]
     yard = SOUND.edit(text[text.index("conditions:") :], "")
-    assert not_assessed(yard) == [("shunt-rating", "SHUNT", NEITHER, SHUNT)]
+    assert not_assessed(yard) == [
+        ("shunt-rating", "SHUNT", NEITHER, SHUNT),
+        ("working-point", "conditions", NEITHER, "class:"),
+    ]

@@ -131,12 +131,27 @@ TAPS = {f"W{number}" for number in range(201, 225)} | {"W036"}
 NEGATIVE_MAIN_M = 0.25 + 0.35  # W013 and W014, 4/0 AWG, between the house bank and BUS-N
 CHARGE_LINK_M = 0.12 + 0.30  # W015 and W016, 2/0 AWG, between the house bank and BUS-CH
 
+# Two things of the example are larger than those of the scenario. In the solved network, with the inverter as
+# constant power on low batteries, P24 lost 3.06 % of 3 %; with both solar controllers M06, M07 and S01 lost 3.01 to
+# 3.07 %. So P24 is 8 AWG instead of 10 AWG, and OPT-SOL2 makes W015 and W016 4/0 AWG instead of 2/0 AWG.
+P24_MENDED = pct_lost(5.5, 2 * 4.6, 8) - pct_lost(5.5, 2 * 4.6, 10)
+LINK_MENDED = pct_lost(241, CHARGE_LINK_M, -3) - pct_lost(241, CHARGE_LINK_M, -1)
+P24_AMPACITY = 80.0 / 60.0  # Table 5, 105 C: 8 AWG over 10 AWG
+
+
+def mended(name: str, printed_a: float) -> float:
+    """Return a printed figure that goes by the ampacity, at the gauge that the example has."""
+    return printed_a * P24_AMPACITY if name == "P24" else printed_a
+
+
 # What is added to the printed total, in points of per cent, and why.
 TOTAL_DIFFERS: dict[str, float] = {
     # House charge sources share W013 and W014. The scenario takes those at the 241 A that can charge; the
     # tool takes a shared conductor at the current it is written to carry, 250 A. Both are bounds of what
     # flows; the tool's is the larger by 9 A. (M09 has it too; its rounded figure hides it.)
-    **dict.fromkeys(("M06", "M07", "M09", "S01"), pct_lost(250 - 241, NEGATIVE_MAIN_M, -3)),
+    **dict.fromkeys(("M06", "M07", "M09"), pct_lost(250 - 241, NEGATIVE_MAIN_M, -3)),
+    "S01": pct_lost(250 - 241, NEGATIVE_MAIN_M, -3) + LINK_MENDED,
+    "P24": P24_MENDED,
     # The regulator's sense lead hangs on BUS-CH. The scenario counts the lead alone; the tool counts the
     # shared way as for any other circuit. The regulator does measure 0.4 % below the bank then, so the
     # tool's figure is what happens: W015 and W016 at 241 A, W013 and W014 at 250 A, W032 (2/0, 1.8 m)
@@ -173,7 +188,8 @@ def test_the_drop_along_every_run_is_the_printed_one(option: str, name: str, pri
     drop = circuit_drop(case, circuit, from_bank=False)
     assert drop is not None
     run_v = sum(volts for part, volts in drop.terms if part not in TAPS)
-    assert 100 * run_v / drop.nominal_v == pytest.approx(printed["value"], abs=HALF_DIGIT_PCT)
+    expected = printed["value"] + (P24_MENDED if name == "P24" else 0.0)
+    assert 100 * run_v / drop.nominal_v == pytest.approx(expected, abs=HALF_DIGIT_PCT)
 
 
 @pytest.mark.parametrize(("option", "name", "printed"), [p for p in rows_with("drop_pct_total") if p.id != "M05"])
@@ -239,7 +255,8 @@ def test_the_corrected_ampacity_of_every_circuit_is_the_printed_one(
 ) -> None:
     case = case_of(OPTION_SETS[option])
     bearings = [case.bearings.of(case.boat.conductors[c]) for c in run_of(case, case.boat.circuits[name])]
-    assert min(b.ampacity_a for b in bearings if b is not None) == pytest.approx(printed["value"], abs=HALF_DIGIT_A)
+    expected_a = mended(name, printed["value"])
+    assert min(b.ampacity_a for b in bearings if b is not None) == pytest.approx(expected_a, abs=HALF_DIGIT_A)
     assert None not in bearings
 
 
@@ -261,7 +278,7 @@ BUNDLE_DIFFERS: dict[str, tuple[float, float]] = {
 def bundled(name: str, printed_a: float) -> float:
     """Return the printed figure with the tool's factor in the place of the scenario's."""
     theirs, ours = BUNDLE_DIFFERS.get(name, (1.0, 1.0))
-    return printed_a / theirs * ours
+    return mended(name, printed_a) / theirs * ours
 
 
 @pytest.mark.parametrize(("option", "name", "printed"), rows_with("ampacity_bundled_a"))
@@ -291,7 +308,8 @@ def test_the_count_of_conductors_behind_those_factors_is_that_of_the_routes() ->
 def test_the_largest_protection_allowed_is_the_printed_one(option: str, name: str, printed: dict[str, float]) -> None:
     case = case_of(OPTION_SETS[option])
     allowed = [case.bearings.allowed_a(case.boat.conductors[c]) for c in run_of(case, case.boat.circuits[name])]
-    assert min(a for a in allowed if a is not None) == pytest.approx(printed["limit"], abs=HALF_DIGIT_A)
+    expected_a = mended(name, printed["limit"])
+    assert min(a for a in allowed if a is not None) == pytest.approx(expected_a, abs=HALF_DIGIT_A)
 
 
 @pytest.mark.parametrize(("option", "name", "printed"), rows_with("ocp_max_100pct_a"))
@@ -554,9 +572,10 @@ def test_hull_032_passes_with_its_as_built_length_noted() -> None:
 
 def test_hull_033_passes_with_a_thin_margin_on_the_thruster() -> None:
     assert told("TND-033") == []
-    # P10 and P24 are thin with the option itself: the shared negative carries the thruster as well.
-    assert thin_drops("TND-033") == {"T01", "P10", "P24"}
-    assert thin_drops(OPTION_SETS["OPT-THR12"]) == {"P10", "P24"}
+    # P10 is thin with the option itself: the shared negative carries the thruster as well. P24, thin in the
+    # scenario, is one gauge larger here.
+    assert thin_drops("TND-033") == {"T01", "P10"}
+    assert thin_drops(OPTION_SETS["OPT-THR12"]) == {"P10"}
 
 
 def test_hull_034_has_one_accepted_finding_at_the_line_that_made_it() -> None:

@@ -236,7 +236,7 @@ def test_a_citation_without_clause_is_its_document_alone() -> None:
 
 
 def test_a_set_is_silent_where_its_document_is() -> None:
-    assert FEDERAL.silent_on == ("drop", "insulation")
+    assert FEDERAL.silent_on == ("drop", "insulation", "interrupting")
     assert VOLUNTARY.silent_on == ("ignition",)
     assert (FEDERAL.drop, FEDERAL.insulation, VOLUNTARY.ignition) == (None, None, None)
 

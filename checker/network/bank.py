@@ -1,0 +1,123 @@
+"""Recognise the structure of each bank from the graph: strings in series, strings in parallel, take-offs."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from checker.boat.hull import Boat
+from checker.boat.parts import Battery, Bus
+from checker.network.graph import BatteryTie, EdgeKind, Network
+from checker.network.potentials import Potentials
+
+
+@dataclass(frozen=True, slots=True)
+class Bank:
+    """Hold one bank: its strings from the lowest battery to the highest, its voltage and capacity.
+
+    Series adds volts, parallel adds ampere-hours: V = n_s·V_b, Ah = n_p·Ah_b.
+    """
+
+    id: str
+    strings: tuple[tuple[str, ...], ...]
+    voltage_v: float
+    capacity_ah: float
+
+
+def study_banks(boat: Boat, network: Network, potentials: Potentials) -> tuple[Bank, ...]:
+    """Return every bank with its structure, in the order of ids."""
+    banks: list[Bank] = []
+    for name in sorted({battery.bank for battery in network.batteries}):
+        ties = [battery for battery in network.batteries if battery.bank == name]
+        strings = _strings(ties, potentials)
+        volts = max((sum(_part(boat, b).voltage_v for b in string) for string in strings), default=0.0)
+        capacity = sum(min(_part(boat, b).capacity_ah for b in string) for string in strings)
+        banks.append(Bank(name, strings, volts, capacity))
+    return tuple(banks)
+
+
+def _part(boat: Boat, device: str) -> Battery:
+    part = boat.devices[device].part
+    assert isinstance(part, Battery)
+    return part
+
+
+def _strings(ties: list[BatteryTie], potentials: Potentials) -> tuple[tuple[str, ...], ...]:
+    """Follow the links upward from each battery whose negative post is no other battery's positive net.
+
+    Blocks whose middle points are joined across strings are taken in the order of their ids.
+    """
+    net = potentials.net
+    by_bottom: dict[int, list[BatteryTie]] = {}
+    for tie in sorted(ties, key=lambda tie: tie.device):
+        by_bottom.setdefault(net[tie.neg], []).append(tie)
+    tops = {net[tie.pos] for tie in ties}
+    used: set[str] = set()
+    strings: list[tuple[str, ...]] = []
+    for start in sorted(ties, key=lambda tie: tie.device):
+        if net[start.neg] in tops or start.device in used:
+            continue
+        string = [start]
+        used.add(start.device)
+        while True:
+            onward = [t for t in by_bottom.get(net[string[-1].pos], ()) if t.device not in used]
+            if not onward:
+                break
+            string.append(onward[0])
+            used.add(onward[0].device)
+        strings.append(tuple(tie.device for tie in string))
+    return tuple(strings)
+
+
+def inner_landings(boat: Boat, network: Network) -> list[tuple[str, str]]:
+    """Return conductors that land on a battery between others of its row, with that battery.
+
+    A post is between others if bank conductors lead from it to batteries both ways; where the
+    row is joined at a bus instead, no post is.
+    """
+    posts = {network.posts[p]: b for b in network.batteries for p in (b.pos, b.neg)}
+    links: dict[str, set[str]] = {}
+    for conductor in boat.conductors.values():
+        ends = (conductor.start, conductor.end)
+        if all(end in posts for end in ends) and posts[ends[0]].bank == posts[ends[1]].bank:
+            links.setdefault(ends[0], set()).add(ends[1])
+            links.setdefault(ends[1], set()).add(ends[0])
+    found: list[tuple[str, str]] = []
+    for conductor in boat.conductors.values():
+        for here, there in ((conductor.start, conductor.end), (conductor.end, conductor.start)):
+            same_pole = {p for p in links.get(here, ()) if p.rpartition(".")[2] == here.rpartition(".")[2]}
+            if len(same_pole) > 1 and there not in posts:
+                found.append((conductor.id, posts[here].device))
+    return found
+
+
+def row_links(boat: Boat, network: Network, bank: str) -> list[str]:
+    """Return the conductors of a bank: those that join its batteries to each other or to a bus beside them."""
+    posts = {network.posts[p] for b in network.batteries if b.bank == bank for p in (b.pos, b.neg)}
+    found: list[str] = []
+    for conductor in boat.conductors.values():
+        ends = [conductor.start, conductor.end]
+        inside = sum(end in posts for end in ends)
+        others = [boat.device_of(end) for end in ends if end not in posts]
+        if inside == 2 or (inside == 1 and others[0] is not None and isinstance(others[0].part, Bus)):
+            found.append(conductor.id)
+    return found
+
+
+def has_device(network: Network, potentials: Potentials, string: tuple[str, ...]) -> bool:
+    """Tell whether an overcurrent device stands at the top of a string, before it meets other strings."""
+    top = next(b for b in network.batteries if b.device == string[-1])
+    seen, waiting = {top.pos}, [top.pos]
+    others = {p for b in network.batteries if b.device != top.device for p in (b.pos,)}
+    while waiting:
+        node = waiting.pop()
+        for edge in network.edges:
+            if node not in (edge.a, edge.b):
+                continue
+            far = edge.other(node)
+            if edge.kind is EdgeKind.DEVICE or far in seen:
+                continue
+            if far in others:
+                return False
+            seen.add(far)
+            waiting.append(far)
+    return True
