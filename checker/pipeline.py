@@ -5,8 +5,8 @@ from __future__ import annotations
 import contextlib
 import datetime
 import gc
-from collections.abc import Callable, Collection, Iterator, Sequence
-from dataclasses import dataclass
+from collections.abc import Callable, Collection, Iterator, Mapping, Sequence
+from dataclasses import dataclass, field
 from pathlib import Path
 
 from checker import __version__
@@ -28,7 +28,7 @@ from checker.reading.document import Fault
 from checker.reading.words import nearest
 from checker.reading.yard_files import YardFiles, read_yard
 from checker.result.cards import CLASS_REVISION, NOT_STUDIED, RESULT_CARDS
-from checker.result.gather import news_order, pass_order
+from checker.result.gather import news_order, pass_order, tightest
 from checker.result.model import FleetResult, SetUse, Study, SubjectResult
 from checker.result.waiver_file import read_waivers
 from checker.result.waivers import Waiver, apply_waivers, unmatched
@@ -46,6 +46,7 @@ class Studied:
     thin: int = 0
     sets: tuple[SetUse, ...] = ()
     ladder: tuple[Rung, ...] = ()
+    tightest: Mapping[str, Outcome] = field(default_factory=dict)
     faults: tuple[Fault, ...] = ()
 
 
@@ -161,7 +162,8 @@ class _Bench:
         outcomes = run_checks(studies, limits, self._house)
         passes = pass_order(outcomes)
         thin = sum(is_thin(outcome.measure) for outcome in passes)
-        return Studied(news_order(outcomes), passes, thin, sets, studies.ladder)
+        ladder = studies.ladder
+        return Studied(news_order(outcomes), passes, thin, sets, ladder, tightest(ladder, outcomes))
 
 
 def study_boat(boat: Boat) -> Studies:
@@ -300,6 +302,7 @@ class _Gatherer:
                     passes=study.passes,
                     thin=study.thin,
                     ladder=study.ladder,
+                    tightest=study.tightest,
                     accepted=waived.accepted,
                 )
             )
@@ -308,7 +311,7 @@ class _Gatherer:
             tool_version=__version__,
             subjects=tuple(results),
             studies=tuple(
-                Study(names[0], study.news, study.passes, study.thin, study.sets, study.ladder)
+                Study(names[0], study.news, study.passes, study.thin, study.sets, study.ladder, study.tightest)
                 for key, names in alike.items()
                 for study in (self._studied[key],)
             ),

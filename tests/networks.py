@@ -15,12 +15,12 @@ from hypothesis import strategies as st
 from checker.boat.assemble import assemble
 from checker.boat.build import build_boat
 from checker.boat.catalogue import read_catalogue
-from checker.limits.formulas import resistivity_ohm_mm2_per_m, study_figures
 from checker.network.conditions import CONSTANT_CURRENT, CONSTANT_POWER, RESISTIVE, Draw, Feed
 from checker.network.flow import Copper, Grid
 from checker.network.graph import BatteryTie, Cell, Edge, EdgeKind, LoadTie, Network
 from checker.network.states import SwitchState
-from checker.network.studies import Coppers, Studies
+from checker.network.studies import Studies
+from checker.pipeline import study_boat
 from checker.reading.yard_files import read_yard
 
 EXAMPLE = Path(__file__).resolve().parents[1] / "fleet_example"
@@ -126,7 +126,7 @@ def tangles(draw: st.DrawFn) -> Case:
 
 
 @st.composite
-def wired_boats(draw: st.DrawFn, *, has_diodes: bool = False) -> Case:
+def wired_boats(draw: st.DrawFn) -> Case:
     """Draw what boats look like: banks of strings, trees of conductors with some loops, loads of every kind, an array."""
     sketch = Sketch()
     reference = sketch.post()
@@ -143,13 +143,6 @@ def wired_boats(draw: st.DrawFn, *, has_diodes: bool = False) -> Case:
             tree.append(_grown(draw, sketch, tree))
         for _ in range(draw(st.integers(0, 2))):  # loops
             sketch.join(draw(st.sampled_from(tree)), draw(st.sampled_from(tree)), draw(OHMS))
-    if has_diodes:
-        for _ in range(draw(st.integers(1, 3))):
-            sketch.diode(draw(st.sampled_from(supplies)), sketch.post(), draw(st.floats(0.1, 0.8)), draw(OHMS))
-            end = sketch.posts - 1
-            if draw(st.booleans()):
-                sketch.join(end, draw(st.sampled_from(supplies)), draw(OHMS))
-            supplies.append(end)
     supply, back, amps = st.sampled_from(supplies), st.sampled_from(returns), AMPS
     for _ in range(draw(st.integers(1, 4))):
         model = draw(st.sampled_from([CONSTANT_CURRENT, CONSTANT_POWER, RESISTIVE]))
@@ -202,20 +195,18 @@ def _apart(sketch: Sketch, ohm: float, amps: float) -> None:
 @cache
 def example_studies() -> dict[str, Studies]:
     """Return the studies of every distinct content of the example, by the first name it has."""
-    return dict(_example_studies())
+    return dict(studies_of(EXAMPLE, are_all=True))
 
 
-def _example_studies() -> Iterator[tuple[str, Studies]]:
-    files = read_yard(EXAMPLE)
+def studies_of(folder: Path, *, are_all: bool = False) -> Iterator[tuple[str, Studies]]:
+    """Make ready the studies of a yard's distinct hulls, and of its option sets if all are wanted."""
+    files = read_yard(folder)
     assembly = assemble(files)
     catalogue, _ = read_catalogue(files.parts)
-    figures = study_figures()
-    temperatures_c = (figures.flow_copper_c, figures.cold_copper_c, figures.hot_copper_c)
-    coppers = Coppers(*(Copper(resistivity_ohm_mm2_per_m(t)) for t in temperatures_c))
     seen: set[str] = set()
     for subject in sorted(assembly.subjects, key=lambda subject: not subject.is_hull):
-        if subject.key not in seen:
+        if subject.key not in seen and (are_all or subject.is_hull):
             seen.add(subject.key)
             boat, faults = build_boat(assembly.content[subject.key], subject.class_id, catalogue)
             assert boat is not None, faults
-            yield subject.id, Studies(boat, coppers)
+            yield subject.id, study_boat(boat)

@@ -23,10 +23,12 @@ from checker.network.graph import Edge, EdgeKind, LoadTie, Network
 
 NGSPICE = shutil.which("ngspice")
 needs_ngspice = pytest.mark.skipif(NGSPICE is None, reason="ngspice is not installed: no second opinion on currents")
-# Tighter ones ask for digits that a double does not have: beside a resistance of 0.1 milliohm the last digit of a
-# voltage is a nanoampere, and ngspice then finds no operating point. The last of Newton's steps is far smaller than
-# the tolerance that ends them.
-OPTIONS = ".options reltol=1e-10 abstol=1e-8 vntol=1e-10 gmin=1e-15 itl1=2000"
+# Beside a resistance of 0.1 milliohm the last digit of a voltage is a nanoampere, and tolerances that ask for more
+# digits than a double has find no operating point. Newton's last step is far smaller than the tolerance that ends it.
+OPTIONS = ".options reltol={0} abstol=1e-8 vntol={0} gmin=1e-15 pivrel=0.9 itl1=2000"
+ATTEMPTS = ((False, "1e-10"), (True, "1e-12"), (True, "1e-10"))
+"""Whether loads of constant power start at their nominal voltage, which helps near the most that a network can feed
+but leaves a trace of the guess in the answer; and the tolerance."""
 
 Vectors = dict[str, float]
 
@@ -75,6 +77,8 @@ class Netlist:
         self.island = joined(size, pairs)
         self.powered = {self.island[b.pos] for b, cell in self.cells if cell}
         self.lines: list[str] = []
+        self.guesses: list[str] = []
+        self.knees: list[tuple[int, int, float]] = []
         self.has_loop: set[int] = set()  # edges in places where edges without resistance form a loop
         self._write_edges()
         for number, (battery, cell) in enumerate(self.cells):
@@ -90,6 +94,8 @@ class Netlist:
     def _is_live(self, edge: Edge) -> bool:
         if edge.kind is EdgeKind.DIODE:
             return edge.index in self.conducting
+        if edge.kind is EdgeKind.SHIELD:  # no known resistance: nothing may rest on it
+            return False
         if edge.kind is not EdgeKind.CONTACT:
             return True
         ends = (self.network.posts[post].rsplit(".", 1)[-1] for post in (edge.a, edge.b))
@@ -157,7 +163,10 @@ class Netlist:
         load = (
             f"bl{number} {feed} {back} I = {volts} > {knee_v!r} ? {power_w!r}/{volts} : {volts}*{power_w / knee_v**2!r}"
         )
-        return load if feed == "0" else f"{load}\n.nodeset v({feed})={draw.nominal_v!r}"
+        self.knees.append((draw.feed, draw.back, knee_v))
+        if feed != "0":
+            self.guesses.append(f".nodeset v({feed})={draw.nominal_v!r}")
+        return load
 
     def shorted(self, post: int, other: int) -> Netlist:
         """Return the netlist with two posts joined by a source of 0 V; the vector i(vf) is the current of the fault."""
@@ -165,13 +174,15 @@ class Netlist:
         found.lines = [*self.lines, f"vf {self.node(post)} {self.node(other)} 0"]
         return found
 
-    def text(self, title: str = "") -> str:
+    def text(self, title: str = "", attempt: tuple[bool, str] = ATTEMPTS[0]) -> str:
         """Return the whole netlist; whatever floats is tied to the ground by one resistor, which carries nothing."""
         ties = [(tie.feed, tie.back) for tie in self.held.values()]
         whole = joined(len(self.network.posts), [*enumerate(self.island), *ties])
         loose = sorted(set(whole) - {whole[self.network.reference]})
         ground = [f"rt{post} {self.node(post)} 0 1" for post in loose]
-        return "\n".join([title, *self.lines, *ground, OPTIONS, ".end", ""])
+        is_guided, tolerance = attempt
+        guesses = self.guesses if is_guided else []
+        return "\n".join([title, *self.lines, *ground, *guesses, OPTIONS.format(tolerance), ".end", ""])
 
     # --- what ngspice says
 
@@ -181,6 +192,11 @@ class Netlist:
             0.0 if post == self.network.reference else found.get(f"v(n{post})", 0.0)
             for post in range(len(self.network.posts))
         ]
+
+    def is_past_knee(self, found: Vectors) -> bool:
+        """Tell whether a load of constant power has half its nominal voltage or less."""
+        volts = self.volts(found)
+        return any(volts[feed] - volts[back] <= knee_v for feed, back, knee_v in self.knees)
 
     def currents_a(self, found: Vectors) -> dict[int, float]:
         """Return the current of every live edge that has one."""
@@ -212,14 +228,29 @@ class Netlist:
 
 
 def ngspice(netlists: Sequence[Netlist]) -> list[Vectors | None]:
-    """Have ngspice find all operating points in one run; return the vectors of each, by name, or None."""
+    """Have ngspice find all operating points in one run; return the vectors of each, by name, or None.
+
+    Those that it does not find, or finds past the knee of a load of constant power although there
+    may be another on this side of it, are tried again in another way.
+    """
+    found: list[Vectors | None] = [None] * len(netlists)
+    left = list(range(len(netlists)))
+    for attempt in ATTEMPTS:
+        for number, vectors in zip(left, _run([netlists[n] for n in left], attempt) if left else (), strict=True):
+            found[number] = vectors or found[number]
+        answers = [(number, found[number]) for number in left]
+        left = [number for number, answer in answers if answer is None or netlists[number].is_past_knee(answer)]
+    return found
+
+
+def _run(netlists: Sequence[Netlist], attempt: tuple[bool, str]) -> list[Vectors | None]:
     assert NGSPICE is not None
     titles = [f"c{number}" for number in range(len(netlists))]
     with tempfile.TemporaryDirectory() as scratch:
         folder = Path(scratch)
         steps = ["* all circuits in one run", ".control", "set filetype=ascii", "set appendwrite"]
         for title, netlist in zip(titles, netlists, strict=True):
-            (folder / f"{title}.cir").write_text(netlist.text(title), encoding="ascii")
+            (folder / f"{title}.cir").write_text(netlist.text(title, attempt), encoding="ascii")
             steps += [f"source {title}.cir", "op", "write out.raw", "destroy all", "remcirc"]
         (folder / "run.sp").write_text("\n".join([*steps, "quit", ".endc", ".end", ""]), encoding="ascii")
         subprocess.run([NGSPICE, "-b", "run.sp"], cwd=folder, capture_output=True, check=False)

@@ -116,13 +116,17 @@ def inner_landing(case: Case) -> Iterator[Outcome]:
     """Do loads and chargers land at the ends of a row of batteries or at its bus, not on one between others?"""
     landings = dict(inner_landings(case.boat, case.studies.network))
     for name, battery in sorted(landings.items()):
-        conductor = case.boat.conductors[name]
+        conductor = case.boat.conductors.get(name)
+        device = case.boat.devices.get(name)
         told = Told(
             fault=f"lands on {battery}, which stands between others of its row",
             remedy="land it on the bank's bus, or at the end of the row",
             inputs=(("battery", battery),),
         )
-        yield inner_landing.found(case, at_conductor(conductor, conductor.at), told)
+        if conductor is not None:
+            yield inner_landing.found(case, at_conductor(conductor, conductor.at), told)
+        elif device is not None:
+            yield inner_landing.found(case, Place(name, device.at, device.circuit), told)
     for bank, place in _banks(case):
         if not any(battery in string for battery in landings.values() for string in bank.strings):
             yield inner_landing.passed(case, place)
@@ -139,10 +143,12 @@ def inner_landing(case: Case) -> Iterator[Outcome]:
 def bank_links(case: Case) -> Iterator[Outcome]:
     """With each string of a bank out in turn, does every conductor of the bank bear the largest lasting current?"""
     for bank, _ in _banks(case):
-        worst = case.studies.network.memo.setdefault(("links", bank.id), {})
-        if not worst:
-            worst.update(_link_currents(case, bank))
-        for name in row_links(case.boat, case.studies.network, bank.id):
+        links = row_links(case.boat, case.studies.network, bank.id)
+        memo = case.studies.network.memo
+        if links and ("links", bank.id) not in memo:
+            memo["links", bank.id] = _link_currents(case, bank)
+        worst = memo.get(("links", bank.id), {})
+        for name in links:
             conductor = case.boat.conductors[name]
             bearing = case.bearings.of(conductor)
             if bearing is None or name not in worst:
@@ -165,14 +171,15 @@ def _link_currents(case: Case, bank: Bank) -> dict[str, tuple[float, str]]:
         return {}
     worst: dict[str, tuple[float, str]] = {}
     edges = case.studies.network.edges
-    cases = [((), "")] + [(s, f"with string {s[0]} out") for s in bank.strings if len(bank.strings) > 1]
     operation = solved.operation
-    for out, words in cases:
+    answers = [(solved.full, "")]
+    for out in bank.strings if len(bank.strings) > 1 else ():
         grid = Grid(
             case.studies.network, operation.state, case.studies.coppers.working, is_full=True,
             without_batteries=frozenset(out),
         )  # fmt: skip
-        flow = grid.solve(operation.draws, operation.feeds)
+        answers.append((grid.solve(operation.draws, operation.feeds), f"with string {out[0]} out"))
+    for flow, words in answers:
         if isinstance(flow, Flow):
             for index, current_a in flow.currents_a.items():
                 part = edges[index].part

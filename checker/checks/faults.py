@@ -68,9 +68,10 @@ def interrupting_capacity(case: Case) -> Iterator[Outcome]:
 
 def _largest(case: Case, device: Device) -> tuple[float, str, tuple[str, ...]]:
     """Return the largest prospective current at a device, the state it occurs in, and the batteries that feed it."""
-    post = case.studies.network.index[f"{device.id}.line"]
+    posts = [case.studies.network.index[f"{device.id}.{end}"] for end in device.part.posts]  # either may be the fed one
     best: tuple[float, str, tuple[str, ...]] = (0.0, "", ())
     for potentials, levels in zip(case.studies.potentials, case.studies.fault_levels, strict=True):
+        post = max(posts, key=levels.largest_a)
         largest_a = levels.largest_a(post)
         if largest_a > best[0] * (1 + 1e-9):
             best = (largest_a, case.studies.state_words(potentials.state), levels.batteries(post))

@@ -16,6 +16,7 @@ from checker.limits.limit_set import surge_s
 from checker.network.conditions import Draw, Feed
 from checker.network.flow import Flow, NoOperatingPoint
 from checker.network.graph import EdgeKind
+from checker.network.potentials import study_potentials
 from checker.network.solved import Solved
 from checker.units import awg_size
 
@@ -229,6 +230,7 @@ def _losses(
     case: Case, solved: Solved, flow: Flow, tops: dict[str, tuple[int, int]], owners: dict[int, Circuit]
 ) -> Iterator[tuple[Circuit, float, float]]:
     """Yield for each load and source that runs its circuit, its loss from or to the bank, and its nominal voltage."""
+    net = study_potentials(case.studies.network, solved.operation.state).net
     items: list[tuple[int, int, float]] = [(d.feed, d.back, 1.0) for d in solved.operation.draws if _runs(d)]
     items += [(f.out, f.back, -1.0) for f in solved.operation.feeds if _runs(f)]
     for out, back, sign in items:
@@ -236,8 +238,13 @@ def _losses(
         bank = case.studies.supply[circuit.id].bank if circuit else ""
         if circuit is None or bank not in tops:
             continue
-        top, bottom = tops[bank]
-        lost_v = sign * (flow.across(top, out) + flow.across(back, bottom))
+        # Where its own bank is switched off, what feeds it now counts: an emergency link, another bank.
+        feeding = (
+            [tops[bank]] if net[tops[bank][0]] == net[out] else [t for t in tops.values() if net[t[0]] == net[out]]
+        )
+        lost_v = min(
+            sign * (flow.across(top, out) + flow.across(back, bottom)) for top, bottom in feeding or [tops[bank]]
+        )
         yield circuit, lost_v, nominal_v(case, circuit)
 
 

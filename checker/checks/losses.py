@@ -10,7 +10,7 @@ from checker.checks.check import Case, Place, Told, check
 from checker.checks.words import ampere, plain
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.limit_set import always_on_rule, bank_figures
-from checker.network.losses import idle_diodes
+from checker.network.losses import Diverted, idle_diodes
 
 
 def _at(device: Device, state: str = "") -> Place:
@@ -240,35 +240,44 @@ def lost_return(case: Case) -> Iterator[Outcome]:
     if case.studies.conditions.missing:
         return
     rule = always_on_rule()
+    by_opened: dict[str, list[tuple[float, Diverted, float]]] = {}
     for diverted in case.studies.diverted(rule.heavy_return_a):
-        conductor = case.boat.conductors.get(diverted.part)
-        if conductor is None:
-            yield from _through_shield(case, diverted.part, diverted.opened, diverted.current_a, rule.shield_a)
-            continue
-        bearing = case.bearings.of(conductor)
-        if bearing is None:
-            continue
-        told = Told(
-            fault=f"if {diverted.opened} comes loose, {conductor.size.text} carries "
-            f"{ampere(round(diverted.current_a, 1))} in condition {diverted.condition}, "
-            f"but bears {ampere(bearing.ampacity_a)}",
-            remedy=f"a second heavy return beside {diverted.opened}, or take the thin path out",
-            inputs=(("opened", diverted.opened), ("current", ampere(round(diverted.current_a, 1)))),
-        )
-        place = Place(f"{diverted.part} without {diverted.opened}", conductor.at_size, conductor.circuit)
-        measure = Measure("diverted current", diverted.current_a, bearing.ampacity_a, "A")
-        yield lost_return.judge(case, place, measure, lambda told=told: told)  # type: ignore[misc]
+        limit_a = _limit_a(case, diverted.part, rule.shield_a)
+        if limit_a is not None:
+            by_opened.setdefault(diverted.opened, []).append((diverted.current_a / limit_a, diverted, limit_a))
+    for paths in by_opened.values():
+        # Where all paths bear it, the one nearest its limit stands for them.
+        over = [row for row in paths if row[0] > 1] or [max(paths, key=lambda row: round(row[0], 9))]
+        for _, diverted, limit_a in over:
+            yield _judge_diverted(case, diverted, limit_a)
 
 
-def _through_shield(case: Case, name: str, opened: str, current_a: float, limit_a: float) -> Iterator[Outcome]:
-    shield = next((s for s in case.boat.shields or () if s.id == name), None)
-    if shield is None:
-        return
+def _judge_diverted(case: Case, diverted: Diverted, limit_a: float) -> Outcome:
+    place, words = _path(case, diverted)
     told = Told(
-        fault=f"if {opened} comes loose, the shield carries {ampere(round(current_a, 1))}",
-        remedy="join the shield at one end only",
-        inputs=(("opened", opened), ("current", ampere(round(current_a, 1)))),
+        fault=f"if {diverted.opened} comes loose, {words} carries {ampere(round(diverted.current_a, 1))} "
+        f"in condition {diverted.condition}, but bears {ampere(limit_a)}",
+        remedy=f"a second heavy return beside {diverted.opened}, or take the thin path out",
+        inputs=(("opened", diverted.opened), ("current", ampere(round(diverted.current_a, 1)))),
     )
-    place = Place(f"{name} without {opened}", shield.at)
-    measure = Measure("diverted current", current_a, limit_a, "A")
-    yield lost_return.judge(case, place, measure, lambda: told)
+    measure = Measure("diverted current", diverted.current_a, limit_a, "A")
+    return lost_return.judge(case, place, measure, lambda: told)
+
+
+def _limit_a(case: Case, part: str, shield_a: float) -> float | None:
+    """Return what a conductor or shield bears, None where that is not known."""
+    conductor = case.boat.conductors.get(part)
+    if conductor is None:
+        return shield_a if any(s.id == part for s in case.boat.shields or ()) else None
+    bearing = case.bearings.of(conductor)
+    return None if bearing is None else bearing.ampacity_a
+
+
+def _path(case: Case, diverted: Diverted) -> tuple[Place, str]:
+    """Return where a conductor or shield stands, and what to call it."""
+    name = f"{diverted.part} without {diverted.opened}"
+    conductor = case.boat.conductors.get(diverted.part)
+    if conductor is not None:
+        return Place(name, conductor.at_size, conductor.circuit), conductor.size.text
+    shield = next(s for s in case.boat.shields or () if s.id == diverted.part)
+    return Place(name, shield.at), "the shield"

@@ -69,7 +69,7 @@ def _strings(ties: list[BatteryTie], potentials: Potentials) -> tuple[tuple[str,
 
 
 def inner_landings(boat: Boat, network: Network) -> list[tuple[str, str]]:
-    """Return conductors that land on a battery between others of its row, with that battery.
+    """Return conductors, and devices mounted there, that land on a battery between others of its row, with it.
 
     A post is between others if bank conductors lead from it to batteries both ways; where the
     row is joined at a bus instead, no post is.
@@ -81,12 +81,17 @@ def inner_landings(boat: Boat, network: Network) -> list[tuple[str, str]]:
         if all(end in posts for end in ends) and posts[ends[0]].bank == posts[ends[1]].bank:
             links.setdefault(ends[0], set()).add(ends[1])
             links.setdefault(ends[1], set()).add(ends[0])
+    between = {
+        post for post, others in links.items()
+        if len({other for other in others if other.rpartition(".")[2] == post.rpartition(".")[2]}) > 1
+    }  # fmt: skip
     found: list[tuple[str, str]] = []
     for conductor in boat.conductors.values():
         for here, there in ((conductor.start, conductor.end), (conductor.end, conductor.start)):
-            same_pole = {p for p in links.get(here, ()) if p.rpartition(".")[2] == here.rpartition(".")[2]}
-            if len(same_pole) > 1 and there not in posts:
+            if here in between and there not in posts:
                 found.append((conductor.id, posts[here].device))
+    for device in boat.devices.values():
+        found += [(device.id, posts[post].device) for _, post in device.mounts if post in between]
     return found
 
 

@@ -7,8 +7,10 @@ certainly opened.
 
 from __future__ import annotations
 
+import itertools
 import math
 from dataclasses import dataclass
+from functools import lru_cache
 
 from checker.boat.hull import Boat, Device
 from checker.boat.parts import Overcurrent
@@ -87,10 +89,20 @@ def device_pairs(boat: Boat, network: Network, potentials: Potentials, study: Ex
             if not arriving or math.isinf(arriving):  # what a battery feeds directly stands under no device
                 continue
             for name, _ in study.terms(edge, near):
-                if name in boat.devices and isinstance(boat.devices[name].part, Overcurrent):
+                is_device = name in boat.devices and isinstance(boat.devices[name].part, Overcurrent)
+                if is_device and not _are_beside(network, region, name, edge.part):
                     has_branch = busy.get(region[near], 0) > 2
                     found.setdefault((name, edge.part), Pair(name, edge.part, far, has_branch))
     return tuple(found[key] for key in sorted(found))
+
+
+def _are_beside(network: Network, region: list[int], first: str, second: str) -> bool:
+    """Tell whether two devices lie side by side between the same two places: neither stands above the other."""
+    ends = [
+        {region[edge.a], region[edge.b]}
+        for name in (first, second) for edge in network.edges_of[name] if edge.kind is EdgeKind.DEVICE
+    ]  # fmt: skip
+    return ends[0] == ends[1]
 
 
 def _busy(network: Network, study: ExposureStudy, region: list[int]) -> dict[int, int]:
@@ -109,20 +121,26 @@ def _busy(network: Network, study: ExposureStudy, region: list[int]) -> dict[int
 
 
 def selective_up_to_a(upper: Curve, lower: Curve, prospective_a: float) -> float:
-    """Return the current up to which the lower device opens before the upper one begins to, A.
+    """Return the current up to which the lower device opens before the upper one begins to, A."""
+    return min(prospective_a, _first_crossing(upper, lower))
+
+
+@lru_cache(maxsize=4096)
+def _first_crossing(upper: Curve, lower: Curve) -> float:
+    """Return the smallest current at which the upper device may begin to open first, A; infinite where there is none.
 
     Both curves are straight on log-log axes between their corners, so that the first crossing
     lies on one stretch between two corners and is found there exactly.
     """
     start = min(lower.corners_a()[0], upper.corners_a()[0])
-    corners = sorted({*lower.corners_a(), *upper.corners_a(), prospective_a})
-    before: tuple[float, float] | None = None
-    for current_a in (c for c in corners if start <= c <= prospective_a * (1 + 1e-12)):
-        gap = _gap(upper, lower, current_a)
-        if gap < 0:
-            return current_a if before is None else _crossing(upper, lower, before[0], current_a)
-        before = (current_a, gap)
-    return prospective_a
+    before_a = 0.0
+    for current_a in sorted({*lower.corners_a(), *upper.corners_a()}):
+        if current_a < start:
+            continue
+        if _gap(upper, lower, current_a) < 0:
+            return _crossing(upper, lower, before_a, current_a) if before_a else current_a
+        before_a = current_a
+    return math.inf
 
 
 def _gap(upper: Curve, lower: Curve, current_a: float) -> float:
@@ -146,6 +164,17 @@ def _crossing(upper: Curve, lower: Curve, good_a: float, bad_a: float) -> float:
     return good_a
 
 
+def _quick_from(curve: Curve, slow_a: float, quick_a: float, seconds: float) -> float:
+    """Return the current from which on a device opens within a time: between a slow and a quick one."""
+    for _ in range(60):
+        middle = math.sqrt(slow_a * quick_a)
+        if curve.latest_s(middle) > seconds:
+            slow_a = middle
+        else:
+            quick_a = middle
+    return quick_a
+
+
 def withstand_ratio(
     curve: Curve, k2s2: float, low_a: float, high_a: float, valid_up_to_s: float
 ) -> tuple[float, float]:
@@ -155,8 +184,14 @@ def withstand_ratio(
     equation holds; slower openings are overloads, which the rating rule judges.
     """
     worst = (0.0, high_a)
-    corners = [c for c in curve.corners_a() if low_a < c < high_a]
-    for current_a in (low_a, *corners, high_a):
+    currents = [low_a, *(c for c in curve.corners_a() if low_a < c < high_a), high_a]
+    # Within a stretch I²t rises or falls throughout; one that begins too slow counts from where it no longer is.
+    currents += [
+        _quick_from(curve, slow_a, quick_a, valid_up_to_s)
+        for slow_a, quick_a in itertools.pairwise(currents)
+        if curve.latest_s(slow_a) > valid_up_to_s >= curve.latest_s(quick_a)
+    ]
+    for current_a in currents:
         seconds = curve.latest_s(current_a)
         if seconds <= valid_up_to_s:
             worst = max(worst, (current_a**2 * seconds / k2s2, current_a))

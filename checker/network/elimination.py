@@ -99,6 +99,36 @@ class Factor:
                 chain.pop()
         return found
 
+    def resistance_ohm(self, a: int, b: int) -> float:
+        """Return the resistance between two places, ohm: e'·G⁻¹·e = Σ y²/D with L·y = e, e being 1 at a and -1 at b.
+
+        A right-hand side touches only the places that its own is joined to in turn as they
+        are eliminated.
+        """
+        if a == b:
+            return 0.0
+        rank, steps = self._rank, self._steps
+        values = {node: sign for node, sign in ((a, 1.0), (b, -1.0)) if node in rank}
+        waiting = [rank[node] for node in values]
+        heapq.heapify(waiting)
+        total = 0.0
+        last = -1
+        while waiting:
+            step = heapq.heappop(waiting)
+            if step == last:
+                continue
+            last = step
+            node, pivot, links = steps[step]
+            value = values[node]
+            total += value * value / pivot
+            for far, share in links:
+                if far in values:
+                    values[far] -= share * value
+                else:
+                    values[far] = -share * value
+                    heapq.heappush(waiting, rank[far])
+        return total
+
     @cached_property
     def _rank(self) -> dict[int, int]:
         """Return the step at which each place was eliminated."""
@@ -144,6 +174,16 @@ def _eliminate(
         if done[node] or degree != len(beside[node]):
             continue
         done[node] = True
+        if degree == 1:  # nearly every place of a boat
+            ((far, value),) = beside[node].items()
+            pivot = leak[node] - value
+            share = value / pivot
+            steps.append((node, pivot, ((far, share),)))
+            row = beside[far]
+            del row[node]
+            leak[far] -= share * leak[node]
+            heapq.heappush(waiting, (len(row), far))
+            continue
         links = sorted(beside[node].items())
         pivot = leak[node] - sum(value for _, value in links)
         if not pivot:

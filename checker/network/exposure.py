@@ -51,6 +51,12 @@ class ExposureStudy:
     _bridges: frozenset[int] = field(repr=False)
     _names: dict[int, list[tuple[str, float]]] = field(repr=False)
 
+    def leads_all(self, edge: Edge, post: int) -> bool:
+        """Tell whether all that comes to one end of an edge comes over it: it is a bridge, and nothing feeds beyond."""
+        exposure = self.exposures.get(edge.index)
+        beyond_a = math.inf if exposure is None else exposure.at_b if post == edge.b else exposure.at_a
+        return edge.index in self._bridges and not beyond_a
+
     def terms(self, edge: Edge, node: int) -> list[tuple[str, float]]:
         """Name what makes up the current arriving at one end of an edge: devices and sources, largest first."""
         found = self._terms(node, edge)
@@ -155,6 +161,9 @@ def find_bridges(network: Network, at: Neighbours) -> frozenset[int]:
     return frozenset(bridges)
 
 
+_NOTHING: dict[int, float] = {}
+
+
 class _Sweep:
     """Carry the flow over the bridges, first towards the roots, then away from them."""
 
@@ -169,8 +178,8 @@ class _Sweep:
         self._members: dict[int, list[int]] = {}
         for node, root in enumerate(block):
             self._members.setdefault(root, []).append(node)
-        # What comes over a bridge to its end at a node: (edge, node) -> ampere.
-        self._coming: dict[tuple[int, int], float] = {}
+        # What comes over each bridge to its end at a node, where anything does: node -> edge -> ampere.
+        self._coming: dict[int, dict[int, float]] = {}
         self.exposures: dict[int, Exposure] = {}
 
     def run(self, edges: list[int]) -> None:
@@ -218,7 +227,9 @@ class _Sweep:
         near = edge.a if self._block[edge.a] == root else edge.b
         far = edge.other(near)
         blocks = edge.kind is EdgeKind.DIODE and near == edge.b
-        self._coming[(edge.index, far)] = 0.0 if blocks else min(edge.rating_a, self._arriving(edge, near))
+        coming_a = 0.0 if blocks else min(edge.rating_a, self._arriving(edge, near))
+        if coming_a:  # a branch that feeds nothing back is not looked at again
+            self._coming.setdefault(far, {})[edge.index] = coming_a
 
     def _arriving(self, edge: Edge, node: int) -> float:
         """Return what reaches the end of a bridge at a node, the bridge taken out."""
@@ -229,9 +240,9 @@ class _Sweep:
 
     def _given(self, node: int, without: int) -> float:
         total = self._supply[node]
-        for edge in self._at[node]:
-            if edge.index != without and edge.index in self._bridges:
-                total += self._coming.get((edge.index, node), 0.0)
+        for index, coming_a in self._coming.get(node, _NOTHING).items():
+            if index != without:
+                total += coming_a
         return total
 
     def _flow_to(self, sink: int, without: int) -> float:

@@ -12,10 +12,11 @@ import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 
+from checker.network.exposure import ExposureStudy
 from checker.network.flow import Grid
 from checker.network.graph import BatteryTie, Edge, EdgeKind, Network
 from checker.network.potentials import Potentials
-from checker.network.states import SwitchState
+from checker.network.states import SwitchState, places, places_beyond
 from checker.network.walk import Neighbours, neighbours
 
 OPENING = (EdgeKind.DEVICE,)
@@ -61,8 +62,8 @@ class FaultLevels:
     def _charging_by_net(self) -> dict[int, float]:
         total: dict[int, float] = {}
         for source in self._grid.network.sources:
-            net = self._potentials.net[source.out]
-            total[net] = total.get(net, 0.0) + source.max_a
+            for net in places_beyond(self._grid.network, self._potentials.net, [self._potentials.net[source.out]]):
+                total[net] = total.get(net, 0.0) + source.max_a
         return total
 
     def largest_a(self, post: int) -> float:
@@ -107,31 +108,41 @@ class FarEnd:
     conductors: tuple[str, ...]
 
 
-def far_ends(grid: Grid, potentials: Potentials) -> dict[str, FarEnd]:
-    """Return for each device the far end at which a fault draws least through it: hot copper, low batteries."""
+def far_ends(grid: Grid, potentials: Potentials, study: ExposureStudy | None = None) -> dict[str, FarEnd]:
+    """Return for each device the far end at which a fault draws least through it: hot copper, low batteries.
+
+    The exposure in the same state, where it is given, tells where the whole fault current
+    passes the device, so that it need not be solved for.
+    """
     network = grid.network
     live = [e for e in (*grid.edges, *network.diodes) if not potentials.returns[e.a]]
     at = neighbours(network, [e.index for e in live])
     backs = {load.feed: load.back for load in network.loads} | {s.out: s.back for s in network.sources}
+    region = places(network, potentials.state, OPENING)
     worst: dict[str, FarEnd] = {}
     for edge in live:
         if edge.kind is not EdgeKind.DEVICE:
             continue
-        for end, conductors in _stretch(network, at, edge):
+        for end, conductors in _stretch(network, at, edge, region):
             back = backs.get(end, network.reference)
-            current_a = _through(grid.feeding(end), edge, end, back)
+            is_all = study is not None and study.leads_all(edge, edge.b)
+            current_a = _through(grid.feeding(end), edge, end, back, is_all=is_all)
             known = worst.get(edge.part)
             if current_a > 0 and (known is None or current_a < known.current_a):
                 worst[edge.part] = FarEnd(edge.part, network.posts[end], current_a, potentials.state, conductors)
     return worst
 
 
-def _stretch(network: Network, at: Neighbours, device: Edge) -> list[tuple[int, tuple[str, ...]]]:
+def _stretch(
+    network: Network, at: Neighbours, device: Edge, region: Sequence[int]
+) -> list[tuple[int, tuple[str, ...]]]:
     """Return the ends of what a device protects on its load side, and the conductors on the way to each.
 
     An end is a post of a load or source, or one where conductors come to the line of another
-    device or to a post with nothing beyond.
+    device or to a post with nothing beyond. A device side by side with this one ends nothing:
+    what the two feed together is asked where it leaves them.
     """
+    both_sides = {region[device.a], region[device.b]}
     ends: list[tuple[int, tuple[str, ...]]] = []
     seen = {device.a, device.b}
     waiting: list[tuple[int, tuple[str, ...]]] = [(device.b, ())]
@@ -139,8 +150,10 @@ def _stretch(network: Network, at: Neighbours, device: Edge) -> list[tuple[int, 
     while waiting:
         node, conductors = waiting.pop()
         onward = [e for e in at[node] if e.kind not in OPENING and _leads_on(e, node) and e.other(node) not in seen]
-        leaves = any(e.kind in OPENING and e.index != device.index for e in at[node])
-        if conductors and (node in terminals or leaves or not onward):
+        others = [e for e in at[node] if e.kind in OPENING and e.index != device.index]
+        beside = [e for e in others if {region[e.a], region[e.b]} == both_sides]
+        leaves = len(others) > len(beside)
+        if conductors and not (beside and not leaves) and (node in terminals or leaves or not onward):
             ends.append((node, conductors))
         for edge in onward:
             far = edge.other(node)
@@ -155,22 +168,22 @@ def _leads_on(edge: Edge, node: int) -> bool:
     return edge.kind is not EdgeKind.DIODE or node == edge.a
 
 
-def _through(grid: Grid, device: Edge, end: int, back: int) -> float:
+def _through(grid: Grid, device: Edge, end: int, back: int, *, is_all: bool) -> float:
     """Return the current through a device for a fault between two posts, 0 where no battery feeds it."""
     place = grid.place
     if grid.island[place[end]] != grid.island[place[back]] or place[end] == place[back]:
         return 0.0
-    needed = [place[end], place[back], place[device.a], place[device.b]]
-    answer = grid.factor.solve_at({place[end]: 1.0, place[back]: -1.0}, needed)
-    ohm = answer[place[end]] - answer[place[back]]
     rest = grid.at_rest_v
     volts = rest[place[end]] - rest[place[back]]
+    ohm = grid.factor.resistance_ohm(place[end], place[back])
     if ohm <= 0 or volts <= 0:
         return 0.0
     fault_a = volts / ohm
     own_ohm = grid.ohm(device)
-    if own_ohm == 0:
+    if own_ohm == 0 or is_all:
         return fault_a
+    needed = [place[device.a], place[device.b]]
+    answer = grid.factor.solve_at({place[end]: 1.0, place[back]: -1.0}, needed)
     drop = [rest[place[p]] - fault_a * answer[place[p]] for p in (device.a, device.b)]
     return (drop[0] - drop[1]) / own_ohm
 

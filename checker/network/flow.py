@@ -18,8 +18,8 @@ from functools import cached_property
 
 from checker.network.conditions import CONSTANT_CURRENT, CONSTANT_POWER, RESISTIVE, Draw, Feed
 from checker.network.elimination import Factor
-from checker.network.graph import BatteryTie, Cell, Edge, LoadTie, Network
-from checker.network.states import SwitchState, leading_to, live_edges, places
+from checker.network.graph import BatteryTie, Cell, Edge, EdgeKind, LoadTie, Network
+from checker.network.states import SwitchState, leading_to, live_edges, places, places_beyond
 from checker.network.walk import groups
 
 MOST_STEPS = 60
@@ -43,8 +43,9 @@ class Copper:
 class Grid:
     """Hold the factorised network of one switch state, at one temperature and state of charge.
 
-    `without` are edges taken out, for the studies of a loss. Batteries whose figures are
-    missing are left out; `missing` names them.
+    `without` are edges taken out, for the studies of a loss; `shunts` are loads that are plain
+    resistances and always on, so that they need no step of Newton's. Shields count only where
+    asked. Batteries whose figures are missing are left out; `missing` names them.
     """
 
     def __init__(
@@ -57,19 +58,25 @@ class Grid:
         without: frozenset[int] = frozenset(),
         without_batteries: frozenset[str] = frozenset(),
         conducting: frozenset[int] = frozenset(),
+        shunts: tuple[Draw, ...] = (),
+        with_shields: bool = False,
     ) -> None:
         self.network = network
         self.state = state
         self._with_diodes: dict[frozenset[int], Grid] = {conducting: self}
 
         def sibling(conducting: frozenset[int]) -> Grid:
-            return Grid(network, state, copper, is_full=is_full, without=without,
-                        without_batteries=without_batteries, conducting=conducting)  # fmt: skip
+            return Grid(
+                network, state, copper, is_full=is_full, without=without, without_batteries=without_batteries,
+                conducting=conducting, shunts=shunts, with_shields=with_shields,
+            )  # fmt: skip
 
         self._sibling = sibling
         self._diodes = [edge for edge in network.diodes if edge.index not in without]
         self._on = [edge for edge in self._diodes if edge.index in conducting]
-        self._edges = [network.edges[i] for i in live_edges(network, state) if i not in without] + self._on
+        live = [network.edges[i] for i in live_edges(network, state) if i not in without]
+        # A shield has no known resistance: counted on, it would ease the return beside it.
+        self._edges = [e for e in live if with_shields or e.kind is not EdgeKind.SHIELD] + self._on
         self._ohm = {edge.index: copper.resistance_ohm(edge) for edge in self._edges}
         free = ((e.a, e.b) for e in self._edges if self._ohm[e.index] == 0)
         self.place = groups(len(network.posts), free)
@@ -88,6 +95,10 @@ class Grid:
         # Places that conductances join; each island needs one place whose voltage is given.
         self.island = groups(len(network.posts), ((a, b) for a, b, _ in links))
         self.home = self.island[self.place[network.reference]]
+        self.shunts = [draw for draw in shunts if self._is_fed(draw)]
+        links += [
+            (self.place[draw.feed], self.place[draw.back], draw.current_a / draw.nominal_v) for draw in self.shunts
+        ]
         self.factor = Factor(len(network.posts), links, self._grounds())
 
     def _grounds(self) -> list[int]:
@@ -205,14 +216,17 @@ class Grid:
         """
         if not self._diodes:
             return self._solved(draws, feeds)
+        draws, feeds = self._passable(draws, feeds)
         plain = [replace(draw, model=CONSTANT_CURRENT) for draw in draws]
         on = frozenset(edge.index for edge in self._diodes)
         answer: Flow | NoOperatingPoint = NoOperatingPoint(self.state.id, ())
+        tried: set[frozenset[int]] = set()
         for loads in (plain, draws):
             for _ in range(MOST_TURNS):
+                tried.add(on)
                 grid = self.conducting(on)
                 answer = grid._solved(loads, feeds)
-                turned = grid._disagreeing(answer, feeds) if isinstance(answer, Flow) else None
+                turned = grid._disagreeing(answer, on, tried) if isinstance(answer, Flow) else None
                 if turned is None:
                     break
                 on ^= {turned}
@@ -220,19 +234,48 @@ class Grid:
                 return NoOperatingPoint(self.state.id, ())
         return answer
 
-    def _disagreeing(self, flow: Flow, feeds: Sequence[Feed]) -> int | None:
-        """Return the first diode that conducts backward, or blocks what would flow forward."""
-        stranded = {self.island[self.place[feed.out]] for feed in feeds} - self._powered - set(self._inputs)
-        on = {edge.index for edge in self._on}
+    def _passable(self, draws: Sequence[Draw], feeds: Sequence[Feed]) -> tuple[list[Draw], list[Feed]]:
+        """Leave out loads and sources that nothing reaches the right way round, but for arrays.
+
+        While diodes are tried they would be fed backward, and turn those that others need.
+        """
+        at = [self.island[place] for place in self.place]
+
+        def ways(outs: set[int], backs: set[int]) -> tuple[frozenset[int], frozenset[int]]:
+            """Return what current from some islands can come to, and the islands it can come from to some."""
+            giving = {at[self.network.edges[index].a] for index in leading_to(self.network, at, self._powered | backs)}
+            return places_beyond(self.network, at, self._powered | outs), self._powered | backs | giving
+
+        fed, giving = ways({at[feed.out] for feed in feeds}, {at[feed.back] for feed in feeds})
+        drawing = [
+            draw
+            for draw in draws
+            if (at[draw.feed] in fed and at[draw.back] in giving)
+            or (
+                draw.model == RESISTIVE and at[draw.back] in fed and at[draw.feed] in giving
+            )  # turned round, it draws too
+        ]
+        fed, giving = ways({at[draw.back] for draw in drawing}, {at[draw.feed] for draw in drawing})
+        feeding = [f for f in feeds if at[f.out] in self._inputs or (at[f.back] in fed and at[f.out] in giving)]
+        return drawing, feeding
+
+    def _disagreeing(self, flow: Flow, on: frozenset[int], tried: set[frozenset[int]]) -> int | None:
+        """Return the first diode that conducts backward, or blocks what would flow forward.
+
+        Where a diode alone joins two islands, nothing fixes the voltage over it while it blocks: it is
+        turned to see whether it feeds what nothing else does, once with the same others conducting.
+        """
         for edge in self._diodes:
+            a, b = self.place[edge.a], self.place[edge.b]
             above_v = flow.across(edge.a, edge.b) - edge.drop_v
             if edge.index in on:
                 if above_v < -SETTLED_V:
                     return edge.index
-            elif self.place[edge.a] != self.place[edge.b]:
-                is_alone = self.island[self.place[edge.a]] not in self._powered
-                if self.island[self.place[edge.a]] in stranded or (not is_alone and above_v > SETTLED_V):
+            elif self.island[a] != self.island[b]:
+                if on | {edge.index} not in tried:
                     return edge.index
+            elif above_v > SETTLED_V:
+                return edge.index
         return None
 
     def _solved(self, draws: Sequence[Draw], feeds: Sequence[Feed]) -> Flow | NoOperatingPoint:
@@ -255,7 +298,11 @@ class Grid:
                 currents[draw.name] = current_a
                 injected[self.place[draw.feed]] -= current_a
                 injected[self.place[draw.back]] += current_a
-        return Flow(self, self._levelled(self.factor.solve(injected), held), draws, feeds, currents)
+        volts = self._levelled(self.factor.solve(injected), held)
+        for draw in self.shunts:
+            across = volts[self.place[draw.feed]] - volts[self.place[draw.back]]
+            currents[draw.name] = across * draw.current_a / draw.nominal_v
+        return Flow(self, volts, [*draws, *self.shunts], feeds, currents)
 
     def _levelled(self, volts: list[float], held: frozenset[int]) -> list[float]:
         """Lift each island that a converter input holds to the voltage it is held at."""

@@ -1,10 +1,10 @@
-"""Lay out the protection as a ladder: from each bank down, every device with what it faces."""
+"""Lay out the protection as a ladder: from each bank or source down, every device with what it faces."""
 
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass, replace
 
 from checker.boat.hull import Boat
 from checker.boat.parts import Overcurrent
@@ -21,7 +21,8 @@ class Rung:
     """Hold one device on the ladder.
 
     `above` is the bank or the device over it; `serves` are the loads and sources behind it with
-    no other device between. `selective_up_to_a` is None where nothing is asked or known.
+    no other device between, `protects` the conductors there. `selective_up_to_a` is None where
+    nothing is asked or known.
     """
 
     depth: int
@@ -38,6 +39,7 @@ class Rung:
     selective_up_to_a: float | None
     behind_a: float
     is_alone: bool
+    protects: tuple[str, ...] = ()
 
 
 def build_ladder(
@@ -58,6 +60,10 @@ def build_ladder(
             for near, far, arriving in ((edge.a, edge.b, exposure.at_a), (edge.b, edge.a, exposure.at_b)):
                 if arriving:
                     at.setdefault(region[near], []).append((edge.part, near, far))
+    protected: dict[int, list[str]] = {}
+    for index in study.exposures:
+        if network.edges[index].kind is EdgeKind.CONDUCTOR:
+            protected.setdefault(region[network.edges[index].a], []).append(network.edges[index].part)
     served: dict[int, list[str]] = {}
     for load in network.loads:
         served.setdefault(region[load.feed], []).append(load.device)
@@ -66,27 +72,30 @@ def build_ladder(
     pairs = {(pair.upper, pair.lower): (pair, up_to, behind) for pair, up_to, behind, _ in selectivity}
     rungs: list[Rung] = []
     seen: set[str] = set()
-    for bank in sorted({battery.bank for battery in network.batteries}):
-        tops = {region[b.pos] for b in network.batteries if b.bank == bank and not potentials.is_return(b.pos)}
-        waiting = [
-            (1, bank, name, far)
-            for start in sorted(tops, reverse=True)
-            for name, _, far in _largest_last(boat, at.get(start, []))
-        ]
+
+    def hang(top: str, starts: Iterable[int]) -> None:
+        waiting = [(1, top, name, far) for start in starts for name, _, far in _largest_last(boat, at.get(start, []))]
         while waiting:
             depth, above, name, far = waiting.pop()
             if name in seen:
                 continue
             seen.add(name)
-            rungs.append(_rung(boat, network, depth, name, above, served.get(region[far], []), levels, far_ends, pairs))
+            rung = _rung(boat, network, depth, name, above, served.get(region[far], []), levels, far_ends, pairs)
+            rungs.append(replace(rung, protects=tuple(sorted(protected.get(region[far], ())))))
             below = [row for row in at.get(region[far], []) if row[0] not in seen]
-            waiting += [(depth + 1, name, other, onward) for other, _, onward in _largest_last(boat, below)]
+            waiting.extend((depth + 1, name, other, onward) for other, _, onward in _largest_last(boat, below))
+
+    for bank in sorted({battery.bank for battery in network.batteries}):
+        tops = {region[b.pos] for b in network.batteries if b.bank == bank and not potentials.is_return(b.pos)}
+        hang(bank, sorted(tops, reverse=True))
+    for source in network.sources:  # what no bank feeds: a controller's array, the far side of a converter
+        hang(f"{source.device}.{source.post}", [region[source.out]])
     return tuple(rungs)
 
 
 def _largest_last(boat: Boat, rows: list[tuple[str, int, int]]) -> list[tuple[str, int, int]]:
     """Sort devices so that the largest is taken first from the end, then by id."""
-    return sorted(rows, key=lambda row: (_part(boat, row[0]).rating_a, [-ord(c) for c in row[0]]))
+    return sorted(rows, key=lambda row: (-_part(boat, row[0]).rating_a, row[0]), reverse=True)
 
 
 def _part(boat: Boat, device: str) -> Overcurrent:
@@ -118,7 +127,7 @@ def _rung(
         rating_a=part.rating_a,
         part=part.id,
         serves=tuple(sorted(set(serves))),
-        prospective_a=0.0 if levels is None else levels.largest_a(network.index[f"{name}.line"]),
+        prospective_a=max(levels.largest_a(network.index[f"{name}.{end}"]) for end in part.posts) if levels else 0.0,
         interrupting_a=part.interrupting_a,
         far_post=far.post if far else "",
         far_a=far.current_a if far else 0.0,

@@ -8,7 +8,7 @@ converter) fix a net only where no battery does.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import cached_property
 
 from checker.network.graph import BatteryTie, Network, SourceTie
@@ -68,7 +68,15 @@ class Potentials:
 
 
 def study_potentials(network: Network, state: SwitchState) -> Potentials:
-    """Find nets, islands and voltages in one switch state."""
+    """Find nets, islands and voltages in one switch state; states that close the same contacts share them."""
+    key = ("potentials", state.closed)
+    if key not in network.memo:
+        network.memo[key] = _potentials(network, state)
+    found: Potentials = network.memo[key]
+    return found if found.state == state else replace(found, state=state)
+
+
+def _potentials(network: Network, state: SwitchState) -> Potentials:
     live = live_edges(network, state)
     net = places(network, state, ())
     islands = _Islands()

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from functools import cached_property
 
 from checker.boat.hull import Boat
+from checker.boat.parts import Overcurrent
 from checker.network.bank import Bank, study_banks
 from checker.network.buses import BusFlow, study_buses
 from checker.network.conditions import Operation, operations
@@ -124,7 +125,7 @@ class Studies:
     def cut_off_sources(self) -> list[tuple[SourceTie, SwitchState]]:
         """Return the sources that some switch state parts from every battery."""
         sound = [*self.states.every, all_off_state(self.boat)] if not self.boat.switch_rows else self.states.every
-        return cut_off_sources(self.network, self.usual, sound)
+        return cut_off_sources(self.network, sound)
 
     def diverted(self, heavy_a: float) -> list[Diverted]:
         """Return what other paths carry once a heavy return is open."""
@@ -159,9 +160,10 @@ class Studies:
     def far_ends(self) -> dict[str, FarEnd]:
         """Return for each device its far end, in the state where least flows: hot copper, low batteries."""
         worst: dict[str, FarEnd] = {}
+        studied = {p.state: study for p, study in zip(self.potentials, self.exposures, strict=True)}
         for potentials in self._leanest:
             grid = Grid(self.network, potentials.state, self.coppers.hot, is_full=False)
-            for name, far in far_ends(grid, potentials).items():
+            for name, far in far_ends(grid, potentials, studied.get(potentials.state)).items():
                 if name not in worst or far.current_a < worst[name].current_a * (1 - 1e-9):
                     worst[name] = far
         return worst
@@ -189,12 +191,13 @@ class Studies:
         emergency link is closed by hand for minutes: what it would feed is no matter of selectivity.
         """
         worst: dict[tuple[str, str], tuple[Pair, float | None, float, str]] = {}
+        curves = {d.id: curve_of(self.boat, d) for d in self.boat.devices.values() if isinstance(d.part, Overcurrent)}
         rows = zip(self.potentials, self.exposures, self.fault_levels, strict=True)
         for potentials, study, levels in rows:
             if not potentials.state.is_normal:
                 continue
             for pair in device_pairs(self.boat, self.network, potentials, study):
-                upper, lower = (curve_of(self.boat, self.boat.devices[name]) for name in (pair.upper, pair.lower))
+                upper, lower = curves[pair.upper], curves[pair.lower]
                 prospective_a = levels.largest_a(pair.post)
                 up_to_a = None
                 if upper.is_known and lower.is_known and prospective_a:

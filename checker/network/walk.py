@@ -27,17 +27,19 @@ def groups(size: int, pairs: Iterable[tuple[int, int]]) -> list[int]:
     """Return for each of `size` nodes the smallest node that it is joined to by the pairs."""
     parent = list(range(size))
 
-    def root(node: int) -> int:
-        while parent[node] != node:
-            parent[node] = parent[parent[node]]
-            node = parent[node]
-        return node
-
-    for a, b in pairs:
-        first, second = root(a), root(b)
-        if first != second:
-            parent[max(first, second)] = min(first, second)
-    return [root(node) for node in range(size)]
+    for pair in pairs:
+        a, b = pair
+        while parent[a] != a:
+            parent[a] = a = parent[parent[a]]
+        while parent[b] != b:
+            parent[b] = b = parent[parent[b]]
+        if a < b:
+            parent[b] = a
+        elif b < a:
+            parent[a] = b
+    for node in range(size):  # a parent is never larger than its child, so it is final by now
+        parent[node] = parent[parent[node]]
+    return parent
 
 
 def path_between(

@@ -24,7 +24,7 @@ def report_files(result: FleetResult, cards: Mapping[str, Card]) -> dict[str, st
     for subject in result.subjects:
         if subject.is_hull:
             if subject.study not in passes:
-                passes[subject.study] = passes_text(subject.passes, subject.ladder)
+                passes[subject.study] = passes_text(subject.passes, subject.ladder, subject.tightest)
             files[f"{HULL_FOLDER}/{subject.id}.txt"] = hull_report(subject, cards, passes[subject.study])
     return files
 

@@ -81,12 +81,12 @@ def _study(study: Study) -> dict[str, Any]:
         "name": study.name,
         "limit_sets": [_set_use(use) for use in study.sets],
         "found": [_Line(_outcome(outcome)) for outcome in study.news],
-        "protection": [_Line(_rung(rung)) for rung in study.ladder],
+        "protection": [_Line(_rung(rung, study.tightest.get(rung.device))) for rung in study.ladder],
         "passed": _passes(study),
     }
 
 
-def _rung(rung: Rung) -> dict[str, Any]:
+def _rung(rung: Rung, nearest: Outcome | None) -> dict[str, Any]:
     """Return one device of the ladder; what is not known is left out."""
     facts: dict[str, Any] = {
         "device": rung.device, "above": rung.above, "depth": rung.depth, "part": rung.part,
@@ -95,6 +95,9 @@ def _rung(rung: Rung) -> dict[str, Any]:
         "far_end": rung.far_post or None, "far_end_a": _number(rung.far_a or None), "opens_s": _number(rung.opens_s),
         "selective_up_to_a": _number(rung.selective_up_to_a),
     }  # fmt: skip
+    if nearest is not None and nearest.measure is not None:
+        facts["protects"] = nearest.part
+        facts["exposed_a"], facts["allowed_a"] = _number(nearest.measure.value), _number(nearest.measure.limit)
     return {key: value for key, value in facts.items() if value is not None}
 
 
@@ -156,12 +159,18 @@ def _outcome(outcome: Outcome) -> dict[str, Any]:
     return facts
 
 
+SMALLEST = 1e-9
+"""What is less, in any unit, is the rounding of a difference, and would change with a neighbour's cable."""
+
+
 def _number(value: float | None) -> float | str | None:
     """Round a figure so that it prints alike on every machine; JSON has no infinity."""
     if value is None:
         return None
     if value in (float("inf"), float("-inf")):
         return "unlimited"
+    if abs(value) < SMALLEST:
+        return 0
     rounded = float(f"{value:.9g}")
     return int(rounded) if rounded.is_integer() and abs(rounded) < 1e15 else rounded
 

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
+import math
 from collections import Counter
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
-from checker.checks.words import ampere, seconds
+from checker.checks.words import ampere, measured, seconds
 from checker.finding import Card, Outcome, Verdict
 from checker.network.ladder import Rung
 from checker.output.lines import finding_lines, measure_words, same_fault, set_lines
@@ -19,6 +20,7 @@ CAUTION = (
     "edition of a standard and the surveyor decide. Disconnect before working; batteries are for qualified people."
 )
 Cards = Mapping[str, Card]
+EMPTY: Mapping[str, Outcome] = {}
 
 
 def verdict_words(subject: SubjectResult) -> str:
@@ -49,44 +51,64 @@ def count(number: int, word: str) -> str:
 
 def hull_report(subject: SubjectResult, cards: Cards, passes: str | None = None) -> str:
     """Return the text report of one hull or option set; `passes` is its last part where that is written already."""
-    told = passes_text(subject.passes, subject.ladder) if passes is None else passes
+    told = passes_text(subject.passes, subject.ladder, subject.tightest) if passes is None else passes
     return "\n".join([*_head(subject), "", *_news(subject, cards), told])
 
 
-def passes_text(passes: Sequence[Outcome], ladder: Sequence[Rung]) -> str:
+def passes_text(passes: Sequence[Outcome], ladder: Sequence[Rung], tightest: Mapping[str, Outcome]) -> str:
     """Return the part of a report that tells the protection and what passed; alike hulls have it in common."""
-    return "\n".join([*ladder_lines(ladder), *_exemptions(passes), *_looked_at(passes), *_measured(passes), ""])
+    return "\n".join(
+        [*ladder_lines(ladder, tightest), *_exemptions(passes), *_looked_at(passes), *_measured(passes), ""]
+    )
 
 
-def ladder_lines(ladder: Sequence[Rung]) -> Iterator[str]:
+def ladder_lines(ladder: Sequence[Rung], tightest: Mapping[str, Outcome] = EMPTY) -> Iterator[str]:
     """Print the protection from each bank down, a device a line, each under the one above it."""
-    yield from ("", "protection, from each bank down")
-    bank = ""
+    yield from ("", "protection, from each bank or source down")
+    top = ""
     for rung in ladder:
-        if rung.depth == 1 and rung.above != bank:
-            bank = rung.above
-            yield f"  bank {bank}"
-        serves = f"; serves {', '.join(rung.serves)}" if rung.serves else ""
-        facts = "".join(f"; {fact}" for fact in _rung_facts(rung))
-        yield f"{'  ' * (rung.depth + 1)}{rung.device} {ampere(rung.rating_a)} ({rung.part}){serves}{facts}"
+        if rung.depth == 1 and rung.above != top:
+            top = rung.above
+            yield f"  {top}"
+        indent = "  " * (rung.depth + 1)
+        yield indent + "; ".join([f"{rung.device} {ampere(rung.rating_a)} ({rung.part})", *_what(rung, tightest)])
+        facts = "; ".join(_rung_facts(rung))
+        if facts:
+            yield f"{indent}  {rung.device}: {facts}"
+
+
+def _what(rung: Rung, tightest: Mapping[str, Outcome]) -> Iterator[str]:
+    """Tell what a device serves, and how closely it protects: of its conductors the one nearest its limit."""
+    if rung.serves:
+        yield f"serves {', '.join(rung.serves)}"
+    nearest = tightest.get(rung.device)
+    if nearest is not None and nearest.measure is not None:
+        value, limit = measured(nearest.measure)
+        yield f"protects {nearest.part}: {value} of {limit} allowed"
 
 
 def _rung_facts(rung: Rung) -> Iterator[str]:
     if rung.prospective_a:
-        breaks = "not written" if rung.interrupting_a is None else ampere(rung.interrupting_a)
-        yield f"{ampere(round(rung.prospective_a))} can flow, breaks {breaks}"
+        breaks = "capacity not written" if rung.interrupting_a is None else f"breaks {ampere(rung.interrupting_a)}"
+        yield f"{ampere(round(rung.prospective_a))} can flow, {breaks}"
     if rung.far_post:
+        far = f"short at {rung.far_post} draws {ampere(round(rung.far_a))}"
         opens = (
-            "no band"
-            if rung.opens_s is None
-            else ("may never open" if rung.opens_s == float("inf") else f"opens within {seconds(rung.opens_s)}")
-        )
-        yield f"far end {rung.far_post} {ampere(round(rung.far_a))}: {opens}"
+            "no band" if rung.opens_s is None
+            else "may never open" if math.isinf(rung.opens_s)
+            else f"opens within {seconds(rung.opens_s)}"
+        )  # fmt: skip
+        yield f"{far}, {opens}"
     if rung.is_alone:
         yield f"in series with {rung.above}"
     elif rung.selective_up_to_a is not None:
-        total = rung.selective_up_to_a >= rung.behind_a * (1 - 1e-9)
-        yield f"selective under {rung.above} {'in full' if total else 'up to ' + ampere(round(rung.selective_up_to_a))}"
+        if rung.selective_up_to_a >= rung.behind_a * (1 - 1e-9):
+            yield f"selective under {rung.above} in full"
+        elif rung.selective_up_to_a > 0:
+            up_to, behind = ampere(round(rung.selective_up_to_a)), ampere(round(rung.behind_a))
+            yield f"selective under {rung.above} up to {up_to} of {behind}"
+        else:
+            yield f"not selective under {rung.above}"
 
 
 def _head(subject: SubjectResult) -> Iterator[str]:

@@ -4,11 +4,13 @@ from __future__ import annotations
 
 import hashlib
 import json
+import math
 import re
 from collections.abc import Iterable
 from functools import lru_cache
 
 from checker.finding import Outcome, Verdict
+from checker.network.ladder import Rung
 
 FINGERPRINT_RECIPE = "1"
 """Part of every fingerprint, so that a changed recipe shows as changed inputs, never as a match."""
@@ -37,6 +39,29 @@ def natural(text: str) -> tuple[tuple[int, int, str], ...]:
 def news_order(outcomes: Iterable[Outcome]) -> tuple[Outcome, ...]:
     """Return what did not pass: worst news first, then by place, check, part and limit set."""
     return tuple(sorted((o for o in outcomes if o.verdict is not Verdict.PASSED), key=_news_key))
+
+
+PROTECTING = ("device-rating", "size-step", "double-feed")
+
+
+def tightest(ladder: Iterable[Rung], outcomes: Iterable[Outcome]) -> dict[str, Outcome]:
+    """Return for each device of a ladder the conductor it protects that is nearest its limit, or furthest past it."""
+    nearest: dict[str, Outcome] = {}
+    for outcome in outcomes:
+        if outcome.check in PROTECTING and outcome.measure is not None:
+            known = nearest.get(outcome.part)
+            if known is None or _headroom(outcome) < _headroom(known):
+                nearest[outcome.part] = outcome
+    found: dict[str, Outcome] = {}
+    for rung in ladder:
+        protected = [nearest[name] for name in rung.protects if name in nearest]
+        if protected:
+            found[rung.device] = min(protected, key=lambda o: (_headroom(o), natural(o.part)))
+    return found
+
+
+def _headroom(outcome: Outcome) -> float:
+    return -math.inf if outcome.measure is None else (outcome.measure.headroom_fraction or 0.0)
 
 
 def pass_order(outcomes: Iterable[Outcome]) -> tuple[Outcome, ...]:

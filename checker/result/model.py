@@ -2,8 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
-from dataclasses import dataclass
+from collections.abc import Iterable, Mapping
+from dataclasses import dataclass, field
 
 from checker.finding import Level, Outcome, Span, Verdict
 from checker.network.ladder import Rung
@@ -34,6 +34,7 @@ class Study:
     thin: int
     sets: tuple[SetUse, ...]
     ladder: tuple[Rung, ...] = ()
+    tightest: Mapping[str, Outcome] = field(default_factory=dict)
 
 
 @dataclass(frozen=True, slots=True)
@@ -74,6 +75,7 @@ class SubjectResult:
     passes: tuple[Outcome, ...]
     thin: int
     ladder: tuple[Rung, ...]
+    tightest: Mapping[str, Outcome]
     accepted: dict[str, Acceptance]
 
     @property

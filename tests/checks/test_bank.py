@@ -8,11 +8,10 @@ from dataclasses import replace
 
 import pytest
 
-from checker.boat.hull import Boat, Device
+from checker.boat.hull import Boat, Condition, Device
 from checker.checks.bank import alike_batteries, even_shares, inner_landing, string_device
 from checker.finding import Outcome, Verdict
 from tests.builders import (
-    Condition,
     Piece,
     a_battery,
     a_boat,
@@ -126,7 +125,9 @@ def cell(name: str, **facts: object) -> Device:
 def parallel(*cells: Device) -> Boat:
     """Return a boat of batteries side by side on two buses."""
     leads = [
-        a_link(f"{c.id}-{pole}", f"{c.id}.{pole}", bus) for c in cells for pole, bus in (("pos", "BUS-P"), ("neg", "BUS-N"))
+        a_link(f"{c.id}-{pole}", f"{c.id}.{pole}", bus)
+        for c in cells
+        for pole, bus in (("pos", "BUS-P"), ("neg", "BUS-N"))
     ]
     return a_boat(a_bus("BUS-P"), a_bus("BUS-N"), *cells, *leads)
 
@@ -273,7 +274,6 @@ def test_charger_landed_at_an_end_of_the_row_is_sound(battery: str) -> None:
     assert ("inner-landing", "HOUSE", NEITHER) in passed(yard)
 
 
-@pytest.mark.xfail(reason="only conductors are looked at, not devices that stand on a battery's post")
 def test_fuse_that_stands_on_a_post_between_others_of_the_row_is_found() -> None:
     """BNK-05: the alternator lands by its fuse."""
     old = "rating: 80 A, mount: {line: BAT-H.pos}"
@@ -369,6 +369,10 @@ def test_two_strings_of_lead_or_a_device_for_each_string_are_sound(count: int, f
 def test_one_device_for_the_whole_row_does_not_part_its_strings() -> None:
     """BNK-07: three strings meet ahead of the one fuse."""
     boat = strings(3, fused=0)
-    main = [a_fuse("F", 200.0), a_bus("OUT"), a_link("X", "BUS-P", "F.line"), a_conductor("Y", "F.load", "OUT")]
+    main: list[Piece] = [
+        a_fuse("F", 200.0),
+        a_bus("OUT"),
+        a_link("X", "BUS-P", "F.line"),
+        a_conductor("Y", "F.load", "OUT"),
+    ]
     assert found_in(a_boat(*_pieces(boat), *main), string_device) == [("string-device", "HOUSE")]
-

@@ -95,7 +95,9 @@ def test_load_of_constant_power_is_judged_at_the_low_voltage_that_it_sees() -> N
     assert finding(constant_power(yard), "solved-drop", "LIGHTS").state == "condition evening"
 
 
-@pytest.mark.parametrize("gone", ["emf_full: 12.8 V,\n    ", "emf_low: 11.9 V, ", "resistance_full: 4 mohm, ", "resistance_low: 6 mohm, "])
+@pytest.mark.parametrize(
+    "gone", ["emf_full: 12.8 V,\n    ", "emf_low: 11.9 V, ", "resistance_full: 4 mohm, ", "resistance_low: 6 mohm, "]
+)
 def test_battery_without_a_figure_leaves_the_conditions_not_assessed_with_the_fields_to_fill_in(gone: str) -> None:
     yard = SOUND.edit(BATTERY, BATTERY.replace(gone, ""))
     assert found(yard) == []
@@ -250,6 +252,21 @@ def test_condition_that_judges_no_drop_says_nothing_of_it() -> None:
     assert found(yard.edit(loads, f"{loads}    judge_drop: false\n")) == []
 
 
+def test_drop_of_a_starter_that_the_other_bank_cranks_is_counted_from_that_bank() -> None:
+    """CON-09: 2.45 m of 2 AWG, 3.4 m of 2/0 AWG and three fuses lose about 6 % of 12 V at 200 A."""
+    yard = SOUND.also(
+        "devices:\n  SW-X: {part: battery-switch, zone: LOCKER}\n"
+        "  F-X1: {part: bolt-fuse, zone: LOCKER, rating: 150 A, mount: {line: BUS-P}}\n"
+        "  F-X2: {part: bolt-fuse, zone: LOCKER, rating: 150 A, mount: {line: SW-S.out}}\n"
+        "conductors:\n"
+        "  X1: {from: F-X1.load, to: SW-X.in, size: 2 AWG, length: 0.5 m, current: 100 A}\n"
+        "  X2: {from: SW-X.out, to: F-X2.load, size: 2 AWG, length: 0.5 m, current: 100 A}\n"
+        "conditions:\n  emergency:\n    switches: {SW-H: closed, SW-S: open, SW-X: closed}\n"
+        "    loads: {STARTER: 200 A}\n    short_time: 5 s\n"
+    )
+    assert [told for told in found(yard) if told[0] == "solved-drop"] == []
+
+
 # CON-18, LOD-04: the smallest voltage
 
 
@@ -281,10 +298,10 @@ def test_navigation_light_below_its_smallest_voltage_in_the_dark_is_found(least:
 # PAN-01, PAN-05, PAN-07, BNK-09, SRC-03: ratings
 
 
-@pytest.mark.parametrize(("amps", "told"), [("20 A", False), ("19.9 A", False)])
-def test_demand_on_a_panel_within_its_feeder_s_fuse_is_sound(amps: str, told: bool) -> None:
+@pytest.mark.parametrize("amps", ["20 A", "19.9 A"])
+def test_demand_on_a_panel_within_its_feeder_s_fuse_is_sound(amps: str) -> None:
     """PAN-01: 60 A of 60 A."""
-    assert bool(found(galley(amps))) is told
+    assert found(galley(amps)) == []
 
 
 def test_demand_on_a_panel_above_its_feeder_s_fuse_is_found() -> None:
@@ -435,6 +452,7 @@ def test_trunk_circuit_of_the_same_id_as_its_load_stands_for_the_load() -> None:
 
 
 def test_load_named_as_a_source_of_a_condition_is_a_fault_of_the_file() -> None:
-    (fault,) = check_yard(SOUND.edit("sources: {CHARGER: 20 A}", "sources: {STARTER: 20 A}")).file_outcomes
-    assert fault.check == "unknown-id"
-    assert "STARTER" in fault.fault
+    yard = SOUND.edit("sources: {CHARGER: 20 A}", "sources: {STARTER: 20 A}")
+    (fault,) = (o for o in check_yard(yard).file_outcomes if o.check == "unknown-reference")
+    assert fault.fault == "there is no circuit, load or source “STARTER”"
+    assert yard.line(fault.at.file, fault.at.line) == "sources: {STARTER: 20 A}"

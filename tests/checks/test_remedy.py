@@ -58,9 +58,10 @@ LARGE_BREAKER = SOUND.edit("protect: 10 A\n    legend: LIGHTS 10 A", "protect: 3
 THIN_LIGHTS = SOUND.edit("cable: 18 AWG", "cable: 20 AWG")
 LONG_LIGHTS = SOUND.edit("route: [cabin-way]\n    tail: 1 m", "length: 32 ft")
 LONG_BOW_LIGHT = SOUND.edit("length: 16 ft 5 in", "current: 2 A\n    length: 7 m")
-THIN_SENSE = SOUND.edit("service: sense\n    current: 0.1 A", "service: engine\n    always_on: the engine maker leaves it live\n    current: 0.1 A").edit(
-    "to: REGULATOR.sense, size: 16 AWG", "to: REGULATOR.sense, size: 18 AWG"
-)
+THIN_SENSE = SOUND.edit(
+    "service: sense\n    current: 0.1 A",
+    "service: engine\n    always_on: the engine maker leaves it live\n    current: 0.1 A",
+).edit("to: REGULATOR.sense, size: 16 AWG", "to: REGULATOR.sense, size: 18 AWG")
 BACK = "back: {size: 18 AWG, length: 4 m}"
 THIN_BACK = (
     SOUND.edit("cable: 14 AWG", f"cable: 14 AWG\n    bare_tail: 1 in\n    {BACK}")

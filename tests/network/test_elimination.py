@@ -13,6 +13,7 @@ from checker.network.elimination import Factor, NotGroundedError
 
 # From a link of 10 micro-ohm to a sense wire of 100 ohm. The doubles are taken over into fractions exactly.
 SIEMENS = st.floats(-2.0, 5.0).map(lambda exponent: 10.0**exponent)
+CURRENTS_A = st.one_of(st.just(0.0), st.floats(-500.0, -0.001), st.floats(0.001, 500.0))
 # Nothing is subtracted in the elimination, so that no digit is lost however far apart the links are.
 AGREES = 1e-13
 
@@ -48,7 +49,7 @@ def grounded(draw: st.DrawFn) -> Grounded:
     links = [(order[draw(st.integers(0, place - 1))], order[place], draw(SIEMENS)) for place in range(grounds, size)]
     place = st.integers(0, size - 1)
     links += draw(st.lists(st.tuples(place, place, SIEMENS), max_size=8))
-    injected = [draw(st.floats(-500.0, 500.0)) for _ in range(size)]
+    injected = [draw(CURRENTS_A) for _ in range(size)]
     return Grounded(size, tuple(draw(st.permutations(links))), tuple(order[:grounds]), tuple(injected))
 
 
@@ -114,12 +115,26 @@ def test_the_resistance_to_the_ground_is_the_diagonal_of_the_exact_inverse(case:
 @given(grounded(), st.data())
 def test_the_voltages_at_a_few_places_are_the_exact_ones(case: Grounded, data: st.DataObject) -> None:
     place = st.integers(0, case.size - 1)
-    injected = data.draw(st.dictionaries(place, st.floats(-500.0, 500.0), max_size=3))
+    injected = data.draw(st.dictionaries(place, CURRENTS_A, max_size=3))
     wanted = data.draw(st.lists(place, max_size=4))
     whole = Grounded(case.size, case.links, case.grounded, tuple(injected.get(p, 0.0) for p in range(case.size)))
     volts = exact_volts(whole)
     found = case.factor.solve_at(injected, wanted)
     assert {p: found[p] for p in wanted} == {p: volts[p] for p in wanted}
+
+
+@settings(max_examples=100, deadline=None)
+@given(grounded(), st.data())
+def test_the_resistance_between_two_places_is_the_exact_one(case: Grounded, data: st.DataObject) -> None:
+    first, second = data.draw(st.integers(0, case.size - 1)), data.draw(st.integers(0, case.size - 1))
+    inverse = exact_inverse(exact_matrix(case))
+    at = {place: row for row, place in enumerate(case.free)}
+
+    def entry(a: int, b: int) -> Fraction:
+        return inverse[at[a]][at[b]] if a in at and b in at else Fraction(0)
+
+    exact = entry(first, first) + entry(second, second) - 2 * entry(first, second)
+    assert case.factor.resistance_ohm(first, second) == pytest.approx(float(exact), rel=1e-9, abs=0)
 
 
 def test_a_factor_serves_any_number_of_right_hand_sides() -> None:
