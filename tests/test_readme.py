@@ -18,11 +18,11 @@ TODAY = ["--today", "2026-12-01"]
 YARD = dict(re.findall(r"^`([\w/.-]+\.yaml)`\n\n```yaml\n(.*?)^```", README, flags=re.DOTALL | re.MULTILINE))
 QUOTED = re.findall(r"`(fleet_example/[\w/.-]+)`:\n\n```yaml\n(.*?)^```", README, flags=re.DOTALL | re.MULTILINE)
 SHELL = re.findall(r"^```sh\n(.*?)\n```", README, flags=re.DOTALL | re.MULTILINE)
-SHOWN = [
-    line
-    for block in re.findall(r"^```text\n(.*?)\n```", README, flags=re.DOTALL | re.MULTILINE)
-    for line in block.splitlines()
-]
+TEXT = re.findall(
+    r"(?:`(fleet_example/reports/\S+)`:\n\n)?^```text\n(.*?)\n```", README, flags=re.DOTALL | re.MULTILINE
+)
+SHOWN = [line for report, block in TEXT if not report for line in block.splitlines()]
+REPORTED = [(report, line) for report, block in TEXT if report for line in block.splitlines()]
 
 
 def plain(text: str) -> Any:
@@ -90,6 +90,11 @@ def test_every_excerpt_of_the_output_is_printed_for_the_example_fleet(
     printed = set(capsys.readouterr().out.splitlines())
     assert len(SHOWN) == 17
     assert [line for line in SHOWN if line not in printed] == []
+
+
+def test_every_line_that_readme_takes_from_a_report_stands_there() -> None:
+    assert len(REPORTED) == 10
+    assert [line for report, line in REPORTED if line not in (ROOT / report).read_text("utf-8").splitlines()] == []
 
 
 def test_the_hull_that_readme_calls_sound_passes() -> None:

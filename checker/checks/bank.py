@@ -6,10 +6,10 @@ from collections.abc import Iterator
 
 from checker.boat.parts import Battery
 from checker.checks.check import Case, Place, Told, at_conductor, check
-from checker.checks.words import ampere, plain
+from checker.checks.words import BATTERY_FIGURES, ampere, plain
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.limit_set import bank_figures, surge_s
-from checker.network.bank import Bank, has_device, inner_landings, row_links
+from checker.network.bank import Bank, bare_strings, inner_landings, row_links
 from checker.network.flow import Flow, Grid
 from checker.network.solved import Solved
 
@@ -80,9 +80,10 @@ def even_shares(case: Case) -> Iterator[Outcome]:
         condition, current_a, by_string = shares
         equal_a = current_a / len(bank.strings)
         ratio = max(abs(a) for a in by_string.values()) / equal_a if equal_a else 1.0
-        words = ", ".join(f"{name} {ampere(round(a, 1))}" for name, a in sorted(by_string.items()))
+        sign, verb = (1, "give") if sum(by_string.values()) >= 0 else (-1, "take")
+        words = ", ".join(f"{name} {ampere(round(sign * a, 1))}" for name, a in sorted(by_string.items()))
         told = Told(
-            fault=f"of {ampere(round(current_a))} in condition {condition} the strings give {words}",
+            fault=f"of {ampere(round(current_a))} in condition {condition} the strings {verb} {words}",
             remedy="take positive and negative from opposite corners of the row, or lead each string to a bus alike",
             inputs=(("condition", condition), ("shares", words)),
         )
@@ -142,8 +143,12 @@ def inner_landing(case: Case) -> Iterator[Outcome]:
 )
 def bank_links(case: Case) -> Iterator[Outcome]:
     """With each string of a bank out in turn, does every conductor of the bank bear the largest lasting current?"""
-    for bank, _ in _banks(case):
-        links = row_links(case.boat, case.studies.network, bank.id)
+    for bank, place in _banks(case):
+        links = row_links(case.boat, case.studies.network, bank.id) if len(bank.strings) > 1 else []
+        if links and case.studies.conditions.missing:
+            fault = f"EMF or resistance of {', '.join(case.studies.conditions.missing)} is not written"
+            yield bank_links.not_assessed(case, place, fault, BATTERY_FIGURES)
+            continue
         memo = case.studies.network.memo
         if links and ("links", bank.id) not in memo:
             memo["links", bank.id] = _link_currents(case, bank)
@@ -216,7 +221,7 @@ def string_device(case: Case) -> Iterator[Outcome]:
         if len(bank.strings) <= (1 if is_lithium else figures.strings_without_device):
             yield string_device.passed(case, place)
             continue
-        bare = [s[-1] for s in bank.strings if not has_device(case.studies.network, case.studies.usual, s)]
+        bare = bare_strings(case.studies.network, case.studies.usual, bank.strings)
         if not bare:
             yield string_device.passed(case, place)
             continue

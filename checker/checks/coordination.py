@@ -55,8 +55,10 @@ def _by_ratio(case: Case, pair: Pair, place: Place) -> Outcome:
         remedy="a larger ratio of the ratings, or parts with bands",
         inputs=(("upper", ampere(upper.rating_a)), ("lower", ampere(lower.rating_a))),
     )
+    has_bands = upper.band is not None and lower.band is not None
+    note = "by ratio: the batteries have no figures" if has_bands else "by ratio: a part has no band"
     measure = Measure("ratio of ratings", upper.rating_a / lower.rating_a, least, "times", at_least=True)
-    return selectivity.judge(case, place, measure, lambda: told, note="by ratio: a part has no band")
+    return selectivity.judge(case, place, measure, lambda: told, note=note)
 
 
 def _by_bands(case: Case, pair: Pair, place: Place, up_to_a: float, prospective_a: float) -> Outcome:

@@ -9,7 +9,7 @@ from checker.boat.hull import Device
 from checker.boat.parts import Battery, Overcurrent
 from checker.checks.check import Case, Place, Told, check
 from checker.checks.feeding import Kind, feedings
-from checker.checks.words import ampere, plain, seconds
+from checker.checks.words import BATTERY_FIGURES, ampere, plain, seconds
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.formulas import adiabatic, adiabatic_k, study_figures
 from checker.network.coordination import curve_of, withstand_ratio
@@ -29,9 +29,6 @@ def _missing(case: Case) -> str:
     return ", ".join(
         b.device for b in case.studies.network.batteries if b.full is None or b.low is None
     )  # fmt: skip
-
-
-FIELD = "emf_full, emf_low, resistance_full and resistance_low of its batteries"
 
 
 @check(
@@ -55,7 +52,7 @@ def interrupting_capacity(case: Case) -> Iterator[Outcome]:
         place = Place(device.id, device.at_rating, device.circuit)
         if missing:
             yield interrupting_capacity.not_assessed(
-                case, place, f"EMF or resistance of {missing} is not written", FIELD
+                case, place, f"EMF or resistance of {missing} is not written", BATTERY_FIGURES
             )
             continue
         largest_a, words, feeding = _largest(case, device)
@@ -127,6 +124,12 @@ def far_end_clearing(case: Case) -> Iterator[Outcome]:
     """
     limit_s = study_figures().clearing_s
     for device, part in _devices(case):
+        if missing := _missing(case):
+            fault = f"EMF or resistance of {missing} is not written"
+            yield far_end_clearing.not_assessed(
+                case, Place(device.id, device.at_rating, device.circuit), fault, BATTERY_FIGURES
+            )
+            continue
         far = case.studies.far_ends.get(device.id)
         if far is None:
             continue

@@ -10,7 +10,7 @@ from checker.checks.check import Case, Place, Told, at_conductor, check
 from checker.checks.drops import drop_limit, nominal_v
 from checker.checks.remedy import smallest_gauge, together
 from checker.checks.roles import exempt_as
-from checker.checks.words import ampere, percent, plain
+from checker.checks.words import BATTERY_FIGURES, ampere, percent, plain
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.limit_set import surge_s
 from checker.network.conditions import Draw, Feed
@@ -21,7 +21,6 @@ from checker.network.solved import Solved
 from checker.units import awg_size
 
 CIRCUIT_LAWS = "Kirchhoff's laws: ΣI = 0 at every post, V = I·R along every conductor, R = rho·l/A at 30 C"
-NO_BATTERY_DATA = "emf_full, emf_low, resistance_full and resistance_low of its batteries"
 
 
 def _solved(case: Case) -> tuple[Solved, ...]:
@@ -40,7 +39,7 @@ def _unknown(case: Case) -> str:
 
 
 def _missing_field(case: Case) -> str:
-    return NO_BATTERY_DATA if case.studies.conditions.missing else "conditions"
+    return BATTERY_FIGURES if case.studies.conditions.missing else "conditions"
 
 
 @check(

@@ -7,7 +7,7 @@ from collections.abc import Iterator
 from checker.boat.hull import Circuit, Device
 from checker.boat.parts import Load
 from checker.checks.check import Case, Place, Told, check
-from checker.checks.words import ampere, plain
+from checker.checks.words import BATTERY_FIGURES, ampere, plain
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.limit_set import always_on_rule, bank_figures
 from checker.network.losses import Diverted, idle_diodes
@@ -195,7 +195,7 @@ def standby_days(case: Case) -> Iterator[Outcome]:
         days = float("inf") if current_a <= 0 else figures.usable_fraction * bank.capacity_ah / (24 * current_a)
         told = Told(
             fault=f"{ampere(current_a)} with everything off takes half of {plain(bank.capacity_ah)} Ah "
-            f"in {days:.1f} days",
+            f"in {plain(days)} days",
             remedy="less standby, or a larger bank",
             inputs=(("current", ampere(current_a)), ("capacity", f"{bank.capacity_ah:g} Ah")),
         )
@@ -235,11 +235,14 @@ def lost_return(case: Case) -> Iterator[Outcome]:
 
     Returns that have others beside them, bonds, engine blocks and shields included, are opened
     one at a time in the condition in which they carry most: cranking, charging. Loads are taken
-    as resistances, since a motor behind a bad return draws less.
+    as resistances, since a motor behind a bad return draws less. Cranking too is held against
+    the lasting ampacity: nobody mends a return after one start.
     """
-    if case.studies.conditions.missing:
-        return
     rule = always_on_rule()
+    if missing := case.studies.conditions.missing:
+        fault = f"EMF or resistance of {', '.join(missing)} is not written"
+        yield lost_return.not_assessed(case, _at(case.boat.devices[missing[0]]), fault, BATTERY_FIGURES)
+        return
     by_opened: dict[str, list[tuple[float, Diverted, float]]] = {}
     for diverted in case.studies.diverted(rule.heavy_return_a):
         limit_a = _limit_a(case, diverted.part, rule.shield_a)

@@ -7,6 +7,9 @@ import math
 from checker.finding import Measure
 from checker.units import foot_from_metre, inch_from_metre
 
+BATTERY_FIGURES = "emf_full, emf_low, resistance_full and resistance_low of its batteries"
+"""What a solved network needs of every battery: the fields to fill in."""
+
 
 def ampere(value_a: float) -> str:
     """Print a current: 7.5 A, 250 A, unlimited."""

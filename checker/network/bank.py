@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from checker.boat.hull import Boat
 from checker.boat.parts import Battery, Bus
 from checker.network.graph import BatteryTie, EdgeKind, Network
 from checker.network.potentials import Potentials
+from checker.network.states import live_edges, places
 
 
 @dataclass(frozen=True, slots=True)
@@ -108,21 +110,47 @@ def row_links(boat: Boat, network: Network, bank: str) -> list[str]:
     return found
 
 
-def has_device(network: Network, potentials: Potentials, string: tuple[str, ...]) -> bool:
-    """Tell whether an overcurrent device stands at the top of a string, before it meets other strings."""
-    top = next(b for b in network.batteries if b.device == string[-1])
-    seen, waiting = {top.pos}, [top.pos]
-    others = {p for b in network.batteries if b.device != top.device for p in (b.pos,)}
+def bare_strings(network: Network, potentials: Potentials, strings: Sequence[tuple[str, ...]]) -> tuple[str, ...]:
+    """Return the top batteries of strings that no overcurrent device of their own parts from the other strings.
+
+    Posts with no device between them are one place. A string has a device of its own where its
+    place has no other string's top and one device alone leads from it to the others; with two
+    strings and one device between them, the string on the side of the loads is bare.
+    """
+    place = places(network, potentials.state, (EdgeKind.DEVICE,))
+    at: dict[int, list[tuple[int, int]]] = {}
+    for index in live_edges(network, potentials.state):
+        edge = network.edges[index]
+        if edge.kind is EdgeKind.DEVICE and place[edge.a] != place[edge.b]:
+            at.setdefault(place[edge.a], []).append((index, place[edge.b]))
+            at.setdefault(place[edge.b], []).append((index, place[edge.a]))
+
+    def passing(where: int) -> tuple[float, int]:
+        """Return what the devices of a place pass together; of two alike the place of the later post counts."""
+        return sum(network.edges[index].rating_a for index, _ in at[where]), where
+
+    tops = {b.device: place[b.pos] for b in network.batteries}
+    names = [string[-1] for string in strings]
+    bare: list[str] = []
+    for name in names:
+        own = tops[name]
+        others = {tops[other] for other in names if other != name}
+        leading = [far for _, far in at.get(own, ()) if _reaches(at, far, others, own)]
+        is_beside_loads = len(leading) == 1 and leading[0] in others and passing(own) > passing(leading[0])
+        if own in others or len(leading) > 1 or is_beside_loads:
+            bare.append(name)
+    return tuple(bare)
+
+
+def _reaches(at: Mapping[int, list[tuple[int, int]]], start: int, goals: set[int], without: int) -> bool:
+    """Tell whether one of some places is reached over devices, not through one place."""
+    seen, waiting = {start, without}, [start]
     while waiting:
-        node = waiting.pop()
-        for edge in network.edges:
-            if node not in (edge.a, edge.b):
-                continue
-            far = edge.other(node)
-            if edge.kind is EdgeKind.DEVICE or far in seen:
-                continue
-            if far in others:
-                return False
-            seen.add(far)
-            waiting.append(far)
-    return True
+        here = waiting.pop()
+        if here in goals:
+            return True
+        for _, far in at.get(here, ()):
+            if far not in seen:
+                seen.add(far)
+                waiting.append(far)
+    return False

@@ -212,12 +212,12 @@ class Grid:
 
         One diode is turned at a time, the first that disagrees: Murty's least-index method,
         which ends for resistances in series with diodes (K. G. Murty, Math. Programming 7, 1974).
-        Which conduct is first found with every load at its given current.
+        Which conduct is first found with loads of constant power at their given current.
         """
         if not self._diodes:
             return self._solved(draws, feeds)
         draws, feeds = self._passable(draws, feeds)
-        plain = [replace(draw, model=CONSTANT_CURRENT) for draw in draws]
+        plain = [replace(draw, model=CONSTANT_CURRENT) if draw.model == CONSTANT_POWER else draw for draw in draws]
         on = frozenset(edge.index for edge in self._diodes)
         answer: Flow | NoOperatingPoint = NoOperatingPoint(self.state.id, ())
         tried: set[frozenset[int]] = set()
@@ -247,17 +247,15 @@ class Grid:
             return places_beyond(self.network, at, self._powered | outs), self._powered | backs | giving
 
         fed, giving = ways({at[feed.out] for feed in feeds}, {at[feed.back] for feed in feeds})
-        drawing = [
-            draw
-            for draw in draws
-            if (at[draw.feed] in fed and at[draw.back] in giving)
-            or (
-                draw.model == RESISTIVE and at[draw.back] in fed and at[draw.feed] in giving
-            )  # turned round, it draws too
-        ]
-        fed, giving = ways({at[draw.back] for draw in drawing}, {at[draw.feed] for draw in drawing})
+        ends = [(draw, at[draw.feed], at[draw.back]) for draw in draws]
+        ends += [
+            (draw, back, feed) for draw, feed, back in ends if draw.model == RESISTIVE
+        ]  # it draws either way round
+        ends = [(draw, feed, back) for draw, feed, back in ends if feed in fed and back in giving]
+        drawing = {draw.name for draw, _, _ in ends}
+        fed, giving = ways({back for _, _, back in ends}, {feed for _, feed, _ in ends})
         feeding = [f for f in feeds if at[f.out] in self._inputs or (at[f.back] in fed and at[f.out] in giving)]
-        return drawing, feeding
+        return [draw for draw in draws if draw.name in drawing], feeding
 
     def _disagreeing(self, flow: Flow, on: frozenset[int], tried: set[frozenset[int]]) -> int | None:
         """Return the first diode that conducts backward, or blocks what would flow forward.

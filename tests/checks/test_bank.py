@@ -208,7 +208,7 @@ def test_both_leads_from_one_end_of_a_row_are_found_at_the_bank() -> None:
     told = finding(yard, "even-shares", "HOUSE")
     assert told.measure is not None
     assert told.measure.value == pytest.approx(1 + 0.54 / 4.54, abs=0.002)
-    assert told.fault == "of 47 A in condition under-way the strings give BAT-H -26.4 A, BAT-H2 -20.9 A"
+    assert told.fault == "of 47 A in condition under-way the strings take BAT-H 26.4 A, BAT-H2 20.9 A"
 
 
 @pytest.mark.parametrize("facts", [("0.2 m", False), ("0.25 m", True)], ids=["shorter links", "opposite corners"])

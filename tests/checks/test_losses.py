@@ -300,7 +300,7 @@ def test_standby_that_empties_half_the_bank_within_ten_days_is_found_at_the_bank
     """LOD-09: 50 Ah / (24 h x 0.209 A) = 9.97 days."""
     assert found(standing_by("0.204 A")) == [STANDBY]
     fault = finding(standing_by("0.215 A"), "standby-days", "HOUSE").fault
-    assert fault == "0.22 A with everything off takes half of 100 Ah in 9.5 days"
+    assert fault == "0.22 A with everything off takes half of 100 Ah in 9.47 days"
 
 
 def test_standby_that_leaves_half_the_bank_for_ten_days_is_sound() -> None:

@@ -36,8 +36,6 @@ def test_battery_linked_in_reverse_is_found_with_the_loop_that_shows_it() -> Non
     # 3.2 kA run round the loop and leave next to no voltage: no fuse would open, and the plotter is dark.
     held = ("F-ALT", "F-CHARGER", "F-MAIN", "F-MONITOR", "F-PANEL", "F-SENSE", "P1", "P2", "P3", "P4", "P5")
     assert [told[:2] for told in found(yard)] == [
-        ("bank-links", "L1"),
-        ("bank-links", "L2"),
         ("battery-loop", "BAT-H2"),
         *(("far-end-clearing", device) for device in held),
         ("minimum-voltage", "PLOTTER.load"),
@@ -71,7 +69,6 @@ def test_link_between_both_posts_of_a_battery_is_found_as_a_dead_short() -> None
     line = "BAT-X: {part: start-battery, zone: LOCKER, bank: SPARE}"
     link = f"L1: {{from: BAT-X.pos, to: BAT-X.neg, length: 2 in, {BANK}}}"
     assert found(yard) == [
-        ("bank-links", "L1", BOTH, link),
         ("dead-short", "BAT-X", NEITHER, line),
         ("solved-ampacity", "L1", BOTH, link),  # what a short circuit carries, no gauge bears
     ]

@@ -23,7 +23,7 @@ TOLD_BY_DEVICE_RATING = {"size-step", "double-feed"}
 """They single out two causes of one measure; where it holds, device-rating tells the pass."""
 LAW_ALONE = {"ignition-protection"}
 PRACTICE_ALONE = {"insulation-rating", "solved-drop", "voltage-drop", "voltage-drop-from-bank"}
-NOTHING_TO_JUDGE = {"diode-way", "even-shares", "lost-return", "pump-stays-live"}
+NOTHING_TO_JUDGE = {"bank-links", "diode-way", "even-shares", "lost-return", "pump-stays-live"}
 """The small yard has no batteries in parallel, no returns beside each other, no diode and no bilge pump."""
 
 

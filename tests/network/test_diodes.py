@@ -130,19 +130,25 @@ class Answer:
     currents_a: dict[int, float]
     power_v: float | None
 
-    def backward(self, diodes: Iterable[Edge]) -> list[str]:
-        """Return the diodes that disagree: that conduct backward or block what would flow forward."""
-        return [
-            edge.part
-            for edge in diodes
-            if (edge.index in self.conducting and self.currents_a[edge.index] < -BACKWARD_A)
-            or (edge.index not in self.conducting and self._above_v(edge) > FORWARD_V)
-        ]
+    def has_all_agreeing(self, diodes: Iterable[Edge]) -> bool:
+        """Tell whether none conducts backward, and none blocks what would flow forward.
 
-    def _above_v(self, edge: Edge) -> float:
-        if self.island[edge.a] != self.island[edge.b]:
-            return 0.0  # nothing fixes the voltage between them
-        return self.volts[edge.a] - self.volts[edge.b] - edge.drop_v
+        Between islands nothing fixes the voltage: they must have some voltages at which all diodes
+        between them block. Each is an upper bound of a difference; a negative cycle contradicts itself.
+        """
+        bounds: nx.DiGraph[Any] = nx.DiGraph()
+        for edge in diodes:
+            if edge.index in self.conducting:
+                if self.currents_a[edge.index] < -BACKWARD_A:
+                    return False
+                continue
+            ends = self.island[edge.b], self.island[edge.a]
+            below_v = edge.drop_v - (self.volts[edge.a] - self.volts[edge.b]) + FORWARD_V
+            if ends[0] == ends[1] and below_v < 0:
+                return False
+            if not bounds.has_edge(*ends) or below_v < bounds.edges[ends]["weight"]:
+                bounds.add_edge(*ends, weight=below_v)
+        return not nx.negative_edge_cycle(bounds)
 
 
 def dense(matrix: list[list[Fraction]], right: list[Fraction]) -> list[Fraction]:
@@ -176,6 +182,7 @@ class Dense:
         self._place = joined(size, ((e.a, e.b) for e in self.edges if not self._ohm[e.index]))
         self.island = joined(size, [*((e.a, e.b) for e in self.edges), *((b.pos, b.neg) for b, _ in self._cells)])
         self._powered = {self.island[b.pos] for b, _ in self._cells}
+        self._reached = within_reach(case)
 
     def _is_live(self, edge: Edge) -> bool:
         if edge.kind is EdgeKind.DIODE:
@@ -218,33 +225,42 @@ class Dense:
             right[ground] = Fraction(0)
         return dense(matrix, right)
 
-    def answer(self) -> Answer | None:
-        """Return the answer; None where a load of constant power has no working point."""
-        loads = [draw for draw in self._case.draws if self._serves(draw.feed, draw.back)]
+    def answers(self) -> list[Answer]:
+        """Return the answer: two, or none, where a load of constant power has as many working points."""
+        loads = [d for d in self._case.draws if self._serves(d.feed, d.back) and d.name in self._reached]
         feeds = [feed for feed in self._case.feeds if self._serves(feed.out, feed.back)]
         given = [(f.out, f.back, f.current_a) for f in feeds]
         given += [(d.back, d.feed, d.current_a) for d in loads if d.model == CONSTANT_CURRENT]
+        served = frozenset([*(draw.name for draw in loads), *(feed.name for feed in feeds)])
         volts = self._volts(given, loads, at_rest=False)
-        power_v: float | None = None
         powers = [draw for draw in loads if draw.model == CONSTANT_POWER and draw.current_a]
         assert len(powers) <= 1, "the quadratic equation is that of one load"
-        for draw in powers:
-            unit = self._volts([(draw.feed, draw.back, 1.0)], loads, at_rest=True)
-            feed, back = self._place[draw.feed], self._place[draw.back]
-            ohm, open_v = unit[feed] - unit[back], volts[feed] - volts[back]
-            rest = open_v**2 - 4 * ohm * Fraction(draw.current_a) * Fraction(draw.nominal_v)
-            if rest < 0 or open_v < 0:
-                return None
-            power_v = (float(open_v) + math.sqrt(rest)) / 2
-            amps = Fraction(draw.current_a * draw.nominal_v / power_v)
-            volts = [v - amps * u for v, u in zip(volts, unit, strict=True)]
+        if not powers:
+            return [self._answer(volts, served, None)]
+        (draw,) = powers
+        unit = self._volts([(draw.feed, draw.back, 1.0)], loads, at_rest=True)
+        feed, back = self._place[draw.feed], self._place[draw.back]
+        ohm, open_v = unit[feed] - unit[back], volts[feed] - volts[back]
+        power_w = Fraction(draw.current_a) * Fraction(draw.nominal_v)
+        rest = open_v**2 - 4 * ohm * power_w
+        if rest < 0 or open_v <= 0:
+            return []
+        found = []
+        for root in (1, -1):
+            power_v = (float(open_v) + root * math.sqrt(rest)) / 2
+            if power_v > 0:
+                amps = power_w / Fraction(power_v)
+                fed = [v - amps * u for v, u in zip(volts, unit, strict=True)]
+                found.append(self._answer(fed, served, power_v))
+        return found
+
+    def _answer(self, volts: list[Fraction], served: frozenset[str], power_v: float | None) -> Answer:
         at = [volts[place] for place in self._place]
         currents = {
             e.index: float((at[e.a] - at[e.b] - Fraction(e.drop_v)) / self._ohm[e.index])
             for e in self.edges
             if self._ohm[e.index]
         }
-        served = frozenset([*(draw.name for draw in loads), *(feed.name for feed in feeds)])
         return Answer(self._conducting, [float(v) for v in at], self.island, served, currents, power_v)
 
 
@@ -256,36 +272,49 @@ def within_reach(case: Case) -> set[str]:
     """Return the loads that a battery or a source reaches through diodes the right way round, and that lead back."""
     graph: nx.DiGraph[Any] = nx.DiGraph()
     graph.add_nodes_from(range(len(case.network.posts)))
-    live = Dense(case, frozenset(edge.index for edge in case.network.diodes), is_full=True).edges
-    pairs = [(edge.a, edge.b) for edge in live] + [(battery.neg, battery.pos) for battery in case.network.batteries]
-    graph.add_edges_from(pairs)
-    one_way = {(edge.a, edge.b) for edge in case.network.diodes}
-    graph.add_edges_from((b, a) for a, b in pairs if (a, b) not in one_way)
-    sources = {b.pos for b in case.network.batteries} | {feed.out for feed in case.feeds}
-    sinks = {b.pos for b in case.network.batteries} | {feed.back for feed in case.feeds}
+    for edge in case.network.edges:
+        ends = (case.network.posts[post].rsplit(".", 1)[-1] for post in (edge.a, edge.b))
+        if edge.kind is not EdgeKind.CONTACT or (edge.part, *ends) in case.state.closed:
+            graph.add_edge(edge.a, edge.b)
+            if edge.kind is not EdgeKind.DIODE:
+                graph.add_edge(edge.b, edge.a)
+    for battery in case.network.batteries:
+        graph.add_edges_from([(battery.neg, battery.pos), (battery.pos, battery.neg)])
+    starts = {b.pos for b in case.network.batteries} | {feed.out for feed in case.feeds}
+    goals = {b.pos for b in case.network.batteries} | {feed.back for feed in case.feeds}
+    fed = starts.union(*(nx.descendants(graph, post) for post in starts))
+    giving = goals.union(*(nx.ancestors(graph, post) for post in goals))
     return {
         draw.name
         for draw in case.draws
-        if draw.current_a
-        and any(nx.has_path(graph, source, draw.feed) for source in sources)
-        and any(nx.has_path(graph, draw.back, sink) for sink in sinks)
+        if (draw.feed in fed and draw.back in giving)
+        or (draw.model == RESISTIVE and draw.back in fed and draw.feed in giving)
     }
 
 
-def consistent(case: Case, *, is_full: bool) -> list[Answer]:
+def agreeing(case: Case, *, is_full: bool) -> list[Answer]:
     """Return the answers with which all their diodes agree, of those that serve most loads and sources."""
     diodes = [edge.index for edge in case.network.diodes]
     sets = itertools.chain.from_iterable(itertools.combinations(diodes, n) for n in range(len(diodes) + 1))
-    answers = [Dense(case, frozenset(chosen), is_full=is_full).answer() for chosen in sets]
-    agreeing = [a for a in answers if a is not None and not a.backward(case.network.diodes)]
-    agreeing = [a for a in agreeing if not any(a.served < other.served for other in agreeing)]
-    reached = within_reach(case)
-    if any(draw.name in reached and draw.name not in a.served for a in agreeing for draw in case.draws):
-        return []  # its source gives less than it asks, or it asks for more power than there is
-    if not any(a.power_v for a in agreeing):
-        return agreeing
-    best = max(a.power_v or 0.0 for a in agreeing)  # the working point is the one with most voltage
-    return [a for a in agreeing if a.power_v and a.power_v > best - FORWARD_V]
+    answers = [answer for some in sets for answer in Dense(case, frozenset(some), is_full=is_full).answers()]
+    answers = [answer for answer in answers if answer.has_all_agreeing(case.network.diodes)]
+    answers = [answer for answer in answers if not any(answer.served < other.served for other in answers)]
+    asking = {draw.name for draw in case.draws if draw.current_a} & within_reach(case)
+    # Else a source gives less than its load asks, or a load asks for more power than there is.
+    return answers if all(asking <= answer.served for answer in answers) else []
+
+
+def consistent(case: Case, *, is_full: bool) -> list[Answer]:
+    """Return the answers that agree; of several working points that with most voltage."""
+    answers = agreeing(case, is_full=is_full)
+    best = max((answer.power_v for answer in answers if answer.power_v), default=0.0)
+    return [answer for answer in answers if not best or (answer.power_v and answer.power_v > best - FORWARD_V)]
+
+
+def has_one_working_point(case: Case, *, is_full: bool) -> bool:
+    """Tell whether a load of constant power has a single working point above half its nominal voltage."""
+    answers = [answer for answer in agreeing(case, is_full=is_full) if answer.power_v is None or answer.power_v >= 6]
+    return bool(answers) and is_one(answers)
 
 
 def relative(pairs: Iterable[tuple[float, float]], settled: float = UNSETTLED_A) -> float:
@@ -522,7 +551,7 @@ def check_with_ngspice(cases: Sequence[Case]) -> None:
     rows = []
     for case, is_full in itertools.product(cases, (True, False)):
         flow = case.grid(is_full=is_full).solve(case.draws, case.feeds)
-        if isinstance(flow, Flow):
+        if isinstance(flow, Flow) and has_one_working_point(case, is_full=is_full):
             rows.append((flow, netlist_of(case, flow, is_full=is_full)))
     if rows:
         for (flow, netlist), found in zip(rows, solved_by_ngspice([n for _, n in rows]), strict=True):

@@ -101,8 +101,8 @@ RUNG = Rung(
 
 def facts_of(**facts: Any) -> list[str]:
     """Return the parts of a rung's line, its name and rating first."""
-    head, *facts = list(ladder_lines([replace(RUNG, **facts)]))[3:]
-    return [part for line in (head, *facts) for part in line.strip().removeprefix("F1: ").split("; ")]
+    lines = list(ladder_lines([replace(RUNG, **facts)]))[3:]
+    return [part for line in lines for part in line.strip().removeprefix("F1: ").split("; ")]
 
 
 @pytest.mark.parametrize(
