@@ -582,6 +582,7 @@ def _condition(shop: _Workshop, row: Entry) -> Condition:
         closed=closed,
         loads_a=_currents(shop, row, "loads"),
         sources_a=_currents(shop, row, "sources"),
+        holds_v=_held(row),
         short_time_s=row.number("short_time", Dimension.TIME),
         judges_drop=row.flag("judge_drop", default=True),
         at=row.at(),
@@ -598,6 +599,19 @@ def _currents(shop: _Workshop, row: Entry, name: str) -> tuple[tuple[str, float]
         current_a = row.quantity_at((name, key), value, Dimension.CURRENT)
         if current_a is not None:
             found.append((key, current_a))
+    return tuple(found)
+
+
+def _held(row: Entry) -> tuple[tuple[str, float], ...]:
+    """Read the voltages that sources hold; each must have its largest current under `sources`."""
+    found: list[tuple[str, float]] = []
+    for key, value in sorted(row.fields("holds").items()):
+        if key not in row.fields("sources"):
+            row.unknown("source with a current under `sources`", key, row.key_at("holds", key), row.fields("sources"))
+            continue
+        volts = row.quantity_at(("holds", key), value, Dimension.VOLTAGE)
+        if volts:
+            found.append((key, volts))
     return tuple(found)
 
 

@@ -138,13 +138,17 @@ class SwitchRow:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Condition:
-    """Describe an operating state: switches set, contactors closed, what draws and what feeds."""
+    """Describe an operating state: switches set, contactors closed, what draws and what feeds.
+
+    A source in `holds_v` gives no more than holds that voltage at its output.
+    """
 
     id: str
     switches: tuple[tuple[str, str], ...]
     closed: tuple[str, ...]
     loads_a: tuple[tuple[str, float], ...]
     sources_a: tuple[tuple[str, float], ...]
+    holds_v: tuple[tuple[str, float], ...] = ()
     short_time_s: float | None = None
     judges_drop: bool = True
     at: Span = field(default=NOWHERE, compare=False, repr=False)

@@ -77,7 +77,7 @@ def _by_bands(case: Case, pair: Pair, place: Place, up_to_a: float, prospective_
 @check(
     title="A branch device is no larger than the one above it",
     basis=Basis.COMMON_PRACTICE,
-    citation="common practice, no source",
+    citation="common practice, no source: In,lower ≤ In,upper",
     why="the main opens first, and the branch is not protected at its value",
     level=Level.WARNING,
     catalogue=("PRO-13",),
@@ -103,7 +103,8 @@ def rating_order(case: Case) -> Iterator[Outcome]:
 @check(
     title="A device carries its load, and lets it start",
     basis=Basis.COMMON_PRACTICE,
-    citation="common practice, no source; starting: t_min(I_peak/In) ≥ the starting time by the device's band",
+    citation="common practice, no source: I_load ≤ In; starting: "
+    "t_min(I_peak/In) ≥ the starting time by the device's band",
     why="nuisance trips: the crew fits a bigger fuse",
     level=Level.WARNING,
     catalogue=("PRO-14", "PRO-19"),

@@ -224,7 +224,8 @@ def _standby_a(case: Case, bank: str) -> float | None:
 @check(
     title="One loose return sends no heavy current through a thin path",
     basis=Basis.COMMON_PRACTICE,
-    citation="common practice, no source; 33 CFR § 183.415 gives the reason for twin engines",
+    citation="common practice, no source; 33 CFR § 183.415 gives the reason for twin engines; ΣI = 0 at every post, "
+    "V = I·R, each load as R = V/I; then |I| ≤ the ampacity of each path",
     why="the classic burnt charger lead or instrument wire after a loose engine ground",
     level=Level.WARNING,
     catalogue=("RET-11",),

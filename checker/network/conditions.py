@@ -10,6 +10,8 @@ from checker.network.graph import Network
 from checker.network.states import SwitchState
 
 CONSTANT_CURRENT, CONSTANT_POWER, RESISTIVE = "constant-current", "constant-power", "resistive"
+HOLDING = "holding"
+"""A source that holds its voltage: no model of a load, but solved like one of negative current."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -26,12 +28,16 @@ class Draw:
 
 @dataclass(frozen=True, slots=True)
 class Feed:
-    """Hold one source in one condition: current out of its post, back into its return."""
+    """Hold one source in one condition: current out of its post, back into its return.
+
+    With `holds_v` the current is the most that it gives: it gives no more than holds that voltage.
+    """
 
     name: str
     out: int
     back: int
     current_a: float
+    holds_v: float | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -51,7 +57,10 @@ def operations(boat: Boat, network: Network) -> tuple[Operation, ...]:
             condition,
             condition_state(boat, condition),
             tuple(_draw(boat, network, name, amps) for name, amps in condition.loads_a),
-            tuple(_feed(boat, network, name, amps) for name, amps in condition.sources_a),
+            tuple(
+                _feed(boat, network, name, amps, dict(condition.holds_v).get(name))
+                for name, amps in condition.sources_a
+            ),
         )
         for condition in boat.conditions.values()
     )
@@ -94,10 +103,11 @@ def _draw(boat: Boat, network: Network, name: str, current_a: float) -> Draw:
     return Draw(name, *ends, current_a, entry.voltage_v, CONSTANT_CURRENT)
 
 
-def _feed(boat: Boat, network: Network, name: str, current_a: float) -> Feed:
+def _feed(boat: Boat, network: Network, name: str, current_a: float, holds_v: float | None) -> Feed:
     owner = name if name in boat.devices else name.rsplit(".", 1)[0]
     part = boat.devices[owner].part
     assert isinstance(part, Source)
     post = part.outputs[0].post if name == owner else name.rsplit(".", 1)[1]
     end = next(end for end in part.outputs if end.post == post)
-    return Feed(name, network.index[f"{owner}.{post}"], network.index[f"{owner}.{end.return_post}"], current_a)
+    ends = network.index[f"{owner}.{post}"], network.index[f"{owner}.{end.return_post}"]
+    return Feed(name, *ends, current_a, holds_v)

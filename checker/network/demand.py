@@ -7,7 +7,7 @@ banks share an island, or diodes lead to several, each is bounded by the sum of 
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 
 from checker.network.conditions import Operation
@@ -40,22 +40,34 @@ def bank_currents(network: Network, operations: Sequence[Operation]) -> tuple[Ba
 
 
 def _in_condition(network: Network, operation: Operation, potentials: Potentials) -> list[BankCurrent]:
-    drawn: dict[int, float] = {}
+    banks_at = {net for _, net in _bank_nets(network, potentials)}
+    least: dict[int, float] = {}
+    most: dict[int, float] = {}
+
+    def add(nets: Iterable[int], low_a: float, high_a: float) -> None:
+        """Add what a bank may have to give; where several may, each gives all or nothing."""
+        several = len(banks_at.intersection(nets)) > 1
+        for net in nets:
+            least[net] = least.get(net, 0.0) + (min(0.0, low_a) if several else low_a)
+            most[net] = most.get(net, 0.0) + (max(0.0, high_a) if several else high_a)
+
     for draw in operation.draws:
-        for net in _behind(network, potentials, potentials.net[draw.feed]):
-            drawn[net] = drawn.get(net, 0.0) + draw.current_a
+        add(_behind(network, potentials, potentials.net[draw.feed]), draw.current_a, draw.current_a)
     for feed in operation.feeds:
-        for net in places_beyond(network, potentials.net, [potentials.net[feed.out]]):
-            drawn[net] = drawn.get(net, 0.0) - feed.current_a
+        beyond = places_beyond(network, potentials.net, [potentials.net[feed.out]])
+        add(beyond, -feed.current_a, -feed.current_a if feed.holds_v is None else 0.0)
     tops: dict[int, set[str]] = {}
     for bank, net in _bank_nets(network, potentials):
         tops.setdefault(net, set()).add(bank)
     condition = operation.condition
-    return [
-        BankCurrent(bank, condition.id, abs(drawn.get(net, 0.0)), condition.short_time_s, len(banks) > 1)
-        for net, banks in sorted(tops.items())
-        for bank in sorted(banks)
-    ]
+    found: list[BankCurrent] = []
+    for net, banks in sorted(tops.items()):
+        low_a, high_a = least.get(net, 0.0), most.get(net, 0.0)
+        is_bound = len(banks) > 1 or low_a != high_a
+        for bank in sorted(banks):
+            current_a = max(abs(low_a), abs(high_a))
+            found.append(BankCurrent(bank, condition.id, current_a, condition.short_time_s, is_bound))
+    return found
 
 
 def _behind(network: Network, potentials: Potentials, net: int) -> set[int]:

@@ -16,7 +16,7 @@ from checker.network.exposure import ExposureStudy
 from checker.network.flow import Grid
 from checker.network.graph import BatteryTie, Edge, EdgeKind, Network
 from checker.network.potentials import Potentials
-from checker.network.states import SwitchState, places, places_beyond
+from checker.network.states import SwitchState, leading_to, places, places_beyond
 from checker.network.walk import Neighbours, neighbours
 
 OPENING = (EdgeKind.DEVICE,)
@@ -38,6 +38,8 @@ class FaultLevels:
                 asked.setdefault(id(feeding), (feeding, []))[1].append(post)
         for feeding, posts in asked.values():
             self._find(feeding, posts)
+            if feeding is not grid:  # a weak fault may leave a diode blocking that would draw the voltage down
+                self._find(grid, posts)
         self._charging = self._charging_by_net()
 
     def _find(self, grid: Grid, posts: list[int]) -> None:
@@ -72,17 +74,15 @@ class FaultLevels:
         return level + self._charging.get(self._potentials.net[post], 0.0) if level else 0.0
 
     def batteries(self, post: int) -> tuple[str, ...]:
-        """Return the batteries whose net feeds a post."""
-        net = self._potentials.net[post]
+        """Return the batteries whose net feeds a post, through diodes too."""
+        network, net = self._grid.network, self._potentials.net
+        feeding = {net[post]} | {net[network.edges[i].a] for i in leading_to(network, net, [net[post]])}
+        # A battery that stands lower in a string feeds what the top of its bank does.
+        banks = {tie.bank for tie, _ in self._grid.cells if net[tie.pos] in feeding}
         return tuple(
             tie.device for tie, _ in self._grid.cells
-            if net in (self._potentials.net[tie.pos], self._potentials.net[tie.neg]) or self._is_below(tie, net)
+            if tie.bank in banks or {net[tie.pos], net[tie.neg]} & feeding
         )  # fmt: skip
-
-    def _is_below(self, tie: BatteryTie, net: int) -> bool:
-        """Tell whether a battery stands lower in the string of a bank whose top is on a net."""
-        tops = {t.bank for t, _ in self._grid.cells if self._potentials.net[t.pos] == net}
-        return tie.bank in tops
 
 
 def _bottoms(grid: Grid, potentials: Potentials) -> list[BatteryTie]:

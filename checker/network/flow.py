@@ -16,7 +16,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from functools import cached_property
 
-from checker.network.conditions import CONSTANT_CURRENT, CONSTANT_POWER, RESISTIVE, Draw, Feed
+from checker.network.conditions import CONSTANT_CURRENT, CONSTANT_POWER, HOLDING, RESISTIVE, Draw, Feed
 from checker.network.elimination import Factor
 from checker.network.graph import BatteryTie, Cell, Edge, EdgeKind, LoadTie, Network
 from checker.network.states import SwitchState, leading_to, live_edges, places, places_beyond
@@ -25,6 +25,7 @@ from checker.network.walk import groups
 MOST_STEPS = 60
 MOST_TURNS = 200
 SETTLED_V = 1e-10
+STIFF = 1e-5
 
 
 @dataclass(frozen=True, slots=True)
@@ -277,6 +278,26 @@ class Grid:
         return None
 
     def _solved(self, draws: Sequence[Draw], feeds: Sequence[Feed]) -> Flow | NoOperatingPoint:
+        """Solve with the diodes as they are; each regulated source gives all it can, holds its voltage, or rests.
+
+        As with the diodes, the first that disagrees with the answer is turned until none does.
+        """
+        regulated = [feed for feed in feeds if feed.holds_v is not None]
+        if not regulated:
+            return self._balanced(draws, feeds)
+        others = [feed for feed in feeds if feed.holds_v is None]
+        modes = ["full"] * len(regulated)
+        for _ in range(MOST_TURNS):
+            full = [f for f, mode in zip(regulated, modes, strict=True) if mode == "full"]
+            holding = [_holding(f) for f, mode in zip(regulated, modes, strict=True) if mode == "holds"]
+            answer = self._balanced([*draws, *holding], [*others, *full])
+            turned = _first_to_turn(answer, regulated, modes) if isinstance(answer, Flow) else None
+            if turned is None:
+                return answer
+            modes[turned[0]] = turned[1]
+        return NoOperatingPoint(self.state.id, ())
+
+    def _balanced(self, draws: Sequence[Draw], feeds: Sequence[Feed]) -> Flow | NoOperatingPoint:
         draws, feeds, held = self._possible(draws, feeds)
         injected = self._battery_currents()
         for feed in feeds:
@@ -353,6 +374,23 @@ class Grid:
         return self._edges
 
 
+def _holding(feed: Feed) -> Draw:
+    """Return a source that holds its voltage as a load: what flows into it, negative while it gives."""
+    return Draw(f"{feed.name} holding", feed.out, feed.back, feed.current_a, feed.holds_v or 0.0, HOLDING)
+
+
+def _first_to_turn(flow: Flow, regulated: Sequence[Feed], modes: Sequence[str]) -> tuple[int, str] | None:
+    """Return the first regulated source that cannot stay as it is, and what it is turned to."""
+    for number, (feed, mode) in enumerate(zip(regulated, modes, strict=True)):
+        over_v = flow.across(feed.out, feed.back) - (feed.holds_v or 0.0)
+        given_a = -flow.load_a.get(f"{feed.name} holding", 0.0)
+        if mode == "holds" and not 0 <= given_a <= feed.current_a:
+            return number, "full" if given_a > feed.current_a else "rests"
+        if (mode == "full" and over_v > STIFF * (feed.holds_v or 0.0)) or (mode == "rests" and over_v < -SETTLED_V):
+            return number, "holds"
+    return None
+
+
 def _across(volts: Sequence[float], ports: Sequence[tuple[int, int]]) -> list[float]:
     return [volts[feed] - volts[back] for feed, back in ports]
 
@@ -362,6 +400,9 @@ def _current(draw: Draw, volts: float) -> tuple[float, float]:
     if draw.model == RESISTIVE:
         siemens = draw.current_a / draw.nominal_v
         return siemens * volts, siemens
+    if draw.model == HOLDING:  # behind a resistance so small that it sags by no more than STIFF at full current
+        siemens = draw.current_a / (draw.nominal_v * STIFF)
+        return siemens * (volts - draw.nominal_v), siemens
     power_w = draw.current_a * draw.nominal_v
     return power_w / volts, -power_w / volts**2
 

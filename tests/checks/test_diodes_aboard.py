@@ -191,3 +191,42 @@ def test_a_lead_to_a_post_that_the_diode_has_not_is_told() -> None:
 def outcomes_of_files(yard: Yard) -> list[str]:
     """Return what is wrong with the files of a yard."""
     return [o.fault for o in check_yard(yard).file_outcomes if o.verdict is Verdict.FINDING]
+
+
+# --- what a bank may have to give
+
+
+def test_what_an_isolator_shares_out_is_not_taken_from_the_load_of_one_bank_in_full() -> None:
+    """All of the alternator's 60 A may go to the start bank: the house shunt may see all of its bank's 315 A."""
+    loads = "loads: {PLOTTER: 1 A, LIGHTS: 3 A, PUMP: 8 A, BOW-LIGHT: 0.5 A, SENSOR: 0.2 A}\n    sources: {ALT: 60 A}"
+    heavy = loads.replace("PUMP: 8 A", "PUMP: 310 A")
+    assert "shunt-rating" not in {check for check, *_ in found(SOUND.edit(loads, heavy))}
+    assert "shunt-rating" in {check for check, *_ in found(BOTH_BANKS.edit(loads, heavy))}
+
+
+# --- sources that hold their voltage
+
+
+MOORED = "sources: {CHARGER: 20 A}"
+
+
+def test_charger_that_holds_its_voltage_is_sound() -> None:
+    yard = SOUND.edit(MOORED, f"{MOORED}\n    holds: {{CHARGER: 14.2 V}}")
+    assert found(yard) == []
+    assert not_assessed(yard) == []
+
+
+@pytest.mark.parametrize(
+    ("holds", "says"),
+    [
+        ("holds: {CHARGR: 14.2 V}", "there is no source with a current under `sources` “CHARGR”"),
+        ("holds: {ALT: 14.2 V}", "there is no source with a current under `sources` “ALT”"),
+        ("holds: {CHARGER: 14.2}", "CHARGER: “14.2” has no unit; a voltage carries its unit, e.g. 12 V"),
+    ],
+)
+def test_voltage_of_a_source_that_does_not_run_is_told_with_its_place(holds: str, says: str) -> None:
+    yard = SOUND.edit(MOORED, f"{MOORED}\n    {holds}")
+    told, file, line, column = fault_at(yard)
+    assert told == says
+    assert yard.files[file].splitlines()[line - 1].strip() == holds
+    assert column in (13, 22)
