@@ -56,7 +56,10 @@ def operations(boat: Boat, network: Network) -> tuple[Operation, ...]:
         Operation(
             condition,
             condition_state(boat, condition),
-            tuple(_draw(boat, network, name, amps) for name, amps in condition.loads_a),
+            (
+                *(_draw(boat, network, name, amps) for name, amps in condition.loads_a),
+                *_taken(boat, network, condition),
+            ),
             tuple(
                 _feed(boat, network, name, amps, dict(condition.holds_v).get(name))
                 for name, amps in condition.sources_a
@@ -101,6 +104,29 @@ def _draw(boat: Boat, network: Network, name: str, current_a: float) -> Draw:
     entry = next(end for end in converter.inputs if end.post == post)
     ends = network.index[name], network.index[f"{source}.{entry.return_post}"]
     return Draw(name, *ends, current_a, entry.voltage_v, CONSTANT_CURRENT)
+
+
+def _taken(boat: Boat, network: Network, condition: Condition) -> tuple[Draw, ...]:
+    """Return what converters take in while they give, where the condition does not say it itself.
+
+    As much of the input's largest current as of the output's is given, at constant power: a
+    converter draws more as its bank sinks.
+    """
+    found: list[Draw] = []
+    said = {name.rsplit(".", 1)[0] for name, _ in condition.loads_a if name not in boat.devices}
+    for name, current_a in condition.sources_a:
+        owner = name if name in boat.devices else name.rsplit(".", 1)[0]
+        part = boat.devices[owner].part
+        assert isinstance(part, Source)
+        if owner in said or len(part.inputs) != 1:
+            continue
+        post = part.outputs[0].post if name == owner else name.rsplit(".", 1)[1]
+        most_a = next(end.max_a for end in part.outputs if end.post == post)
+        (entry,) = part.inputs
+        ends = network.index[f"{owner}.{entry.post}"], network.index[f"{owner}.{entry.return_post}"]
+        amps = entry.max_a * current_a / most_a if most_a else 0.0
+        found.append(Draw(f"{owner}.{entry.post} for {post}", *ends, amps, entry.voltage_v, CONSTANT_POWER))
+    return tuple(found)
 
 
 def _feed(boat: Boat, network: Network, name: str, current_a: float, holds_v: float | None) -> Feed:
