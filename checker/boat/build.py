@@ -610,7 +610,9 @@ def _held(row: Entry) -> tuple[tuple[str, float], ...]:
             row.unknown("source with a current under `sources`", key, row.key_at("holds", key), row.fields("sources"))
             continue
         volts = row.quantity_at(("holds", key), value, Dimension.VOLTAGE)
-        if volts:
+        if volts == 0:
+            row.fault("bad-value", row.at("holds", key), f"{key} holds 0 V", "leave it out, or give its voltage")
+        elif volts is not None:
             found.append((key, volts))
     return tuple(found)
 

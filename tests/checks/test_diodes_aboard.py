@@ -220,6 +220,7 @@ def test_charger_that_holds_its_voltage_is_sound() -> None:
     ("holds", "says"),
     [
         ("holds: {CHARGR: 14.2 V}", "there is no source with a current under `sources` “CHARGR”"),
+        ("holds: {CHARGER: 0 V}", "CHARGER holds 0 V"),
         ("holds: {ALT: 14.2 V}", "there is no source with a current under `sources` “ALT”"),
         ("holds: {CHARGER: 14.2}", "CHARGER: “14.2” has no unit; a voltage carries its unit, e.g. 12 V"),
     ],
