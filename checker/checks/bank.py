@@ -6,7 +6,7 @@ from collections.abc import Iterator
 
 from checker.boat.parts import Battery
 from checker.checks.check import Case, Place, Told, at_conductor, check
-from checker.checks.words import BATTERY_FIGURES, ampere, plain
+from checker.checks.words import BATTERY_FIGURES, ampere, no_figures, plain
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.limit_set import bank_figures, surge_s
 from checker.network.bank import Bank, bare_strings, inner_landings, row_links
@@ -148,7 +148,7 @@ def bank_links(case: Case) -> Iterator[Outcome]:
     for bank, place in _banks(case):
         links = row_links(case.boat, case.studies.network, bank.id) if len(bank.strings) > 1 else []
         if links and case.studies.conditions.missing:
-            fault = f"EMF or resistance of {', '.join(case.studies.conditions.missing)} is not written"
+            fault = no_figures(case.studies.conditions.missing)
             yield bank_links.not_assessed(case, place, fault, BATTERY_FIGURES)
             continue
         memo = case.studies.network.memo

@@ -9,7 +9,7 @@ from checker.boat.hull import Device
 from checker.boat.parts import Battery, Overcurrent
 from checker.checks.check import Case, Place, Told, check
 from checker.checks.feeding import Kind, feedings
-from checker.checks.words import BATTERY_FIGURES, ampere, plain, seconds
+from checker.checks.words import BATTERY_FIGURES, ampere, no_figures, plain, seconds
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.formulas import adiabatic, adiabatic_k, study_figures
 from checker.network.coordination import curve_of, withstand_ratio
@@ -22,13 +22,6 @@ def _devices(case: Case) -> Iterator[tuple[Device, Overcurrent]]:
     for device in case.boat.devices.values():
         if isinstance(device.part, Overcurrent):
             yield device, device.part
-
-
-def _missing(case: Case) -> str:
-    """Return which batteries lack the figures that a fault study needs."""
-    return ", ".join(
-        b.device for b in case.studies.network.batteries if b.full is None or b.low is None
-    )  # fmt: skip
 
 
 @check(
@@ -47,13 +40,11 @@ def interrupting_capacity(case: Case) -> Iterator[Outcome]:
     Strings in parallel add, blocks in series do not. Where the limit set has a table by
     cranking amperes and every battery that feeds the place gives them, its figure is told too.
     """
-    missing = _missing(case)
+    missing = case.studies.without_figures
     for device, part in _devices(case):
         place = Place(device.id, device.at_rating, device.circuit)
         if missing:
-            yield interrupting_capacity.not_assessed(
-                case, place, f"EMF or resistance of {missing} is not written", BATTERY_FIGURES
-            )
+            yield interrupting_capacity.not_assessed(case, place, no_figures(missing), BATTERY_FIGURES)
             continue
         largest_a, words, feeding = _largest(case, device)
         if part.interrupting_a is None:
@@ -124,11 +115,9 @@ def far_end_clearing(case: Case) -> Iterator[Outcome]:
     """
     limit_s = study_figures().clearing_s
     for device, part in _devices(case):
-        if missing := _missing(case):
-            fault = f"EMF or resistance of {missing} is not written"
-            yield far_end_clearing.not_assessed(
-                case, Place(device.id, device.at_rating, device.circuit), fault, BATTERY_FIGURES
-            )
+        if missing := case.studies.without_figures:
+            place = Place(device.id, device.at_rating, device.circuit)
+            yield far_end_clearing.not_assessed(case, place, no_figures(missing), BATTERY_FIGURES)
             continue
         far = case.studies.far_ends.get(device.id)
         if far is None:
@@ -174,7 +163,7 @@ def conductor_withstand(case: Case) -> Iterator[Outcome]:
     short = {f.conductor.id for f in feedings(case) if f.kind.gravity < Kind.PROTECTED.gravity or f.kind is Kind.SHORT}
     for device, part in _devices(case):
         far = case.studies.far_ends.get(device.id)
-        if far is None or part.band is None or _missing(case):
+        if far is None or part.band is None or case.studies.without_figures:
             continue
         largest_a, words, _ = _largest(case, device)
         for name in far.conductors:

@@ -7,7 +7,7 @@ from collections.abc import Iterator
 from checker.boat.hull import Circuit, Device
 from checker.boat.parts import Load
 from checker.checks.check import Case, Place, Told, check
-from checker.checks.words import BATTERY_FIGURES, ampere, plain
+from checker.checks.words import BATTERY_FIGURES, ampere, no_figures, plain
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.limit_set import always_on_rule, bank_figures
 from checker.network.losses import Diverted, idle_diodes
@@ -241,8 +241,8 @@ def lost_return(case: Case) -> Iterator[Outcome]:
     """
     rule = always_on_rule()
     if missing := case.studies.conditions.missing:
-        fault = f"EMF or resistance of {', '.join(missing)} is not written"
-        yield lost_return.not_assessed(case, _at(case.boat.devices[missing[0]]), fault, BATTERY_FIGURES)
+        place = _at(case.boat.devices[missing[0]])
+        yield lost_return.not_assessed(case, place, no_figures(missing), BATTERY_FIGURES)
         return
     by_opened: dict[str, list[tuple[float, Diverted, float]]] = {}
     for diverted in case.studies.diverted(rule.heavy_return_a):

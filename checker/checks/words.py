@@ -3,12 +3,18 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Iterable
 
 from checker.finding import Measure
 from checker.units import foot_from_metre, inch_from_metre
 
 BATTERY_FIGURES = "emf_full, emf_low, resistance_full and resistance_low of its batteries"
 """What a solved network needs of every battery: the fields to fill in."""
+
+
+def no_figures(batteries: Iterable[str]) -> str:
+    """Tell that a network cannot be solved for want of what `BATTERY_FIGURES` names."""
+    return f"EMF or resistance of {', '.join(batteries)} is not written"
 
 
 def ampere(value_a: float) -> str:

@@ -16,16 +16,14 @@ from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from functools import cached_property
 
-from checker.network.conditions import CONSTANT_CURRENT, CONSTANT_POWER, HOLDING, RESISTIVE, Draw, Feed
+from checker.network.conditions import CONSTANT_CURRENT, CONSTANT_POWER, RESISTIVE, Draw, Feed
 from checker.network.elimination import Factor
 from checker.network.graph import BatteryTie, Cell, Edge, EdgeKind, LoadTie, Network
+from checker.network.ports import SETTLED_V, STIFF, holding_draw, port_currents
 from checker.network.states import SwitchState, leading_to, live_edges, places, places_beyond
 from checker.network.walk import groups
 
-MOST_STEPS = 60
 MOST_TURNS = 200
-SETTLED_V = 1e-10
-STIFF = 1e-5
 
 
 @dataclass(frozen=True, slots=True)
@@ -289,7 +287,7 @@ class Grid:
         modes = ["full"] * len(regulated)
         for _ in range(MOST_TURNS):
             full = [f for f, mode in zip(regulated, modes, strict=True) if mode == "full"]
-            holding = [_holding(f) for f, mode in zip(regulated, modes, strict=True) if mode == "holds"]
+            holding = [holding_draw(f) for f, mode in zip(regulated, modes, strict=True) if mode == "holds"]
             answer = self._balanced([*draws, *holding], [*others, *full])
             turned = _first_to_turn(answer, regulated, modes) if isinstance(answer, Flow) else None
             if turned is None:
@@ -310,9 +308,10 @@ class Grid:
             injected[self.place[draw.feed]] -= draw.current_a
             injected[self.place[draw.back]] += draw.current_a
         if bending:
-            found = self._bent(bending, injected)
-            if isinstance(found, NoOperatingPoint):
-                return found
+            ports = [(self.place[draw.feed], self.place[draw.back]) for draw in bending]
+            found = port_currents(self.factor, bending, ports, injected)
+            if found is None:
+                return NoOperatingPoint(self.state.id, tuple(d.name for d in draws if d.model == CONSTANT_POWER))
             for draw, current_a in zip(bending, found, strict=True):
                 currents[draw.name] = current_a
                 injected[self.place[draw.feed]] -= current_a
@@ -334,36 +333,6 @@ class Grid:
                     volts[place] += lift_v
         return volts
 
-    def _bent(self, draws: list[Draw], injected: list[float]) -> list[float] | NoOperatingPoint:
-        """Find the currents of loads that depend on their voltage, by Newton's method on their ports."""
-        ports = [(self.place[draw.feed], self.place[draw.back]) for draw in draws]
-        open_v = _across(self.factor.solve(injected), ports)
-        impedance: list[list[float]] = []
-        for feed, back in ports:
-            unit = [0.0] * len(self.network.posts)
-            unit[feed] += 1.0
-            unit[back] -= 1.0
-            impedance.append(_across(self.factor.solve(unit), ports))
-        volts = list(open_v)
-        for _ in range(MOST_STEPS):
-            # Below half its nominal voltage a load of constant power is past the knee of its curve.
-            if any(not v > 0.5 * d.nominal_v for v, d in zip(volts, draws, strict=True) if d.model == CONSTANT_POWER):
-                break
-            bent = [_current(draw, v) for draw, v in zip(draws, volts, strict=True)]
-            lost = [sum(z * current for z, (current, _) in zip(row, bent, strict=True)) for row in impedance]
-            wrong = [v - o + drop for v, o, drop in zip(volts, open_v, lost, strict=True)]
-            if max(abs(w) for w in wrong) < SETTLED_V:
-                return [current for current, _ in bent]
-            slopes = [
-                [(1.0 if i == j else 0.0) + row[j] * bent[j][1] for j in range(len(draws))]
-                for i, row in enumerate(impedance)
-            ]
-            step = _solved(slopes, wrong)
-            if step is None:
-                break
-            volts = [v - s for v, s in zip(volts, step, strict=True)]
-        return NoOperatingPoint(self.state.id, tuple(draw.name for draw in draws if draw.model == CONSTANT_POWER))
-
     def ohm(self, edge: Edge) -> float:
         """Return the resistance of a live edge."""
         return self._ohm[edge.index]
@@ -372,11 +341,6 @@ class Grid:
     def edges(self) -> Sequence[Edge]:
         """Return the live edges."""
         return self._edges
-
-
-def _holding(feed: Feed) -> Draw:
-    """Return a source that holds its voltage as a load: what flows into it, negative while it gives."""
-    return Draw(f"{feed.name} holding", feed.out, feed.back, feed.current_a, feed.holds_v or 0.0, HOLDING)
 
 
 def _first_to_turn(flow: Flow, regulated: Sequence[Feed], modes: Sequence[str]) -> tuple[int, str] | None:
@@ -389,41 +353,6 @@ def _first_to_turn(flow: Flow, regulated: Sequence[Feed], modes: Sequence[str]) 
         if (mode == "full" and over_v > STIFF * (feed.holds_v or 0.0)) or (mode == "rests" and over_v < -SETTLED_V):
             return number, "holds"
     return None
-
-
-def _across(volts: Sequence[float], ports: Sequence[tuple[int, int]]) -> list[float]:
-    return [volts[feed] - volts[back] for feed, back in ports]
-
-
-def _current(draw: Draw, volts: float) -> tuple[float, float]:
-    """Return a load's current at a voltage, and its slope dI/dV."""
-    if draw.model == RESISTIVE:
-        siemens = draw.current_a / draw.nominal_v
-        return siemens * volts, siemens
-    if draw.model == HOLDING:  # behind a resistance so small that it sags by no more than STIFF at full current
-        siemens = draw.current_a / (draw.nominal_v * STIFF)
-        return siemens * (volts - draw.nominal_v), siemens
-    power_w = draw.current_a * draw.nominal_v
-    return power_w / volts, -power_w / volts**2
-
-
-def _solved(matrix: list[list[float]], right: list[float]) -> list[float] | None:
-    """Solve a small dense system; None where it is singular."""
-    size = len(right)
-    rows = [[*row, value] for row, value in zip(matrix, right, strict=True)]
-    for column in range(size):
-        best = max(range(column, size), key=lambda r: abs(rows[r][column]))
-        if abs(rows[best][column]) < 1e-12:
-            return None
-        rows[column], rows[best] = rows[best], rows[column]
-        for below in range(column + 1, size):
-            factor = rows[below][column] / rows[column][column]
-            rows[below] = [x - factor * y for x, y in zip(rows[below], rows[column], strict=True)]
-    found = [0.0] * size
-    for row in range(size - 1, -1, -1):
-        known = sum(rows[row][k] * found[k] for k in range(row + 1, size))
-        found[row] = (rows[row][size] - known) / rows[row][row]
-    return found
 
 
 @dataclass(frozen=True, slots=True)

@@ -209,9 +209,14 @@ class Studies:
         return tuple(worst[key] for key in sorted(worst))
 
     @cached_property
+    def without_figures(self) -> tuple[str, ...]:
+        """Return the batteries that lack the EMF or resistance that a solved network needs."""
+        return tuple(b.device for b in self.network.batteries if b.full is None or b.low is None)
+
+    @cached_property
     def ladder(self) -> tuple[Rung, ...]:
         """Return the protection from each bank down, in the first normal state."""
-        is_known = not any(b.full is None or b.low is None for b in self.network.batteries)
+        is_known = not self.without_figures
         return build_ladder(
             self.boat,
             self.network,

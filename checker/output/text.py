@@ -8,7 +8,7 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 from checker.checks.words import ampere, measured, seconds
-from checker.finding import Card, Outcome, Verdict
+from checker.finding import EQUAL_FRACTION, Card, Outcome, Verdict
 from checker.network.ladder import Rung
 from checker.output.lines import finding_lines, measure_words, same_fault, set_lines
 from checker.reading.words import flat
@@ -102,7 +102,7 @@ def _rung_facts(rung: Rung) -> Iterator[str]:
     if rung.is_alone:
         yield f"in series with {rung.above}"
     elif rung.selective_up_to_a is not None:
-        if rung.selective_up_to_a >= rung.behind_a * (1 - 1e-9):
+        if rung.selective_up_to_a >= rung.behind_a * (1 - EQUAL_FRACTION):
             yield f"selective under {rung.above} in full"
         elif rung.selective_up_to_a > 0:
             up_to, behind = ampere(round(rung.selective_up_to_a)), ampere(round(rung.behind_a))
