@@ -21,6 +21,8 @@ from checker.network.solved import Solved
 from checker.units import awg_size
 
 CIRCUIT_LAWS = "Kirchhoff's laws: ΣI = 0 at every post, V = I·R along every conductor, R = rho·l/A at 30 C"
+SERIES_FRACTION = 0.99
+"""Conductors of a circuit that carry this share of its largest current lie in series; for a remedy only."""
 
 
 def _solved(case: Case) -> tuple[Solved, ...]:
@@ -185,7 +187,7 @@ def solved_drop(case: Case) -> Iterator[Outcome]:
     """
     if case.limits.drop is None or _unknown(case):
         return
-    worst: dict[str, tuple[float, float, str]] = {}
+    worst: dict[str, tuple[float, float, str, Flow]] = {}
     tops = _bank_ends(case)
     owners = _circuits_of_posts(case)
     for solved in _solved(case):
@@ -195,9 +197,9 @@ def solved_drop(case: Case) -> Iterator[Outcome]:
             for circuit, lost_v, volts in _losses(case, solved, flow, tops, owners):
                 known = worst.get(circuit.id)
                 if known is None or lost_v / volts > known[0] / known[1]:
-                    worst[circuit.id] = (lost_v, volts, solved.operation.condition.id)
-    for name, (lost_v, volts, condition) in sorted(worst.items()):
-        yield from _judge_solved_drop(case, case.boat.circuits[name], lost_v, volts, condition)
+                    worst[circuit.id] = (lost_v, volts, solved.operation.condition.id, flow)
+    for name, (lost_v, volts, condition, flow) in sorted(worst.items()):
+        yield from _judge_solved_drop(case, case.boat.circuits[name], lost_v, volts, condition, flow)
 
 
 def _bank_ends(case: Case) -> dict[str, tuple[int, int]]:
@@ -251,7 +253,32 @@ def _runs(item: Draw | Feed) -> bool:
     return item.current_a > 0
 
 
-def _judge_solved_drop(case: Case, circuit: Circuit, lost_v: float, volts: float, condition: str) -> Iterator[Outcome]:
+def _less_drop(case: Case, circuit: Circuit, flow: Flow, too_much_v: float) -> str:
+    """Tell which gauge of the circuit's own conductors takes the excess away, its currents left as they are."""
+    beside: dict[frozenset[int], list[tuple[float, float, float]]] = {}
+    for name in circuit.conductors:
+        (edge,) = case.studies.network.edges_of[name]
+        current_a = abs(flow.currents_a.get(edge.index, 0.0))
+        if current_a:
+            ends = frozenset((flow.grid.place[edge.a], flow.grid.place[edge.b]))
+            area_mm2 = case.boat.conductors[name].size.area_mm2
+            beside.setdefault(ends, []).append((current_a, area_mm2, current_a * flow.grid.ohm(edge)))
+    # What carries the whole current lies in series, out and back; side branches cannot be counted on.
+    most_a = max((sum(amps for amps, _, _ in rows) for rows in beside.values()), default=0.0)
+    series = [rows for rows in beside.values() if sum(amps for amps, _, _ in rows) >= SERIES_FRACTION * most_a]
+    own = [max((lost_v, area_mm2) for _, area_mm2, lost_v in rows)[::-1] for rows in series]
+    own_v = sum(lost_v for _, lost_v in own)
+    for name in case.limits.ampacity.sizes:
+        size = awg_size(name)
+        left_v = sum(lost_v * min(1.0, area_mm2 / size.area_mm2) for area_mm2, lost_v in own)
+        if own_v - left_v >= too_much_v:
+            return f"use {size.text} or larger for its own conductors, which lose {own_v:.3f} V of it, or shorten them"
+    return f"enlarge the shared feeder: its own conductors lose only {own_v:.3f} V of it"
+
+
+def _judge_solved_drop(
+    case: Case, circuit: Circuit, lost_v: float, volts: float, condition: str, flow: Flow
+) -> Iterator[Outcome]:
     limit = drop_limit(case, circuit)
     if limit is None:
         return
@@ -260,7 +287,7 @@ def _judge_solved_drop(case: Case, circuit: Circuit, lost_v: float, volts: float
     def told() -> Told:
         return Told(
             fault=f"loses {lost_v:.3f} V of {volts:g} V in condition {condition}: {percent(fraction)} ({limit.words})",
-            remedy="enlarge its conductors or the shared feeder, or shorten the way",
+            remedy=_less_drop(case, circuit, flow, lost_v - limit.fraction * volts),
             inputs=(("condition", condition), ("limit", percent(limit.fraction)), ("lost", f"{lost_v:.3f} V")),
         )
 

@@ -167,7 +167,9 @@ class _Composer:
         if isinstance(event, yaml.ScalarEvent):
             if self._refused(event):
                 return False
-            self._scalar(event)
+            is_nothing = not self._open and not event.value and event.implicit[0]
+            if not is_nothing:  # a file of `---` alone is empty; the parsers differ in where its nothing stands
+                self._scalar(event)
         elif isinstance(event, (yaml.MappingStartEvent, yaml.SequenceStartEvent)):
             return not self._refused(event) and self._enter(event)
         elif isinstance(event, (yaml.MappingEndEvent, yaml.SequenceEndEvent)):

@@ -3,11 +3,16 @@
 from __future__ import annotations
 
 import re
+import shutil
+from pathlib import Path
 
 import pytest
 
+from checker.pipeline import check_fleet
 from checker.units import awg_text
-from tests.small_yard import BOTH, LAW, NEITHER, PRACTICE, SOUND, Yard, finding, found
+from tests.small_yard import BOTH, LAW, NEITHER, PRACTICE, SOUND, TODAY, Yard, finding, found, the_hull
+
+ROOT = Path(__file__).resolve().parents[2]
 
 SIZES = [
     awg_text(name)
@@ -254,3 +259,22 @@ def test_printed_gauge_of_a_feed_names_the_return_that_would_be_left_too_thin() 
     return_lead = next(line for line in yard.files["classes/skiff/class.yaml"].splitlines() if "C2: {" in line)
     after = yard.edit(lead, lead.replace("10 AWG", size)).edit(return_lead, return_lead.replace("10 AWG", size))
     assert is_mended(yard, after, "device-rating", "C1")
+
+
+def test_gauge_that_the_solved_drop_asks_for_takes_the_finding_away(tmp_path: Path) -> None:
+    """REMEDY: the inverter's feed in 4 AWG loses too much; 1 AWG is asked for, does, and 2 AWG does not."""
+    folder = tmp_path / "yard"
+    shutil.copytree(ROOT / "fleet_example", folder)
+    trunk = folder / "classes/tindral-36/trunk.yaml"
+    text = trunk.read_text(encoding="utf-8")
+
+    def drops(gauge: str) -> list[str]:
+        feed = "W054: {from: F-INV.load, to: INV.pos, size: "
+        trunk.write_text(text.replace(f"{feed}2/0 AWG", f"{feed}{gauge} AWG"), encoding="utf-8")
+        result = check_fleet(folder, today=TODAY, only=("TND-031",))
+        return [o.remedy for o in the_hull(result, "TND-031").news if o.check == "solved-drop"]
+
+    (remedy,) = drops("4")
+    assert remedy == "use 1 AWG or larger for its own conductors, which lose 0.294 V of it, or shorten them"
+    assert len(drops("2")) == 1
+    assert drops("1") == []

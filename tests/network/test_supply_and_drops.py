@@ -297,7 +297,8 @@ def test_a_chain_of_any_pieces_drops_their_sum(chain: list[tuple[str, int]]) -> 
     studs = [a_bus(post) for post in posts[1:-1]]
     found = drop(a_boat(*with_outs(*outs), *studs), "LIGHT")
     expected = sum(volts(10, tenths / 10, size.split()[0]) for size, tenths in chain)
-    assert found.volts == pytest.approx(expected + volts(10, 5, "10"), rel=3e-4)
+    # The published area of 6 AWG, 26,240 CM, is 4.3e-4 off the definition's 26,251; here it makes up to 0.8 of the sum.
+    assert found.volts == pytest.approx(expected + volts(10, 5, "10"), rel=4e-4)
 
 
 def test_other_sizes_can_be_reckoned_with_before_they_are_pulled() -> None:

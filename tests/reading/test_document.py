@@ -6,7 +6,7 @@ from pathlib import Path
 
 import pytest
 import yaml
-from hypothesis import assume, given
+from hypothesis import assume, example, given
 from hypothesis import strategies as st
 
 from checker.reading.document import DEEPEST_NESTING, LARGEST_FILE_BYTES, Document, compose
@@ -353,6 +353,8 @@ PIECES = [
 
 
 @given(st.lists(st.sampled_from(PIECES), max_size=25).map("".join))
+@example("---\n  ")
+@example("---\n  \n")
 def test_any_mixture_of_yaml_signs_is_told_alike_by_both_parsers(text: str) -> None:
     # A question mark inside text in braces: only the C parser takes it as text, as YAML 1.2 does.
     assume("?" not in text)
