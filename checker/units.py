@@ -10,6 +10,7 @@ from dataclasses import dataclass
 
 METRE_PER_FOOT = 0.3048  # exact, international yard and pound agreement of 1959
 METRE_PER_INCH = 0.0254  # exact
+NEWTON_METRE_PER_FOOT_POUND = 0.3048 * 0.45359237 * 9.80665  # exact: foot, pound and standard gravity
 MIL_PER_INCH = 1000.0
 CIRCULAR_MIL_MM2 = math.pi / 4 * (METRE_PER_INCH * 1000 / MIL_PER_INCH) ** 2
 

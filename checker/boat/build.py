@@ -21,8 +21,10 @@ from checker.boat.hull import (
     Way,
     Zone,
 )
-from checker.boat.parts import Cable, Load, Overcurrent, Source, Switch
+from checker.boat.landing import End, Workmanship
+from checker.boat.parts import Cable, Load, Overcurrent, Part, Source, Switch
 from checker.boat.patch import Patched
+from checker.boat.workmanship import known_flag, read_end, read_isolation, read_landings, read_workmanship
 from checker.finding import Span
 from checker.reading.document import Fault
 from checker.reading.quantity import Dimension
@@ -38,6 +40,7 @@ class _Workshop:
 
     top: Entry
     catalogue: Catalogue
+    usual: Workmanship = field(default_factory=Workmanship)
     zones: dict[str, Zone] = field(default_factory=dict)
     ways: dict[str, Way] = field(default_factory=dict)
     devices: dict[str, Device] = field(default_factory=dict)
@@ -52,7 +55,7 @@ def build_boat(source: Patched, class_id: str, catalogue: Catalogue) -> tuple[Bo
     """Return the boat that assembled class data describe, or None, and what is wrong with the data."""
     faults: list[Fault] = []
     top = Entry(source, (), source.data, faults)
-    shop = _Workshop(top, catalogue)
+    shop = _Workshop(top, catalogue, read_workmanship(top))
     if not top.has("class"):
         top.fault("missing-field", top.at(), f"class “{class_id}” has no section “class”", "add it")
         return None, faults
@@ -83,6 +86,14 @@ def _build_places(shop: _Workshop) -> None:
             is_engine_space=row.flag("engine_space"),
             has_petrol_vapour=row.flag("petrol_vapour"),
             has_cooking_gas=row.flag("cooking_gas"),
+            is_wet=row.flag("wet"),
+            access=row.text("access"),
+            has_hydrogen_vent=known_flag(row, "hydrogen_vent"),
+            charge_limit_a=row.number("charge_limit", Dimension.CURRENT),
+            has_fuel_parts=known_flag(row, "fuel_parts"),
+            opens_to=_neighbours(shop, row),
+            isolated_from=read_isolation(row, shop.top.fields("zones")),
+            at=row.at(),
             at_petrol=row.at("petrol_vapour"),
         )
     for row in shop.top.entries("ways"):
@@ -95,7 +106,20 @@ def _build_places(shop: _Workshop) -> None:
                 length_m=length_m,
                 is_conduit=row.text("kind", "open") == "conduit",
                 is_bundled=row.text("lay", "bundled") == "bundled",
+                passage=row.text("passage", shop.usual.passages),
+                ac=row.text("ac", shop.usual.ac),
+                at=row.at(),
+                at_passage=row.at("passage") if row.has("passage") else row.at(),
+                at_ac=row.at("ac") if row.has("ac") else row.at(),
             )
+
+
+def _neighbours(shop: _Workshop, row: Entry) -> tuple[str, ...]:
+    """Return the zones that share air with a zone."""
+    for index, name in enumerate(row.items("opens_to")):
+        if name not in shop.top.fields("zones"):
+            row.unknown("zone", name, row.at("opens_to", index), shop.top.fields("zones"))
+    return row.items("opens_to")
 
 
 def _known(shop: _Workshop, row: Entry, name: str, known: Any, what: str = "") -> str | None:
@@ -130,6 +154,8 @@ def _add_device(shop: _Workshop, row: Entry) -> None:
     for own, _ in mounts:
         if own not in part.posts:
             row.unknown(f"post on {row.id}", own, row.key_at("mount", own), part.posts)
+    if row.has("regulates") and row.text("regulates") not in shop.top.fields("devices"):
+        row.unknown("device", row.text("regulates"), row.at("regulates"), shop.top.fields("devices"))
     if row.has("measures") and row.text("measures") not in _banks(shop):
         row.unknown("bank", row.text("measures"), row.at("measures"), _banks(shop))
     shop.devices[row.id] = Device(
@@ -140,11 +166,29 @@ def _add_device(shop: _Workshop, row: Entry) -> None:
         measures=row.text("measures"),
         belongs_to=row.text("belongs_to"),
         is_engine_mounted=row.flag("engine_mounted"),
+        is_covered=row.flag("cover") if row.has("cover") else part.fittings.is_covered,
+        is_marked=row.flag("marked") if row.has("marked") else _usual_mark(shop, part),
+        regulates=row.text("regulates"),
+        returns=str(row.fields("positions").get("returns", "")),
+        set_capacity_ah=row.quantity_at(("set", "capacity"), row.fields("set").get("capacity"), Dimension.CAPACITY),
+        set_ratio=str(row.fields("set").get("ratio", "")),
+        is_above_bilge_water=row.flag("above_bilge_water"),
+        fuel_clearance_m=row.number("fuel_clearance", Dimension.LENGTH),
+        is_fuel_shielded=row.flag("fuel_shielded"),
+        is_in_line_with_fuel=known_flag(row, "in_line_with_fuel"),
         mounts=mounts,
         at=row.at(),
         at_rating=at_rating,
+        at_set=row.at("set") if row.has("set") else row.at(),
     )
     _add_positions(shop, row)
+
+
+def _usual_mark(shop: _Workshop, part: Part) -> bool | None:
+    """Return what the workmanship says of the mark beside a fuse, breaker or hand switch; None for the rest."""
+    if isinstance(part, Overcurrent):
+        return shop.usual.fuse_marks
+    return shop.usual.switch_marks if isinstance(part, Switch) and part.by_hand else None
 
 
 def _banks(shop: _Workshop) -> set[str]:
@@ -207,6 +251,7 @@ def _add_trunk(shop: _Workshop, row: Entry) -> None:
         conductors=tuple(sorted(row.fields("conductors"))),
         voltage_v=row.number("voltage", Dimension.VOLTAGE),
         always_on=row.text("always_on"),
+        return_reason=row.text("return_reason"),
         at=row.at(),
         at_current=row.at("current"),
     )
@@ -228,19 +273,20 @@ def _add_branch(shop: _Workshop, row: Entry) -> None:
         row.fault("missing-field", row.at(), f"{row.words} has no “returns”", "name the post its return lands on")
         return
     shop.devices[f"{row.id}.load"] = Device(
-        id=f"{row.id}.load", part=load, zone=zone, circuit=row.id, at=row.at("load"), at_rating=row.at("load")
-    )
+        id=f"{row.id}.load", part=load, zone=zone, circuit=row.id, is_covered=load.fittings.is_covered,
+        at=row.at("load"), at_rating=row.at("load"),
+    )  # fmt: skip
     load_feed = _branch_switch(shop, row, zone, f"{row.id}.load.{load.feed_post}")
     out = _conductor(shop, row, f"{row.id}.out", (start, load_feed), circuit=row.id)
     if out is None:
         return
-    back = replace(out, id=f"{row.id}.back", start=f"{row.id}.load.{load.return_post}", end=returns)
+    back = _as_back(row, out, f"{row.id}.load.{load.return_post}", returns)
     if row.has("back"):
         other = Entry(row._source, (*row.path, "back"), {**_cable_fields(row), **row.fields("back")}, row._faults)
         built = _conductor(shop, other, back.id, (back.start, back.end), circuit=row.id)
-        back = built or back
-    shop.conductors[out.id] = out
-    shop.conductors[back.id] = back
+        back = _as_back(row, built, back.start, back.end) if built else back
+    shop.conductors[out.id] = replace(out, ends=_branch_ends(shop, row, "feed", "load"))
+    shop.conductors[back.id] = replace(back, ends=_branch_ends(shop, row, "load_back", "back"))
     current_a = row.number("current", Dimension.CURRENT)
     shop.circuits[row.id] = Circuit(
         id=row.id,
@@ -252,9 +298,23 @@ def _add_branch(shop: _Workshop, row: Entry) -> None:
         load=f"{row.id}.load",
         device=device,
         always_on=row.text("always_on"),
+        shares=row.text("shares"),
+        return_reason=row.text("return_reason"),
         at=row.at(),
         at_current=row.at("current") if row.has("current") else row.at("load"),
     )
+
+
+def _as_back(row: Entry, out: Conductor, start: str, end: str) -> Conductor:
+    """Return the way back: like the way out, with the second colour of the cable."""
+    colours = row.items("colours") or out.cable.core_colours
+    name = f"{row.id}.back"
+    return replace(out, id=name, start=start, end=end, colour=colours[1] if len(colours) > 1 else "",
+                   label=row.text("label", name))  # fmt: skip
+
+
+def _branch_ends(shop: _Workshop, row: Entry, start: str, end: str) -> tuple[End, End]:
+    return read_end(row, start, shop.usual), read_end(row, end, shop.usual)
 
 
 _LIKE_OUT = ("cable", "type", "bare_tail", "enclosed", "role", "reason", "place_reason")
@@ -281,6 +341,7 @@ def _branch_feed(shop: _Workshop, row: Entry, feed: str) -> tuple[str, str, str]
     legends = ((row.text("legend"), row.at("legend")),) if row.has("legend") else ()
     there = shop.devices.get(feed)
     if there is not None:
+        there = replace(there, served=tuple(sorted((*there.served, row.id))))
         if isinstance(there.part, Overcurrent) and there.part.rating_a != rating_a:
             row.fault("bad-value", row.at("protect"),
                       f"{feed} is {rating_a:g} A here and {there.part.rating_a:g} A in circuit {there.circuit}",
@@ -291,7 +352,8 @@ def _branch_feed(shop: _Workshop, row: Entry, feed: str) -> tuple[str, str, str]
     if part is not None:
         zone = shop.devices[bus].zone
         shop.devices[feed] = Device(
-            id=feed, part=part, zone=zone, circuit=row.id, mounts=(("line", bus),),
+            id=feed, part=part, zone=zone, circuit=row.id, mounts=(("line", bus),), served=(row.id,),
+            is_covered=part.fittings.is_covered, is_marked=shop.usual.fuse_marks,
             at=row.at("feed"), at_rating=row.at("protect"), legends=legends,
         )  # fmt: skip
     return f"{feed}.load", returns, feed
@@ -309,7 +371,10 @@ def _branch_switch(shop: _Workshop, row: Entry, zone: str, load_feed: str) -> st
         return load_feed
     name = f"{row.id}.switch"
     mounts = ((part.posts[-1], load_feed),)
-    shop.devices[name] = Device(id=name, part=part, zone=zone, circuit=row.id, mounts=mounts, at=row.at("switch"))
+    shop.devices[name] = Device(
+        id=name, part=part, zone=zone, circuit=row.id, mounts=mounts, is_covered=part.fittings.is_covered,
+        at=row.at("switch"),
+    )  # fmt: skip
     return f"{name}.{part.posts[0]}"
 
 
@@ -348,6 +413,10 @@ def _of_length(
     end_zones = [_zone_of(shop, end) for end in ends]
     zones = dict.fromkeys(z for z in (end_zones[0], *(way.zone for way in ways), end_zones[1]) if z)
     text = row.text(length_field) if length_field else ""
+    real = dict(cable.real_areas_mm2).get(size.awg or f"{size.area_mm2:g} mm2")
+    if real is not None:
+        size = replace(size, area_mm2=real)
+    colours = row.items("colours") or cable.core_colours
     return Conductor(
         id=name,
         start=ends[0],
@@ -367,6 +436,14 @@ def _of_length(
         out_of_sheath_m=row.number("bare_tail", Dimension.LENGTH),
         circuit=circuit,
         is_bond=is_bond,
+        colour=row.text("colour", colours[0] if colours else ""),
+        is_colour_marked=row.flag("colour_marked"),
+        label=row.text("label", name),
+        labelled=row.text("labelled", shop.usual.labels),
+        ends=(End(), End()) if is_branch else (read_end(row, "from", shop.usual), read_end(row, "to", shop.usual)),
+        passage=row.text("passage", shop.usual.passages),
+        at_colour=row.at("colour") if row.has("colour") else row.at(),
+        at_label=row.at("label") if row.has("label") else row.at(),
         at=row.at(),
         at_size=row.at("cable" if is_branch and not row.has("size") else "size"),
         at_length=row.at(length_field) if length_field else row.at(),
@@ -506,11 +583,27 @@ def _finish(shop: _Workshop, class_id: str, bonds_recorded: bool) -> Boat:
         conditions={row.id: _condition(shop, row) for row in top.entries("conditions")},
         engines=tuple(_engine(shop, row) for row in _facts_entry(top).entries("engines")),
         generator_fuel=str(facts.get("generator_fuel", "none")),
+        has_ac=bool(facts["ac_aboard"]) if "ac_aboard" in facts else None,
+        monitored=_monitored(shop),
+        workmanship=shop.usual,
+        landings=read_landings(top, shop.posts, shop.conductors),
+        at_facts=top.at("facts") if facts else head.at(),
         at=head.at(),
         at_bonds=top.at("bonds") if top.has("bonds") else head.at(),
         at_shields=top.at("shields") if top.has("shields") else head.at(),
         at_engines=top.at("facts", "engines") if facts.get("engines") else head.at(),
     )
+
+
+def _monitored(shop: _Workshop) -> tuple[str, ...] | None:
+    """Return the banks whose charge is counted, None where it is not recorded."""
+    row = _facts_entry(shop.top)
+    if not row.has("monitored"):
+        return None
+    for index, name in enumerate(row.items("monitored")):
+        if name not in _banks(shop):
+            row.unknown("bank", name, row.at("monitored", index), _banks(shop))
+    return row.items("monitored")
 
 
 def _facts_entry(top: Entry) -> Entry:

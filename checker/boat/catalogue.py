@@ -15,6 +15,7 @@ from checker.boat.parts import (
     Bus,
     Cable,
     Diode,
+    Fittings,
     Load,
     Metal,
     Overcurrent,
@@ -25,8 +26,10 @@ from checker.boat.parts import (
     Terminals,
 )
 from checker.boat.patch import Patched
+from checker.boat.workmanship import known_flag
 from checker.reading.document import Document, Fault
-from checker.reading.quantity import Dimension
+from checker.reading.quantity import Dimension, QuantityError, read_size
+from checker.units import Size
 
 Catalogue = dict[str, Part]
 
@@ -75,6 +78,8 @@ def _battery(entry: Entry) -> Part | None:
         resistance_full_ohm=entry.number("resistance_full", Dimension.RESISTANCE),
         resistance_low_ohm=entry.number("resistance_low", Dimension.RESISTANCE),
         short_circuit_a=entry.number("short_circuit", Dimension.CURRENT),
+        charge_voltage_v=entry.number("charge_voltage", Dimension.VOLTAGE),
+        fittings=_fittings(entry),
         cranking_a=entry.number("cranking_amps", Dimension.CURRENT),
     )
 
@@ -99,8 +104,10 @@ def _overcurrent(entry: Entry) -> Part | None:
             polarised=entry.flag("polarised"),
             ignition_protected=entry.flag("ignition_protected"),
             series=series,
+            fittings=fittings,
         )
 
+    fittings = _fittings(entry)
     resistance_ohm = entry.number("resistance", Dimension.RESISTANCE)
     if not entry.has("ratings"):
         rating_a = entry.needed_number("rating", Dimension.CURRENT)
@@ -148,11 +155,23 @@ def _band(entry: Entry) -> Band:
 
 def _bus(entry: Entry) -> Part | None:
     rating_a = entry.needed_number("rating", Dimension.CURRENT)
-    return None if rating_a is None else Bus(id=entry.id, at=entry.at(), rating_a=rating_a)
+    if rating_a is None:
+        return None
+    return Bus(
+        id=entry.id,
+        at=entry.at(),
+        rating_a=rating_a,
+        studs=entry.whole("studs") or None,
+        terminals_per_stud=entry.whole("terminals_per_stud") or None,
+        screws=entry.whole("screws") or None,
+        screw_thread=entry.text("screw_thread"),
+        is_splice=entry.flag("splice"),
+        fittings=_fittings(entry),
+    )
 
 
 def _metal(entry: Entry) -> Part | None:
-    return Metal(id=entry.id, at=entry.at())
+    return Metal(id=entry.id, at=entry.at(), fittings=_fittings(entry))
 
 
 def _switch(entry: Entry) -> Part | None:
@@ -176,6 +195,7 @@ def _switch(entry: Entry) -> Part | None:
         intermittent_a=entry.number("intermittent", Dimension.CURRENT),
         contact_ohm=entry.number("contact_resistance", Dimension.RESISTANCE),
         ignition_protected=entry.flag("ignition_protected"),
+        fittings=_fittings(entry),
     )
 
 
@@ -201,6 +221,7 @@ def _diode(entry: Entry) -> Part | None:
         resistance_ohm=resistance_ohm,
         continuous_a=entry.number("continuous", Dimension.CURRENT),
         ignition_protected=entry.flag("ignition_protected"),
+        fittings=_fittings(entry),
     )
 
 
@@ -217,6 +238,7 @@ def _shunt(entry: Entry) -> Part | None:
         short_time_a=entry.quantity_at(("short_time", "current"), short.get("current"), Dimension.CURRENT),
         short_time_s=entry.quantity_at(("short_time", "time"), short.get("time"), Dimension.TIME),
         resistance_ohm=entry.number("resistance", Dimension.RESISTANCE),
+        fittings=_fittings(entry),
     )
 
 
@@ -237,6 +259,12 @@ def _load(entry: Entry) -> Part | None:
         model=entry.text("model", "constant-current"),
         duty_s=entry.number("duty", Dimension.TIME),
         is_motor=entry.flag("motor"),
+        stall_a=entry.number("stall_current", Dimension.CURRENT),
+        stall_protection=entry.text("stall_protection"),
+        has_own_switch=entry.flag("own_switch"),
+        is_regulator=entry.flag("regulator"),
+        case_isolated=known_flag(entry, "case_isolated"),
+        fittings=_fittings(entry),
         ignition_protected=entry.flag("ignition_protected"),
         feed_post=entry.text("feed_post", "pos"),
         return_post=entry.text("return_post", "neg"),
@@ -257,6 +285,7 @@ def _terminals(entry: Entry, name: str) -> tuple[Terminals, ...]:
                     max_a=max_a,
                     voltage_v=voltage_v,
                     limited=row.flag("limited"),
+                    cold_open_v=row.number("cold_open_voltage", Dimension.VOLTAGE),
                 )
             )
     return tuple(found)
@@ -277,6 +306,13 @@ def _source(entry: Entry) -> Part | None:
         outputs=outputs,
         inputs=_terminals(entry, "inputs"),
         joined=tuple(joined),
+        rated_a=entry.number("rated", Dimension.CURRENT),
+        max_input_v=entry.number("max_input", Dimension.VOLTAGE),
+        has_internal_fuse=known_flag(entry, "internal_fuse"),
+        enable=entry.text("enable"),
+        on_disconnect=entry.text("on_disconnect"),
+        case_isolated=known_flag(entry, "case_isolated"),
+        fittings=_fittings(entry),
         case_post=entry.text("case_post"),
         ignition_protected=entry.flag("ignition_protected"),
     )
@@ -296,6 +332,39 @@ def _cable(entry: Entry) -> Part | None:
         is_sheathed=entry.flag("sheathed"),
         cores=entry.whole("cores", 1),
         is_welding=entry.flag("welding"),
+        core_colours=entry.items("core_colours"),
+        real_areas_mm2=_real_areas(entry),
+    )
+
+
+def _real_areas(entry: Entry) -> tuple[tuple[str, float], ...]:
+    """Read stated copper areas by size; both are spelled as the yard spells sizes."""
+    found: list[tuple[str, float]] = []
+    for text, area in sorted(entry.fields("real_areas").items()):
+        size, real = _size(entry, ("real_areas", text), text), _size(entry, ("real_areas", text), str(area))
+        if size is not None and real is not None:
+            found.append((size.awg or f"{size.area_mm2:g} mm2", real.area_mm2))
+    return tuple(found)
+
+
+def _size(entry: Entry, steps: tuple[str, ...], text: str) -> Size | None:
+    try:
+        return read_size(text)
+    except QuantityError as error:
+        entry.fault("bad-value", entry.at(*steps), f"{steps[-1]}: {error}")
+        return None
+
+
+def _fittings(entry: Entry) -> Fittings:
+    """Read how conductors are fixed to the posts of a part."""
+    return Fittings(
+        terminal=entry.text("terminal"),
+        stud=entry.text("stud"),
+        is_covered=known_flag(entry, "cover"),
+        torque_nm=entry.number("torque", Dimension.TORQUE),
+        smallest=entry.size("smallest_size") if entry.has("smallest_size") else None,
+        largest=entry.size("largest_size") if entry.has("largest_size") else None,
+        ingress=entry.text("ingress"),
     )
 
 

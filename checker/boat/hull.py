@@ -9,6 +9,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 
+from checker.boat.landing import End, Isolation, Stack, Workmanship
 from checker.boat.parts import Cable, Part
 from checker.finding import NOWHERE, Span
 from checker.units import Size
@@ -16,7 +17,11 @@ from checker.units import Size
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Zone:
-    """Describe a compartment."""
+    """Describe a compartment. None or "" is what was not recorded.
+
+    `isolated_from` are claims, by the zone with petrol or gas; `opens_to` are zones that share
+    its air. `has_fuel_parts`: a fuel tank, filter, fitting or metal line is in it.
+    """
 
     id: str
     name: str
@@ -24,23 +29,46 @@ class Zone:
     is_engine_space: bool = False
     has_petrol_vapour: bool = False
     has_cooking_gas: bool = False
+    is_wet: bool = False
+    access: str = ""
+    has_hydrogen_vent: bool | None = None
+    charge_limit_a: float | None = None
+    has_fuel_parts: bool | None = None
+    opens_to: tuple[str, ...] = ()
+    isolated_from: tuple[Isolation, ...] = ()
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
     at_petrol: Span = field(default=NOWHERE, compare=False, repr=False)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Way:
-    """Describe a wireway or conduit through one zone. In a bundled way conductors lie together."""
+    """Describe a wireway or conduit through one zone. In a bundled way conductors lie together.
+
+    `passage` is what guards conductors at its bulkheads, `ac` the alternating-current cables in
+    it (none, sheathed, bare); both the class's workmanship where the way says nothing, else "".
+    """
 
     id: str
     zone: str
     length_m: float
     is_conduit: bool = False
     is_bundled: bool = True
+    passage: str = ""
+    ac: str = ""
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
+    at_passage: Span = field(default=NOWHERE, compare=False, repr=False)
+    at_ac: Span = field(default=NOWHERE, compare=False, repr=False)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Device:
-    """Describe one device aboard: a part at a place. `mounts` join an own post to another, zero length."""
+    """Describe one device aboard: a part at a place. `mounts` join an own post to another, zero length.
+
+    `is_covered` and `is_marked` are the device's own facts, else its part's or the class's
+    workmanship; None where nobody recorded it. `returns` is where the circuits of a panel bus
+    return to. `served` are the circuits of a position, in the order of their ids. `set_capacity_ah`
+    and `set_ratio` are what a monitor is set to; fuel facts are those of batteries.
+    """
 
     id: str
     part: Part
@@ -50,9 +78,21 @@ class Device:
     belongs_to: str = ""
     is_engine_mounted: bool = False
     circuit: str = ""
+    is_covered: bool | None = None
+    is_marked: bool | None = None
+    regulates: str = ""
+    returns: str = ""
+    served: tuple[str, ...] = ()
+    set_capacity_ah: float | None = None
+    set_ratio: str = ""
+    is_above_bilge_water: bool = False
+    fuel_clearance_m: float | None = None
+    is_fuel_shielded: bool = False
+    is_in_line_with_fuel: bool | None = None
     mounts: tuple[tuple[str, str], ...] = ()
     at: Span = field(default=NOWHERE, compare=False, repr=False)
     at_rating: Span = field(default=NOWHERE, compare=False, repr=False)
+    at_set: Span = field(default=NOWHERE, compare=False, repr=False)
     legends: tuple[tuple[str, Span], ...] = ()
 
 
@@ -63,6 +103,11 @@ class Conductor:
     `length_m` is the measured length where one was given, else ways and tails added up, which
     is `route_m`. `enclosed_m` is how much of it lies in a sheath, sleeve or conduit. `company`
     is the largest number of conductors lying together along it, itself counted.
+
+    `colour` is "" where it was not recorded. `label` is the text on it, its id unless the yard
+    wrote another; `labelled` says which ends carry it (both, from, to, none, "" not recorded).
+    `ends` are its start and its end. `passage` is what guards it where it passes a bulkhead
+    outside ways.
     """
 
     id: str
@@ -84,6 +129,14 @@ class Conductor:
     out_of_sheath_m: float | None = None
     circuit: str = ""
     is_bond: bool = False
+    colour: str = ""
+    is_colour_marked: bool = False
+    label: str = ""
+    labelled: str = ""
+    ends: tuple[End, End] = (End(), End())
+    passage: str = ""
+    at_colour: Span = field(default=NOWHERE, compare=False, repr=False)
+    at_label: Span = field(default=NOWHERE, compare=False, repr=False)
     at: Span = field(default=NOWHERE, compare=False, repr=False)
     at_size: Span = field(default=NOWHERE, compare=False, repr=False)
     at_length: Span = field(default=NOWHERE, compare=False, repr=False)
@@ -122,6 +175,8 @@ class Circuit:
     load: str = ""
     device: str = ""
     always_on: str = ""
+    shares: str = ""
+    return_reason: str = ""
     at: Span = field(default=NOWHERE, compare=False, repr=False)
     at_current: Span = field(default=NOWHERE, compare=False, repr=False)
 
@@ -186,6 +241,11 @@ class Boat:
     conditions: Mapping[str, Condition]
     engines: tuple[Engine, ...]
     generator_fuel: str = "none"
+    has_ac: bool | None = None
+    monitored: tuple[str, ...] | None = None
+    workmanship: Workmanship = field(default_factory=Workmanship)
+    landings: Mapping[str, tuple[Stack, ...]] = field(default_factory=dict)
+    at_facts: Span = field(default=NOWHERE, compare=False, repr=False)
     at: Span = field(default=NOWHERE, compare=False, repr=False)
     at_bonds: Span = field(default=NOWHERE, compare=False, repr=False)
     at_shields: Span = field(default=NOWHERE, compare=False, repr=False)

@@ -9,10 +9,35 @@ from __future__ import annotations
 from dataclasses import dataclass, field
 
 from checker.finding import NOWHERE, Span
+from checker.units import Size
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Battery:
+class Fittings:
+    """Describe the posts of a part as an electrician meets them; None or "" where it was not recorded.
+
+    `terminal` is how conductors are fixed: stud, screw, clamp, set-screw, blade, spring, wing-nut,
+    plug or lead. `stud` is its thread. `ingress` is the rating by IEC 60529.
+    """
+
+    terminal: str = ""
+    stud: str = ""
+    is_covered: bool | None = None
+    torque_nm: float | None = None
+    smallest: Size | None = None
+    largest: Size | None = None
+    ingress: str = ""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Fitted:
+    """What all parts have that conductors land on."""
+
+    fittings: Fittings = Fittings()
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Battery(Fitted):
     """Describe a battery: EMF and internal resistance at full and low charge."""
 
     id: str
@@ -24,6 +49,7 @@ class Battery:
     resistance_full_ohm: float | None = None
     resistance_low_ohm: float | None = None
     short_circuit_a: float | None = None
+    charge_voltage_v: float | None = None
     cranking_a: float | None = None
     at: Span = field(default=NOWHERE, compare=False, repr=False)
 
@@ -56,7 +82,7 @@ class Band:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Overcurrent:
+class Overcurrent(Fitted):
     """Describe a fuse or a breaker. A series holds one record for each rating it is made at."""
 
     id: str
@@ -77,18 +103,26 @@ class Overcurrent:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Bus:
-    """Describe a bus bar, fuse block bar, panel bar or terminal stud: one electrical node."""
+class Bus(Fitted):
+    """Describe a bus bar, fuse block bar, panel bar or terminal stud: one electrical node.
+
+    `studs` share terminals, up to `terminals_per_stud`; `screws` take one branch return each.
+    """
 
     id: str
     rating_a: float
+    studs: int | None = None
+    terminals_per_stud: int | None = None
+    screws: int | None = None
+    screw_thread: str = ""
+    is_splice: bool = False
     at: Span = field(default=NOWHERE, compare=False, repr=False)
 
     posts: tuple[str, ...] = ("",)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Metal:
+class Metal(Fitted):
     """Describe a metal part that can carry current: engine block, tank, keel bolt, mast."""
 
     id: str
@@ -98,7 +132,7 @@ class Metal:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Switch:
+class Switch(Fitted):
     """Describe a switch, relay or contactor by the contacts that each of its states closes."""
 
     id: str
@@ -113,7 +147,7 @@ class Switch:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Diode:
+class Diode(Fitted):
     """Describe what conducts one way only: an isolator, a blocking diode, a one-way disconnect.
 
     `paths` are (anode, cathode) pairs of its posts. A path that conducts drops `drop_v` and,
@@ -131,7 +165,7 @@ class Diode:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Shunt:
+class Shunt(Fitted):
     """Describe a monitoring shunt: `bat` faces the bank, `sys` the boat; `vbat`, `aux` are sense posts."""
 
     id: str
@@ -146,7 +180,7 @@ class Shunt:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Load:
+class Load(Fitted):
     """Describe a load between its feed post and its return post."""
 
     id: str
@@ -159,6 +193,11 @@ class Load:
     model: str = "constant-current"
     duty_s: float | None = None
     is_motor: bool = False
+    stall_a: float | None = None
+    stall_protection: str = ""
+    has_own_switch: bool = False
+    is_regulator: bool = False
+    case_isolated: bool | None = None
     ignition_protected: bool = False
     feed_post: str = "pos"
     return_post: str = "neg"
@@ -180,16 +219,28 @@ class Terminals:
     max_a: float
     voltage_v: float
     limited: bool = False
+    cold_open_v: float | None = None
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Source:
-    """Describe a charge source or converter: outputs that feed, inputs that draw, posts joined inside (ohm)."""
+class Source(Fitted):
+    """Describe a charge source or converter: outputs that feed, inputs that draw, posts joined inside (ohm).
+
+    `rated_a` is what the maker prints, below the cold maximum of an output. `enable` says what
+    switches a converter on, "" where that was not recorded. `on_disconnect` says what happens
+    when its battery disconnects itself: stops-first, survives, harmed.
+    """
 
     id: str
     outputs: tuple[Terminals, ...]
     inputs: tuple[Terminals, ...] = ()
     joined: tuple[tuple[str, str, float], ...] = ()
+    rated_a: float | None = None
+    max_input_v: float | None = None
+    has_internal_fuse: bool | None = None
+    enable: str = ""
+    on_disconnect: str = ""
+    case_isolated: bool | None = None
     case_post: str = ""
     ignition_protected: bool = False
     at: Span = field(default=NOWHERE, compare=False, repr=False)
@@ -214,6 +265,8 @@ class Cable:
     is_sheathed: bool
     cores: int = 1
     is_welding: bool = False
+    core_colours: tuple[str, ...] = ()
+    real_areas_mm2: tuple[tuple[str, float], ...] = ()
     at: Span = field(default=NOWHERE, compare=False, repr=False)
 
     posts: tuple[str, ...] = ()

@@ -10,7 +10,14 @@ from enum import Enum
 from functools import lru_cache
 
 from checker.reading.words import shown
-from checker.units import AWG_SMALLEST, METRE_PER_FOOT, METRE_PER_INCH, Size, awg_size
+from checker.units import (
+    AWG_SMALLEST,
+    METRE_PER_FOOT,
+    METRE_PER_INCH,
+    NEWTON_METRE_PER_FOOT_POUND,
+    Size,
+    awg_size,
+)
 
 
 class Dimension(Enum):
@@ -24,6 +31,7 @@ class Dimension(Enum):
     RESISTANCE = "resistance"
     TEMPERATURE = "temperature"
     TIME = "time"
+    TORQUE = "torque"
     SIZE = "size"
 
 
@@ -40,6 +48,7 @@ UNITS: dict[Dimension, dict[str, float]] = {
     Dimension.RESISTANCE: {"ohm": 1.0, "mohm": 0.001},
     Dimension.TEMPERATURE: {"C": 1.0},
     Dimension.TIME: {"s": 1.0},
+    Dimension.TORQUE: {"Nm": 1.0, "ft-lb": NEWTON_METRE_PER_FOOT_POUND, "in-lb": NEWTON_METRE_PER_FOOT_POUND / 12},
     Dimension.SIZE: {"AWG": 1.0, "mm2": 1.0},
 }
 
@@ -52,6 +61,7 @@ EXAMPLES = {
     Dimension.RESISTANCE: "0.1 mohm",
     Dimension.TEMPERATURE: "105 C",
     Dimension.TIME: "10 s",
+    Dimension.TORQUE: "12 Nm",
     Dimension.SIZE: "6 AWG, 2/0 AWG or 16 mm2",
 }
 
@@ -77,7 +87,7 @@ _BARE = re.compile(r"[-+]?[0-9.,_/]+(?:[eE][-+]?[0-9]+)?\Z")
 
 @lru_cache(maxsize=20_000)
 def read_number(text: str, dimension: Dimension) -> float:
-    """Read a quantity with a unit of its dimension into SI (m, A, V, W, Ah, ohm, C, s).
+    """Read a quantity with a unit of its dimension into SI (m, A, V, W, Ah, ohm, C, s, N m).
 
     Raises:
         QuantityError: If the text is no such quantity; the message says what to write.

@@ -31,7 +31,7 @@ REGISTRY: Registry[Any] = Registry().with_resources(
 NAMED_PARTS = ("properties", "$defs")
 SINGLE_PARTS = ("additionalProperties", "propertyNames", "items", "then", "else", "if")
 QUANTITIES = {
-    "length", "current", "voltage", "power", "capacity", "resistance", "temperature", "time", "size",
+    "length", "current", "voltage", "power", "capacity", "resistance", "temperature", "time", "torque", "size",
 }  # fmt: skip
 REFERENCES = {
     "part", "zone", "way", "device", "post", "circuit", "conductor", "state", "option", "band",
@@ -246,6 +246,9 @@ SPELLINGS = {
     "temperature": (["105 C", "-20 C"], ["105", "105 F", "--5 C"]),
     "time": (["10 s", "0.0000604 s"], ["10", "1 min", "never"]),
     "time_or_never": (["360 s", "never"], ["Never", "360"]),
+    "torque": (["12 Nm", "9 ft-lb", "80 in-lb"], ["12", "12 N", "12 nm"]),
+    "thread": (["M8", "#10", "5/16 in"], ["8", "m8", "M8 x 1", "5/16"]),
+    "ingress": (["IP67", "IPX4", "IP69K"], ["67", "IP7", "ip67"]),
     "size": (
         ["6 AWG", "2/0 AWG", "0000 AWG", "16 mm2"],
         ["6", "00", "5/0 AWG", "010 AWG", "00000 AWG", "16"],
