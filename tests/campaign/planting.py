@@ -56,7 +56,7 @@ class Plant:
 
 
 def at(*steps: Any) -> Row:
-    """Return a nested mapping: at("devices", "F-1", {"rating": "5 A"})."""
+    """Return a mapping nested under keys; the last step is the innermost mapping."""
     *keys, value = steps
     for key in reversed(keys):
         value = {key: value}
