@@ -136,7 +136,8 @@ class Outcome(NamedTuple):
 class Card:
     """Describe a check to the people who read its findings.
 
-    `why` says in one sentence what happens if the fault stays. `catalogue` are the kinds of
+    `why` says in one sentence what happens if the fault stays. `formula` is what is reckoned,
+    empty where nothing is. `catalogue` are the kinds of
     fault that it finds, by the ids of the fault catalogue under tests/.
     """
 
@@ -147,6 +148,7 @@ class Card:
     citation: str
     why: str
     text: str
+    formula: str = ""
     exemptions: str = ""
     caution: str = ""
     catalogue: tuple[str, ...] = ()

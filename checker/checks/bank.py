@@ -25,7 +25,8 @@ def _banks(case: Case) -> Iterator[tuple[Bank, Place]]:
 @check(
     title="The batteries of a bank are alike",
     basis=Basis.COMMON_PRACTICE,
-    citation="common practice, no source; in series V = Σ V, in parallel Ah = Σ Ah, of like batteries only",
+    citation="common practice, no source",
+    formula="in series V = Σ V, in parallel Ah = Σ Ah, of like batteries only",
     why="the weaker battery is overcharged or reversed",
     level=Level.WARNING,
     catalogue=("BNK-01",),
@@ -56,8 +57,8 @@ def alike_batteries(case: Case) -> Iterator[Outcome]:
 @check(
     title="The strings of a bank share the current evenly",
     basis=Basis.COMMON_PRACTICE,
-    citation="common practice, no source; shares by Kirchhoff's laws: ΣI = 0, V = E − I·R; "
-    "largest share = max|I|/(ΣI/n)",
+    citation="common practice, no source",
+    formula="shares by Kirchhoff's laws: ΣI = 0 at every post, V = E − I·R; largest share = max|I| / (ΣI / n)",
     why="the battery nearest the leads works itself to death first",
     level=Level.WARNING,
     catalogue=("BNK-04",),
@@ -137,8 +138,8 @@ def inner_landing(case: Case) -> Iterator[Outcome]:
 @check(
     title="A bank's links bear what is asked with one string out",
     basis=Basis.LAW,
-    citation="33 CFR § 183.425(b): I ≤ the ampacity; that each string is taken out in turn is common practice, "
-    "no source",
+    citation="33 CFR § 183.425(b); that each string is taken out in turn is common practice, no source",
+    formula="|I| with one string out ≤ the ampacity",
     why="with one string failed the link of the other burns",
     catalogue=("BNK-06",),
     per_set=True,

@@ -21,8 +21,8 @@ def _part(device: Device) -> Overcurrent:
 @check(
     title="A fault in a branch leaves the device above it closed",
     basis=Basis.COMMON_PRACTICE,
-    citation="common practice, no source; requirement text: 46 CFR 111.51-3; t_min,upper(I) > t_max,lower(I) up to the "
-    "prospective current; without bands In,upper ≥ 1.6·In,lower (IEC 60269-2, gG)",
+    citation="common practice, no source; requirement text: 46 CFR 111.51-3; ratio: IEC 60269-2, gG",
+    formula="t_min,upper(I) > t_max,lower(I) up to the prospective current; without bands In,upper ≥ 1.6·In,lower",
     why="one shorted reading lamp blacks out the helm",
     level=Level.WARNING,
     catalogue=("PRO-12",),
@@ -77,7 +77,8 @@ def _by_bands(case: Case, pair: Pair, place: Place, up_to_a: float, prospective_
 @check(
     title="A branch device is no larger than the one above it",
     basis=Basis.COMMON_PRACTICE,
-    citation="common practice, no source: In,lower ≤ In,upper",
+    citation="common practice, no source",
+    formula="In,lower ≤ In,upper",
     why="the main opens first, and the branch is not protected at its value",
     level=Level.WARNING,
     catalogue=("PRO-13",),
@@ -103,8 +104,8 @@ def rating_order(case: Case) -> Iterator[Outcome]:
 @check(
     title="A device carries its load, and lets it start",
     basis=Basis.COMMON_PRACTICE,
-    citation="common practice, no source: I_load ≤ In; starting: "
-    "t_min(I_peak/In) ≥ the starting time by the device's band",
+    citation="common practice, no source",
+    formula="I_load ≤ In; starting: t_min(I_peak/In) ≥ the starting time, by the device's band",
     why="nuisance trips: the crew fits a bigger fuse",
     level=Level.WARNING,
     catalogue=("PRO-14", "PRO-19"),

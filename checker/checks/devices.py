@@ -30,6 +30,7 @@ def _at(device: Device, state: str = "") -> Place:
     title="A device's voltage rating is not below its circuit's",
     basis=Basis.LAW,
     citation="33 CFR § 183.455(d)",
+    formula="rated voltage ≥ nominal voltage of the net",
     why="the arc is not put out and the device burns",
     catalogue=("PRO-10",),
     caution="the rating must be a DC rating",
@@ -90,6 +91,7 @@ def breaker_type(case: Case) -> Iterator[Outcome]:
     title="A bus bears what its devices let through it",
     basis=Basis.FROM_MEMORY,
     citation="ABYC E-11, bus and panel protection (from memory)",
+    formula="the largest, over divisions of its ways, of min(Σ In in, Σ In out) ≤ rating",
     why="the bus bar overheats before anything opens",
     catalogue=("PRO-23",),
 )

@@ -25,7 +25,8 @@ _DROP_CAUTION = (
 @check(
     title="A circuit's own conductors keep the voltage drop",
     basis=Basis.FROM_MEMORY,
-    citation="ABYC E-11 (2008) 11.14.2.6: E = K·I·L/CM, 3 % and 10 % groups; the federal rule has no limit",
+    citation="ABYC E-11 (2008) 11.14.2.6, 3 % and 10 % groups; the federal rule has no limit",
+    formula="E = Σ K·I·L/CM over the conductors out and back; E / nominal voltage ≤ 3 % or 10 %",
     why="lights go dim, electronics reset and motors stall, heat and trip late",
     catalogue=("CON-07", "CON-08"),
     caution=_DROP_CAUTION,
@@ -47,6 +48,7 @@ def voltage_drop(case: Case) -> Iterator[Outcome]:
     title="A circuit keeps the voltage drop from the bank",
     basis=Basis.COMMON_PRACTICE,
     citation="limits of ABYC E-11 (2008) 11.14.2.6; that they hold from the bank is common practice, no source",
+    formula="E = Σ K·I·L/CM over the circuit's own and the shared conductors; E / nominal voltage ≤ 3 % or 10 %",
     why="a branch that passes alone fails on the water, where the feeder has used up the allowance",
     catalogue=("CON-09",),
     caution=_DROP_CAUTION,
@@ -186,6 +188,7 @@ def _only_back(case: Case, conductor: Conductor) -> Conductor | None:
     title="A return conductor is no thinner than its feed",
     basis=Basis.LAW,
     citation="33 CFR § 183.425(b) binds both alike; one device stands for both",
+    formula="thinnest area back ≥ thinnest area out",
     why="the thinner return overheats first, and nobody looks there",
     catalogue=("CON-16",),
 )

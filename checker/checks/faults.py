@@ -27,7 +27,8 @@ def _devices(case: Case) -> Iterator[tuple[Device, Overcurrent]]:
 @check(
     title="A device can break the largest current that can flow where it stands",
     basis=Basis.FROM_MEMORY,
-    citation=f"ABYC E-11, interrupting capacity (second hand); {THEVENIN}, copper at 20 C, full batteries",
+    citation="ABYC E-11, interrupting capacity (second hand)",
+    formula=f"{THEVENIN}, copper at 20 C, full batteries; I ≤ interrupting capacity",
     why="the device welds or bursts, and the current goes on",
     catalogue=("PRO-09",),
     caution="use the maker's short-circuit figure of the bank; low resistance is the safe side here",
@@ -99,8 +100,8 @@ def _table_words(case: Case, device: Device, feeding: tuple[str, ...]) -> str:
 @check(
     title="The device opens in time for a short circuit at the far end",
     basis=Basis.COMMON_PRACTICE,
-    citation=f"common practice, no source; principle and 5 s: IEC 60364-4-43, 434.5.2; {THEVENIN}, copper at 105 C, "
-    "low batteries; t from the late edge of the device's band at I/In",
+    citation="common practice, no source; principle and 5 s: IEC 60364-4-43, 434.5.2",
+    formula=f"{THEVENIN}, copper at 105 C, low batteries; t_max(I/In) ≤ 5 s by the late edge of the device's band",
     why="the cable glows while the device holds",
     level=Level.WARNING,
     catalogue=("PRO-15",),
@@ -149,7 +150,8 @@ def _judge_far(case: Case, device: Device, part: Overcurrent, far: FarEnd, place
 @check(
     title="A conductor withstands what its device lets through until it opens",
     basis=Basis.STANDARD,
-    citation="IEC 60364-4-43, 434.5.2: I²·t ≤ k²·S²; k by IEC 60364-5-54, Annex A, to 160 C; valid up to 5 s",
+    citation="IEC 60364-4-43, 434.5.2; k by IEC 60364-5-54, Annex A, to 160 C",
+    formula="I²·t ≤ k²·S², valid up to 5 s",
     why="the insulation is spoiled before the device has opened",
     catalogue=("PRO-04", "PRO-15"),
 )

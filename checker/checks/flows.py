@@ -47,7 +47,8 @@ def _missing_field(case: Case) -> str:
 @check(
     title="Every operating condition has a working point",
     basis=Basis.PHYSICS,
-    citation="P = U·I against U = E − I·R: beyond P = E²/4R there is no solution",
+    citation="Ohm's law and P = U·I",
+    formula="P = U·I against U = E − I·R: beyond P = E²/4R there is no solution",
     why="a load of constant power draws more the lower its voltage is, until the network collapses",
     catalogue=("LOD-03",),
 )
@@ -80,7 +81,8 @@ def working_point(case: Case) -> Iterator[Outcome]:
 @check(
     title="A conductor bears its solved current",
     basis=Basis.LAW,
-    citation=f"33 CFR § 183.425(b), (c) and Table 5; {CIRCUIT_LAWS}",
+    citation="33 CFR § 183.425(b), (c) and Table 5",
+    formula=f"{CIRCUIT_LAWS}; |I| ≤ the ampacity",
     why="shared returns and parallel paths carry more than any one circuit says",
     catalogue=("CON-01", "CON-11", "CON-19", "RET-06"),
     exemptions="the roles of § 183.425(g); currents that last no longer than a surge",
@@ -172,7 +174,8 @@ def _solved_gauge(case: Case, conductor: Conductor, current_a: float) -> str:
     title="A circuit keeps the voltage drop in the solved network",
     basis=Basis.COMMON_PRACTICE,
     citation="limits of ABYC E-11 (2008) 11.14.2.6; that they hold in operation, from the battery posts, is common "
-    f"practice, no source; {CIRCUIT_LAWS}",
+    "practice, no source",
+    formula=f"{CIRCUIT_LAWS}; (E − U at the load) / nominal ≤ 3 % or 10 %",
     why="what is alone in the drawing is not alone on the water: feeders, fuses, switches and the shunt drop too",
     level=Level.ERROR,
     catalogue=("CON-09", "LOD-03", "LOD-04"),
@@ -300,7 +303,8 @@ def _judge_solved_drop(
 @check(
     title="A load keeps its smallest voltage in every condition",
     basis=Basis.COMMON_PRACTICE,
-    citation=f"the maker's smallest voltage; common practice, no source; {CIRCUIT_LAWS}",
+    citation="the maker's smallest voltage; common practice, no source",
+    formula=f"{CIRCUIT_LAWS}; U at the load ≥ the maker's smallest",
     why="plotter and pilot restart while a motor starts, and lights are not seen",
     level=Level.WARNING,
     catalogue=("CON-18", "LOD-04"),
@@ -341,7 +345,8 @@ def minimum_voltage(case: Case) -> Iterator[Outcome]:
 @check(
     title="Buses, switches and devices bear the solved sum of each condition",
     basis=Basis.COMMON_PRACTICE,
-    citation=f"the makers' ratings; common practice, no source; {CIRCUIT_LAWS}",
+    citation="the makers' ratings; common practice, no source",
+    formula=f"{CIRCUIT_LAWS}; |I| ≤ rating",
     why="a main trips, a contact welds or a bar overheats at the worst moment",
     catalogue=("PAN-01", "PAN-05", "PAN-07", "BNK-09", "SRC-03"),
 )

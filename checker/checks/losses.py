@@ -170,7 +170,8 @@ def _circuit(case: Case, device: Device) -> Circuit | None:
 @check(
     title="What stays on leaves the bank charged until the owner is back",
     basis=Basis.COMMON_PRACTICE,
-    citation="common practice, no source: days = usable share · Ah / (24 h · I)",
+    citation="common practice, no source",
+    formula="days = usable share · Ah / (24 h · I)",
     why="an empty bank pumps no bilge",
     level=Level.NOTE,
     catalogue=("LOD-09",),
@@ -224,8 +225,8 @@ def _standby_a(case: Case, bank: str) -> float | None:
 @check(
     title="One loose return sends no heavy current through a thin path",
     basis=Basis.COMMON_PRACTICE,
-    citation="common practice, no source; 33 CFR § 183.415 gives the reason for twin engines; ΣI = 0 at every post, "
-    "V = I·R, each load as R = V/I; then |I| ≤ the ampacity of each path",
+    citation="common practice, no source; 33 CFR § 183.415 gives the reason for twin engines",
+    formula="ΣI = 0 at every post, V = I·R, each load as R = V/I; then |I| ≤ the ampacity of each path",
     why="the classic burnt charger lead or instrument wire after a loose engine ground",
     level=Level.WARNING,
     catalogue=("RET-11",),

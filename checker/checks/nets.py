@@ -33,6 +33,7 @@ def dead_short(case: Case) -> Iterator[Outcome]:
     title="Batteries in a loop agree",
     basis=Basis.PHYSICS,
     citation="Kirchhoff's voltage law",
+    formula="Σ V round a loop = 0",
     why="a reversed battery, or 12 V beside 24 V, drives an unlimited current round the loop",
     catalogue=("BNK-02",),
 )
@@ -88,6 +89,7 @@ def _known(case: Case, load: LoadTie) -> tuple[float, Potentials] | None:
     title="A load stands across its own nominal voltage",
     basis=Basis.COMMON_PRACTICE,
     citation="common practice, no source",
+    formula="U = potential of the feed net − potential of the return net",
     why="the load dies at once, or never works",
     catalogue=("LOD-02",),
 )

@@ -147,6 +147,7 @@ def shunt_direction(case: Case) -> Iterator[Outcome]:
     title="The shunt bears the largest current of its bank",
     basis=Basis.COMMON_PRACTICE,
     citation="common practice, no source; the maker's continuous and short-time figures",
+    formula="|I| of the bank ≤ what the shunt bears for that long",
     why="an overloaded shunt drifts, then burns",
     catalogue=("SHU-04",),
 )
