@@ -30,6 +30,7 @@ from checker.reading.yard_files import YardFiles, read_yard
 from checker.result.cards import CLASS_REVISION, NOT_STUDIED, RESULT_CARDS
 from checker.result.gather import news_order, pass_order, tightest
 from checker.result.model import FleetResult, SetUse, Study, SubjectResult
+from checker.result.sisters import Lengths, far_lengths, lengths_of
 from checker.result.waiver_file import read_waivers
 from checker.result.waivers import Waiver, apply_waivers, unmatched
 
@@ -47,6 +48,7 @@ class Studied:
     sets: tuple[SetUse, ...] = ()
     ladder: tuple[Rung, ...] = ()
     tightest: Mapping[str, Outcome] = field(default_factory=dict)
+    lengths: Lengths = field(default_factory=Lengths)
     faults: tuple[Fault, ...] = ()
 
 
@@ -163,7 +165,8 @@ class _Bench:
         passes = pass_order(outcomes)
         thin = sum(is_thin(outcome.measure) for outcome in passes)
         ladder = studies.ladder
-        return Studied(news_order(outcomes), passes, thin, sets, ladder, tightest(ladder, outcomes))
+        tight = tightest(ladder, outcomes)
+        return Studied(news_order(outcomes), passes, thin, sets, ladder, tight, lengths_of(boat))
 
 
 def study_boat(boat: Boat) -> Studies:
@@ -275,13 +278,14 @@ class _Gatherer:
         results: list[SubjectResult] = []
         matched: set[str] = set()
         hull_files = self._file_outcomes_of_hulls()
+        far = self._far_lengths()
         for subject in self._subjects:
             study = self._studied[subject.key]
             design = self._assembly.classes[subject.class_id]
             mine = [w for w in waivers if w.concerns(subject.id, subject.class_id)]
             waived = apply_waivers(study.news, mine, self._today)
             matched |= waived.matched
-            own = [*waived.extra, *hull_files.get(subject.id, ()), *_behind(subject, design)]
+            own = [*waived.extra, *hull_files.get(subject.id, ()), *_behind(subject, design), *far.get(subject.id, ())]
             own += [unmatched(w) for w in mine if w.hull and w.id not in waived.matched]
             results.append(
                 SubjectResult(
@@ -318,6 +322,17 @@ class _Gatherer:
             file_outcomes=self._fleet_outcomes(waivers, matched),
             unstudied=self._unstudied(),
         )
+
+    def _far_lengths(self) -> dict[str, list[Outcome]]:
+        """Compare sister hulls; single hulls have no sisters at hand."""
+        if self._only:
+            return {}
+        found: dict[str, list[Outcome]] = {}
+        for class_id in self._assembly.classes:
+            of_class = [s for s in self._subjects if s.class_id == class_id]
+            hulls = [(s.id, self._studied[s.key].lengths) for s in of_class if s.is_hull]
+            found.update(far_lengths(hulls, (self._studied[s.key].lengths for s in of_class if not s.is_hull)))
+        return found
 
     def _yard_name(self) -> str:
         data = self._files.yard.data if self._files.yard else None

@@ -41,6 +41,14 @@ CLASS_REVISION = _card(
     "electrical, a note where it did not. Retrofit the hull, or record its wiring as changes, and raise its revision.",
     ("FLT-07",),
 )  # fmt: skip
+LENGTH_FAR_FROM_SISTERS = _card(
+    "length-far-from-sisters", "A hull's own lengths are like those of its sisters", Level.NOTE,
+    "a typing error, or another route than the drawing shows",
+    "A length that a hull's own file gives, against the middle length of the same conductor over all hulls of the "
+    "class, or, with fewer than three hulls, against the class: more than a quarter and half a metre apart. Not "
+    "looked at where single hulls are checked.",
+    ("FLT-12",),
+)  # fmt: skip
 NOT_STUDIED = _card(
     "not-studied", "Every hull could be assembled and studied", Level.ERROR,
     "a hull that was not looked at must not look like one that passed",
@@ -48,5 +56,6 @@ NOT_STUDIED = _card(
 )  # fmt: skip
 
 RESULT_CARDS = (
-    WAIVER_UNMATCHED, WAIVER_TOO_WIDE, WAIVER_EXPIRED, WAIVER_INPUTS_CHANGED, CLASS_REVISION, NOT_STUDIED,
+    WAIVER_UNMATCHED, WAIVER_TOO_WIDE, WAIVER_EXPIRED, WAIVER_INPUTS_CHANGED, CLASS_REVISION,
+    LENGTH_FAR_FROM_SISTERS, NOT_STUDIED,
 )  # fmt: skip
