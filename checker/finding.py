@@ -109,9 +109,11 @@ class Outcome(NamedTuple):
     `part` is the id the yard wrote or the derived one (`P11.out`). `limit_set` is empty where
     the verdict rests on physics or the yard's own data. `missing` names the field to fill in
     where the verdict is "not assessed". `also_at` are other lines that have to do with it.
-    `inputs` are the facts that made a finding; a waiver is bound to their fingerprint. A named
-    tuple, since a fleet makes hundreds of thousands and sends them between processes; always
-    made by field names.
+    `inputs` are the facts that made a finding; a waiver is bound to their fingerprint. `is_thin`:
+    it passed with little to spare. `house` are the yard's own rules that changed a limit which
+    the check rests on, or its level. `rests_on` is empty where the card's citation tells it: the
+    tables of a set that the yard enters have citations of their own. A named tuple, since a fleet
+    makes hundreds of thousands and sends them between processes; always made by field names.
     """
 
     verdict: Verdict
@@ -130,6 +132,9 @@ class Outcome(NamedTuple):
     note: str = ""
     inputs: tuple[tuple[str, str], ...] = ()
     also_at: tuple[Span, ...] = ()
+    is_thin: bool = False
+    house: tuple[str, ...] = ()
+    rests_on: str = ""
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

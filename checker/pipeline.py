@@ -15,11 +15,21 @@ from checker.boat.build import build_boat
 from checker.boat.catalogue import Catalogue, read_catalogue
 from checker.boat.hull import Boat
 from checker.checks.catalogue import CHECKS
-from checker.checks.check import Case, Check, House, is_thin
+from checker.checks.check import Case, Check, House, HouseChange
+from checker.checks.house import HouseRules, read_house
 from checker.errors import UsageError
 from checker.finding import NOWHERE, Card, Level, Outcome, Verdict
+from checker.limits.entered import Entered, read_entered
 from checker.limits.formulas import resistivity_ohm_mm2_per_m, study_figures
-from checker.limits.limit_set import LimitSet, limit_set_ids, load_limit_set
+from checker.limits.limit_set import (
+    NO_CHANGES,
+    NO_TABLES,
+    TABLES,
+    LimitSet,
+    limit_set_ids,
+    load_limit_set,
+    read_limit_set,
+)
 from checker.network.flow import Copper
 from checker.network.ladder import Rung
 from checker.network.studies import Coppers, Studies
@@ -29,7 +39,7 @@ from checker.reading.words import nearest
 from checker.reading.yard_files import YardFiles, read_yard
 from checker.result.cards import CLASS_REVISION, NOT_STUDIED, RESULT_CARDS
 from checker.result.gather import news_order, pass_order, tightest
-from checker.result.model import FleetResult, SetUse, Study, SubjectResult
+from checker.result.model import EnteredTable, FleetResult, SetUse, Study, SubjectResult
 from checker.result.sisters import Lengths, far_lengths, lengths_of
 from checker.result.waiver_file import read_waivers
 from checker.result.waivers import Waiver, apply_waivers, unmatched
@@ -87,13 +97,15 @@ def check_fleet(
         assembly = assemble(files)
         catalogue, part_faults = _catalogue(files)
         subjects = _chosen(assembly, files, only)
-        bench = _Bench(assembly, catalogue, _house(files), _adopted(files))
+        entered, table_faults = read_entered(files.limits, files.faulty)
+        rules = _house(files, assembly, entered)
+        bench = _Bench(assembly, catalogue, rules.house, _adopted(files), _limit_sets(entered, rules))
         keys = list(dict.fromkeys(subject.key for subject in subjects))
         if part_faults:
             keys = []
         studied = dict(zip(keys, _study_all(bench, keys, workers, progress), strict=True))
-        faults = [*files.faults, *assembly.faults, *part_faults]
-        return _Gatherer(files, assembly, subjects, studied, faults, today, only).result()
+        faults = [*files.faults, *assembly.faults, *part_faults, *table_faults, *rules.faults]
+        return _Gatherer(files, assembly, subjects, studied, faults, today, only, rules.house).result()
 
 
 @contextlib.contextmanager
@@ -115,14 +127,22 @@ def _catalogue(files: YardFiles) -> tuple[Catalogue, list[Fault]]:
     return read_catalogue(files.parts)
 
 
-def _house(files: YardFiles) -> House:
-    data = files.yard.data if files.yard and isinstance(files.yard.data, dict) else {}
-    house = data.get("house", {}) if isinstance(data.get("house", {}), dict) else {}
-    critical = house.get("drop_critical", ())
-    return House(
-        drop_critical=tuple(critical) if isinstance(critical, list) else (),
-        next_smaller_awg=house.get("metric_sizes") == "next-smaller-awg",
-    )
+def _house(files: YardFiles, assembly: Assembly, entered: Entered) -> HouseRules:
+    yard = files.yard
+    if yard is None or yard.file in files.faulty:
+        return HouseRules()  # its faults are told; what it changes cannot be trusted
+    circuits = {name for boat in assembly.content.values() for name in boat.data.get("circuits", {})}
+    return read_house(yard, CHECKS, circuits, entered)
+
+
+def _limit_sets(entered: Entered, rules: HouseRules) -> dict[str, LimitSet]:
+    """Return every limit set, with the tables that the yard enters and under the yard's own rules."""
+    return {
+        name: read_limit_set(TABLES / name, entered.get(name, NO_TABLES), rules.of_sets.get(name, NO_CHANGES))
+        if name in entered or name in rules.of_sets
+        else load_limit_set(name)
+        for name in limit_set_ids()
+    }
 
 
 def _adopted(files: YardFiles) -> tuple[str, ...]:
@@ -146,24 +166,32 @@ def _chosen(assembly: Assembly, files: YardFiles, only: Collection[str]) -> list
 class _Bench:
     """Hold what is needed to study any boat of the fleet."""
 
-    def __init__(self, assembly: Assembly, catalogue: Catalogue, house: House, adopted: tuple[str, ...]) -> None:
+    def __init__(
+        self,
+        assembly: Assembly,
+        catalogue: Catalogue,
+        house: House,
+        adopted: tuple[str, ...],
+        sets: Mapping[str, LimitSet],
+    ) -> None:
         self._content = assembly.content
         self._class_of = {subject.key: subject.class_id for subject in assembly.subjects}
         self._catalogue = catalogue
         self._house = house
         self._adopted = adopted
+        self._sets = sets
 
     def study(self, key: StudyKey) -> Studied:
         """Build one boat, study it, and hold it against every limit set that it is judged by."""
         boat, faults = build_boat(self._content[key], self._class_of[key], self._catalogue)
         if boat is None:
             return Studied(faults=tuple(faults))
-        sets = _judged_by(boat, self._adopted)
-        limits = tuple(load_limit_set(use.id) for use in sets)
+        sets = _judged_by(boat, self._adopted, self._sets)
+        limits = tuple(self._sets[use.id] for use in sets)
         studies = study_boat(boat)
         outcomes = run_checks(studies, limits, self._house)
         passes = pass_order(outcomes)
-        thin = sum(is_thin(outcome.measure) for outcome in passes)
+        thin = sum(outcome.is_thin for outcome in passes)
         ladder = studies.ladder
         tight = tightest(ladder, outcomes)
         return Studied(news_order(outcomes), passes, thin, sets, ladder, tight, lengths_of(boat))
@@ -186,15 +214,15 @@ def run_checks(
     outcomes: list[Outcome] = []
     for check in checks:
         for one in limits if check.is_per_set else limits[:1]:
-            outcomes += check.run(first.under(one))
+            outcomes += check.look(first.under(one))
     return outcomes
 
 
-def _judged_by(boat: Boat, adopted: tuple[str, ...]) -> tuple[SetUse, ...]:
+def _judged_by(boat: Boat, adopted: tuple[str, ...], sets: Mapping[str, LimitSet]) -> tuple[SetUse, ...]:
     """Return the limit sets that bind a boat by its own facts, and those its yard adopts."""
     uses: list[SetUse] = []
     for name in limit_set_ids():
-        limits = load_limit_set(name)
+        limits = sets[name]
         petrol = [e.id for e in boat.engines if e.fuel == "petrol" and e.mounting != "outboard"]
         if boat.generator_fuel == "petrol":
             petrol.append("generator")
@@ -204,8 +232,26 @@ def _judged_by(boat: Boat, adopted: tuple[str, ...]) -> tuple[SetUse, ...]:
             why = "adopted by the yard"
         else:
             continue
-        uses.append(SetUse(name, limits.title, why, limits.from_memory_count, limits.caution))
+        uses.append(
+            SetUse(
+                name, limits.title, why, limits.from_memory_count, limits.caution, _entered_tables(limits),
+                limits.not_entered,
+            )
+        )  # fmt: skip
     return tuple(uses)
+
+
+def _entered_tables(limits: LimitSet) -> tuple[EnteredTable, ...]:
+    """Return the tables that the yard has entered, each with where it was read."""
+    found: list[EnteredTable] = []
+    for table, file in limits.entered:
+        citation = getattr(limits, table).citation
+        found.append(
+            EnteredTable(
+                table, citation.document, citation.clause, citation.edition, citation.page, citation.basis.value, file
+            )
+        )
+    return tuple(found)
 
 
 def _study_all(bench: _Bench, keys: list[StudyKey], workers: int, progress: Progress | None) -> list[Studied]:
@@ -258,7 +304,9 @@ class _Gatherer:
         faults: list[Fault],
         today: datetime.date,
         only: Collection[str],
+        house: House,
     ) -> None:
+        self._house = house
         self._files = files
         self._assembly = assembly
         self._studied = studied
@@ -308,6 +356,7 @@ class _Gatherer:
                     ladder=study.ladder,
                     tightest=study.tightest,
                     accepted=waived.accepted,
+                    house=self._house_of(study.sets),
                 )
             )
         return FleetResult(
@@ -321,7 +370,13 @@ class _Gatherer:
             ),
             file_outcomes=self._fleet_outcomes(waivers, matched),
             unstudied=self._unstudied(),
+            house=self._house.changes,
         )
+
+    def _house_of(self, sets: Sequence[SetUse]) -> tuple[HouseChange, ...]:
+        """Return the yard's own rules that bear on a boat judged by these sets."""
+        judged_by = {"", *(use.id for use in sets)}
+        return tuple(change for change in self._house.changes if change.limit_set in judged_by)
 
     def _far_lengths(self) -> dict[str, list[Outcome]]:
         """Compare sister hulls; single hulls have no sisters at hand."""

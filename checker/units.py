@@ -72,6 +72,11 @@ def metre_from_inch(length_in: float) -> float:
     return length_in * METRE_PER_INCH
 
 
+def metre_from_millimetre(length_mm: float) -> float:
+    """Convert millimetres to metres."""
+    return length_mm / 1000
+
+
 def inch_from_metre(length_m: float) -> float:
     """Convert metres to inches."""
     return length_m / METRE_PER_INCH

@@ -28,10 +28,13 @@ limit_sets: [cfr33-183-i, voluntary-dc]
 
 PARTS_YAML = """\
 parts:
-  house-battery: {kind: battery, voltage: 12 V, capacity: 100 Ah, chemistry: agm-lead, emf_full: 12.8 V,
+  house-battery: {kind: battery, voltage: 12 V, capacity: 100 Ah, chemistry: agm-lead,
+    terminal: clamp, cover: true, torque: 12 Nm, smallest_size: 22 AWG, largest_size: 4/0 AWG,
+    emf_full: 12.8 V,
     emf_low: 11.9 V, resistance_full: 4 mohm, resistance_low: 6 mohm, short_circuit: 3200 A}
   start-battery: {kind: battery, voltage: 12 V, capacity: 75 Ah, chemistry: agm-lead, emf_full: 12.8 V,
-    emf_low: 11.9 V, resistance_full: 4 mohm, resistance_low: 6 mohm, short_circuit: 3200 A}
+    emf_low: 11.9 V, resistance_full: 4 mohm, resistance_low: 6 mohm, short_circuit: 3200 A,
+    terminal: stud, stud: M10, cover: true, torque: 12 Nm, smallest_size: 22 AWG, largest_size: 4/0 AWG}
   battery-switch:
     kind: switch
     posts: [in, out]
@@ -40,13 +43,22 @@ parts:
     intermittent: 600 A
     contact_resistance: 0.05 mohm
     ignition_protected: true
-  shunt-300: {kind: shunt, resistance: 0.17 mohm, rating: 300 A, short_time: {current: 400 A, time: 10 s}}
-  bus-250: {kind: bus, rating: 250 A}
-  bus-100: {kind: bus, rating: 100 A}
+    terminal: stud
+    stud: M10
+    cover: true
+    torque: 14 Nm
+    smallest_size: 22 AWG
+    largest_size: 4/0 AWG
+  shunt-300: {kind: shunt, resistance: 0.17 mohm, rating: 300 A, short_time: {current: 400 A, time: 10 s},
+    terminal: stud, stud: M10, torque: 15 Nm, smallest_size: 22 AWG, largest_size: 4/0 AWG}
+  bus-250: {kind: bus, rating: 250 A, studs: 4, stud: M10, torque: 15 Nm}
+  bus-100: {kind: bus, rating: 100 A, studs: 2, screws: 10, stud: M8, screw_thread: M4, torque: 10 Nm}
   bolt-fuse: {kind: fuse, voltage: 32 V, interrupting: 10 kA, band: slow, resistance: 0.3 mohm,
-    ratings: {30 A: {}, 60 A: {}, 80 A: {}, 125 A: {}, 150 A: {}, 200 A: {}}}
+    ratings: {30 A: {}, 60 A: {}, 80 A: {}, 125 A: {}, 150 A: {}, 200 A: {}},
+    terminal: stud, stud: M8, cover: true, torque: 10 Nm, smallest_size: 22 AWG, largest_size: 4/0 AWG}
   blade-fuse: {kind: fuse, voltage: 32 V, interrupting: 5 kA, band: slow, resistance: 5 mohm,
-    ratings: {1 A: {}, 2 A: {}, 5 A: {}, 10 A: {}, 15 A: {}}}
+    ratings: {1 A: {}, 2 A: {}, 5 A: {}, 10 A: {}, 15 A: {}},
+    terminal: screw, stud: M4, cover: true, torque: 1.5 Nm, smallest_size: 22 AWG, largest_size: 6 AWG}
   panel-breaker:
     kind: breaker
     voltage: 32 V
@@ -56,25 +68,44 @@ parts:
     resistance: 10 mohm
     trip_free: true
     reset: manual
+    terminal: screw
+    stud: M4
+    torque: 2 Nm
+    smallest_size: 22 AWG
+    largest_size: 6 AWG
     ratings: {5 A: {}, 10 A: {}, 15 A: {}, 20 A: {}, 30 A: {}}
-  single-105: {kind: cable, insulation: 105 C}
-  duplex-105: {kind: cable, insulation: 105 C, sheathed: true, cores: 2}
+  single-105: {kind: cable, insulation: 105 C, core_colours: [red]}
+  duplex-105: {kind: cable, insulation: 105 C, sheathed: true, cores: 2, core_colours: [red, yellow]}
   engine-block: {kind: metal}
   sacrificial-anode: {kind: metal}
-  starter: {kind: load, voltage: 12 V, current: 200 A, motor: true, feed_post: B, return_post: case}
-  regulator: {kind: load, voltage: 12 V, current: 0.1 A, standby: 5 mA, feed_post: sense, return_post: gnd}
+  starter: {kind: load, voltage: 12 V, current: 200 A, motor: true, feed_post: B, return_post: case,
+    terminal: stud, stud: M10, cover: true, torque: 12 Nm, smallest_size: 22 AWG, largest_size: 4/0 AWG}
+  regulator: {kind: load, voltage: 12 V, current: 0.1 A, standby: 5 mA, feed_post: sense, return_post: gnd, regulator: true,
+    terminal: screw, stud: M4, torque: 1.5 Nm, smallest_size: 22 AWG, largest_size: 6 AWG}
   monitor-head: {kind: load, voltage: 12 V, current: 0.05 A, standby: 0.05 A}
-  plotter: {kind: load, voltage: 12 V, current: 1 A, min_voltage: 10 V, max_device: 5 A}
-  cabin-lights: {kind: load, voltage: 12 V, current: 3 A, max_device: 10 A}
-  cooling-pump: {kind: load, voltage: 12 V, current: 8 A, max_device: 15 A, motor: true}
-  bow-light: {kind: load, voltage: 12 V, current: 0.5 A, max_device: 5 A}
-  vapour-sensor: {kind: load, voltage: 12 V, current: 0.2 A, max_device: 5 A, ignition_protected: true}
+  plotter: {kind: load, voltage: 12 V, current: 1 A, min_voltage: 10 V, max_device: 5 A, terminal: plug}
+  cabin-lights: {kind: load, voltage: 12 V, current: 3 A, max_device: 10 A, terminal: lead}
+  cooling-pump: {kind: load, voltage: 12 V, current: 8 A, max_device: 15 A, motor: true,
+    stall_protection: device, stall_current: 40 A, terminal: lead}
+  bow-light: {kind: load, voltage: 12 V, current: 0.5 A, max_device: 5 A, terminal: lead, ingress: IP67}
+  vapour-sensor: {kind: load, voltage: 12 V, current: 0.2 A, max_device: 5 A, ignition_protected: true,
+    terminal: plug}
   alternator-60:
     kind: source
     outputs: {B: {return: case, max: 60 A, voltage: 14.4 V, limited: true}}
+    terminal: stud
+    stud: M8
+    torque: 10 Nm
+    smallest_size: 22 AWG
+    largest_size: 4/0 AWG
   charger-20:
     kind: source
     outputs: {out: {return: neg, max: 20 A, voltage: 14.4 V, limited: true}}
+    terminal: stud
+    stud: M6
+    smallest_size: 22 AWG
+    largest_size: 4/0 AWG
+    torque: 5 Nm
 bands:
   slow:
     engine_space_factor: 0.9
@@ -109,13 +140,27 @@ class:
 facts:
   engines:
     MAIN: {fuel: diesel, mounting: inboard, block: ENGINE}
+  monitored: [HOUSE]
+  ac_aboard: true
 defaults: {branch_cable: duplex-105, single_conductor: single-105}
+workmanship:
+  terminal: ring
+  ring_hole: as-stud
+  barrel: as-conductor
+  stacking: largest-first
+  labels: both
+  passages: grommet
+  supports: 300 mm
+  ac: sheathed
+  fuse_marks: true
+  switch_marks: true
 
 zones:
-  LOCKER: {name: battery locker, ambient: 30 C}
-  CABIN: {name: cabin and panel, ambient: 30 C}
+  LOCKER: {name: battery locker, ambient: 30 C, fuel_parts: false, hydrogen_vent: true, access: at-once}
+  CABIN: {name: cabin and panel, ambient: 30 C,
+    isolated_from: {FUEL: {by: bulkhead, height: 4 ft, tight_to: 12 in, gap: 6 mm}}}
   ENGINE-SPACE: {name: engine space, ambient: 50 C, engine_space: true}
-  BOW: {name: bow, ambient: 30 C}
+  BOW: {name: bow, ambient: 30 C, wet: true, bilge_water: true}
   FUEL: {name: "locker for the tender's petrol", ambient: 30 C, petrol_vapour: true}
 ways:
   cabin-way: {zone: CABIN, length: 2 m, lay: single}
@@ -144,11 +189,12 @@ devices:
   F-ALT: {part: bolt-fuse, zone: LOCKER, rating: 80 A, mount: {line: BAT-H.pos}}
   CHARGER: {part: charger-20, zone: CABIN}
   F-CHARGER: {part: bolt-fuse, zone: LOCKER, rating: 30 A}
-  REGULATOR: {part: regulator, zone: ENGINE-SPACE}
+  REGULATOR: {part: regulator, zone: ENGINE-SPACE, regulates: ALT}
   F-SENSE: {part: blade-fuse, zone: LOCKER, rating: 2 A}
 
   F-MONITOR: {part: blade-fuse, zone: LOCKER, rating: 1 A}
-  MONITOR: {part: monitor-head, zone: LOCKER, belongs_to: SHUNT, mount: {pos: SHUNT.vbat, neg: SHUNT.bat}}
+  MONITOR: {part: monitor-head, zone: LOCKER, belongs_to: SHUNT, mount: {pos: SHUNT.vbat, neg: SHUNT.bat},
+    set: {capacity: 100 Ah, ratio: 300 A = 50 mV}}
   ANODE: {part: sacrificial-anode, zone: BOW}
 
 circuits:
@@ -160,15 +206,15 @@ circuits:
       M1: {from: BAT-H.pos, to: F-MAIN.line, size: 2 AWG, length: 5.9 in}
       M2: {from: F-MAIN.load, to: SW-H.in, size: 2 AWG, length: 0.4 m}
       M3: {from: SW-H.out, to: BUS-P, size: 2 AWG, length: 0.3 m}
-      M4: {from: BAT-H.neg, to: SHUNT.bat, size: 2 AWG, length: 0.3 m}
-      M5: {from: SHUNT.sys, to: BUS-N, size: 2 AWG, length: 0.3 m}
+      M4: {from: BAT-H.neg, to: SHUNT.bat, size: 2 AWG, length: 0.3 m, colour: yellow}
+      M5: {from: SHUNT.sys, to: BUS-N, size: 2 AWG, length: 0.3 m, colour: yellow}
   FEED:
     name: Panel feeder
     service: feeder
     current: 30 A
     conductors:
       D1: {from: F-PANEL.load, to: PANEL, size: 6 AWG, length: 1.5 m}
-      D2: {from: PANEL-N, to: BUS-N, size: 6 AWG, length: 1.5 m}
+      D2: {from: PANEL-N, to: BUS-N, size: 6 AWG, length: 1.5 m, colour: yellow}
   CRANK:
     name: Starter
     service: cranking
@@ -176,8 +222,10 @@ circuits:
     conductors:
       S1: {from: BAT-S.pos, to: SW-S.in, size: 2/0 AWG, length: 0.4 m, role: cranking, reason: cranking motor}
       S2: {from: SW-S.out, to: STARTER.B, size: 2/0 AWG, length: 1.5 m, role: cranking, reason: cranking motor}
-      S3: {from: STARTER.case, to: BUS-N, size: 2/0 AWG, length: 1.5 m, role: cranking, reason: cranking motor}
-      S4: {from: BUS-N, to: BAT-S.neg, size: 2/0 AWG, length: 0.4 m, role: cranking, reason: cranking motor}
+      S3: {from: STARTER.case, to: BUS-N, size: 2/0 AWG, length: 1.5 m, role: cranking, reason: cranking motor,
+        colour: yellow}
+      S4: {from: BUS-N, to: BAT-S.neg, size: 2/0 AWG, length: 0.4 m, role: cranking, reason: cranking motor,
+        colour: yellow}
   ALT-OUT:
     name: Alternator, back through the engine block
     service: charging
@@ -190,7 +238,7 @@ circuits:
     current: 20 A
     conductors:
       C1: {from: CHARGER.out, to: F-CHARGER.load, size: 10 AWG, length: 2 m}
-      C2: {from: CHARGER.neg, to: BUS-N, size: 10 AWG, length: 2 m}
+      C2: {from: CHARGER.neg, to: BUS-N, size: 10 AWG, length: 2 m, colour: yellow}
       C3: {from: F-CHARGER.line, to: BAT-H.pos, size: 10 AWG, length: 0.1 m}
   SENSE:
     name: Voltage sense of the regulator
@@ -199,7 +247,7 @@ circuits:
     conductors:
       V1: {from: BAT-H.pos, to: F-SENSE.line, size: 16 AWG, length: 0.1 m}
       V2: {from: F-SENSE.load, to: REGULATOR.sense, size: 16 AWG, length: 2 m}
-      V3: {from: REGULATOR.gnd, to: BUS-N, size: 16 AWG, length: 2 m}
+      V3: {from: REGULATOR.gnd, to: BUS-N, size: 16 AWG, length: 2 m, colour: yellow}
   WATCH:
     name: Battery monitor
     service: sense
@@ -259,7 +307,7 @@ circuits:
     zone: FUEL
 
 bonds:
-  B1: {from: ANODE, to: BUS-N, size: 8 AWG, length: 4 m}
+  B1: {from: ANODE, to: BUS-N, size: 8 AWG, length: 4 m, colour: green}
 joints:
   J-ALT: {from: ALT.case, to: ENGINE}
   J-STARTER: {from: STARTER.case, to: ENGINE}

@@ -87,6 +87,7 @@ def _build_places(shop: _Workshop) -> None:
             has_petrol_vapour=row.flag("petrol_vapour"),
             has_cooking_gas=row.flag("cooking_gas"),
             is_wet=row.flag("wet"),
+            has_bilge_water=known_flag(row, "bilge_water"),
             access=row.text("access"),
             has_hydrogen_vent=known_flag(row, "hydrogen_vent"),
             charge_limit_a=row.number("charge_limit", Dimension.CURRENT),
@@ -108,7 +109,9 @@ def _build_places(shop: _Workshop) -> None:
                 is_bundled=row.text("lay", "bundled") == "bundled",
                 passage=row.text("passage", shop.usual.passages),
                 ac=row.text("ac", shop.usual.ac),
+                supports_m=row.number("supports", Dimension.LENGTH) if row.has("supports") else shop.usual.supports_m,
                 at=row.at(),
+                at_supports=row.at("supports") if row.has("supports") else shop.usual.at,
                 at_passage=row.at("passage") if row.has("passage") else row.at(),
                 at_ac=row.at("ac") if row.has("ac") else row.at(),
             )
@@ -317,7 +320,7 @@ def _branch_ends(shop: _Workshop, row: Entry, start: str, end: str) -> tuple[End
     return read_end(row, start, shop.usual), read_end(row, end, shop.usual)
 
 
-_LIKE_OUT = ("cable", "type", "bare_tail", "enclosed", "role", "reason", "place_reason")
+_LIKE_OUT = ("cable", "type", "bare_tail", "enclosed", "role", "reason", "place_reason", "supports")
 _LENGTHS = ("length", "route", "tail")
 
 
@@ -413,10 +416,8 @@ def _of_length(
     end_zones = [_zone_of(shop, end) for end in ends]
     zones = dict.fromkeys(z for z in (end_zones[0], *(way.zone for way in ways), end_zones[1]) if z)
     text = row.text(length_field) if length_field else ""
-    real = dict(cable.real_areas_mm2).get(size.awg or f"{size.area_mm2:g} mm2")
-    if real is not None:
-        size = replace(size, area_mm2=real)
     colours = row.items("colours") or cable.core_colours
+    supports_m, at_supports = _supports(shop, row, ways)
     return Conductor(
         id=name,
         start=ends[0],
@@ -442,12 +443,28 @@ def _of_length(
         labelled=row.text("labelled", shop.usual.labels),
         ends=(End(), End()) if is_branch else (read_end(row, "from", shop.usual), read_end(row, "to", shop.usual)),
         passage=row.text("passage", shop.usual.passages),
-        at_colour=row.at("colour") if row.has("colour") else row.at(),
+        supports_m=supports_m,
+        at_supports=at_supports,
+        at_colour=next((row.at(name) for name in ("colour", "colours") if row.has(name)), row.at()),
         at_label=row.at("label") if row.has("label") else row.at(),
+        at_labelled=row.at("labelled") if row.has("labelled") else row.at(),
+        at_passage=row.at("passage") if row.has("passage") else row.at(),
         at=row.at(),
         at_size=row.at("cable" if is_branch and not row.has("size") else "size"),
         at_length=row.at(length_field) if length_field else row.at(),
     )
+
+
+def _supports(shop: _Workshop, row: Entry, ways: tuple[Way, ...]) -> tuple[float | None, Span]:
+    """Return the largest spacing of a conductor's supports and where it stands; a conduit supports all along."""
+    if row.has("supports"):
+        return row.number("supports", Dimension.LENGTH), row.at("supports")
+    spacings = [(way.supports_m, way.at_supports) for way in ways if not way.is_conduit]
+    spacings.append((shop.usual.supports_m, shop.usual.at))  # the tails, or all of it
+    known = [(spacing_m, at) for spacing_m, at in spacings if spacing_m is not None]
+    if len(known) < len(spacings):
+        return None, shop.usual.at
+    return max(known)
 
 
 def _cable_type(shop: _Workshop, row: Entry, default: str) -> Cable | None:

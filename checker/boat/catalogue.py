@@ -149,8 +149,8 @@ def _band(entry: Entry) -> Band:
                 "bad-value", entry.at("points", index), "points rise in their multiple, and open late after early"
             )
         points.append(point)
-    factor = entry.data.get("engine_space_factor", 1.0)
-    return Band(id=entry.id, points=tuple(points), engine_space_factor=float(factor), at=entry.at())
+    factor = float(entry.data["engine_space_factor"]) if entry.has("engine_space_factor") else None
+    return Band(id=entry.id, points=tuple(points), engine_space_factor=factor, at=entry.at())
 
 
 def _bus(entry: Entry) -> Part | None:
@@ -343,7 +343,7 @@ def _real_areas(entry: Entry) -> tuple[tuple[str, float], ...]:
     for text, area in sorted(entry.fields("real_areas").items()):
         size, real = _size(entry, ("real_areas", text), text), _size(entry, ("real_areas", text), str(area))
         if size is not None and real is not None:
-            found.append((size.awg or f"{size.area_mm2:g} mm2", real.area_mm2))
+            found.append((size.text, real.area_mm2))
     return tuple(found)
 
 

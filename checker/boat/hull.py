@@ -21,6 +21,7 @@ class Zone:
 
     `isolated_from` are claims, by the zone with petrol or gas; `opens_to` are zones that share
     its air. `has_fuel_parts`: a fuel tank, filter, fitting or metal line is in it.
+    `has_bilge_water`: bilge water can stand in it.
     """
 
     id: str
@@ -30,6 +31,7 @@ class Zone:
     has_petrol_vapour: bool = False
     has_cooking_gas: bool = False
     is_wet: bool = False
+    has_bilge_water: bool | None = None
     access: str = ""
     has_hydrogen_vent: bool | None = None
     charge_limit_a: float | None = None
@@ -45,7 +47,8 @@ class Way:
     """Describe a wireway or conduit through one zone. In a bundled way conductors lie together.
 
     `passage` is what guards conductors at its bulkheads, `ac` the alternating-current cables in
-    it (none, sheathed, bare); both the class's workmanship where the way says nothing, else "".
+    it (none, sheathed, bare), `supports_m` the largest spacing of its clips; all the class's
+    workmanship where the way says nothing, else "" or None.
     """
 
     id: str
@@ -55,7 +58,9 @@ class Way:
     is_bundled: bool = True
     passage: str = ""
     ac: str = ""
+    supports_m: float | None = None
     at: Span = field(default=NOWHERE, compare=False, repr=False)
+    at_supports: Span = field(default=NOWHERE, compare=False, repr=False)
     at_passage: Span = field(default=NOWHERE, compare=False, repr=False)
     at_ac: Span = field(default=NOWHERE, compare=False, repr=False)
 
@@ -104,6 +109,7 @@ class Conductor:
     is `route_m`. `enclosed_m` is how much of it lies in a sheath, sleeve or conduit. `company`
     is the largest number of conductors lying together along it, itself counted.
 
+    `size` is what it is called, `copper` the same with the area that its cable states for it.
     `colour` is "" where it was not recorded. `label` is the text on it, its id unless the yard
     wrote another; `labelled` says which ends carry it (both, from, to, none, "" not recorded).
     `ends` are its start and its end. `passage` is what guards it where it passes a bulkhead
@@ -135,11 +141,20 @@ class Conductor:
     labelled: str = ""
     ends: tuple[End, End] = (End(), End())
     passage: str = ""
+    supports_m: float | None = None
+    at_supports: Span = field(default=NOWHERE, compare=False, repr=False)
     at_colour: Span = field(default=NOWHERE, compare=False, repr=False)
     at_label: Span = field(default=NOWHERE, compare=False, repr=False)
+    at_labelled: Span = field(default=NOWHERE, compare=False, repr=False)
+    at_passage: Span = field(default=NOWHERE, compare=False, repr=False)
     at: Span = field(default=NOWHERE, compare=False, repr=False)
     at_size: Span = field(default=NOWHERE, compare=False, repr=False)
     at_length: Span = field(default=NOWHERE, compare=False, repr=False)
+
+    @property
+    def copper(self) -> Size:
+        """Return the size with its real copper area: what losses and faults are reckoned with."""
+        return self.cable.real_size(self.size)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -54,6 +54,7 @@ class Workmanship:
     fuse_marks: bool | None = None
     switch_marks: bool | None = None
     ac: str = ""
+    supports_m: float | None = None
     at: Span = field(default=NOWHERE, compare=False, repr=False)
 
 

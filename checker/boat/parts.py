@@ -6,7 +6,7 @@ conductor. All quantities are SI; None means that the yard did not give the figu
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 from checker.finding import NOWHERE, Span
 from checker.units import Size
@@ -72,12 +72,13 @@ class BandPoint:
 class Band:
     """Describe when a device opens: points in rising order of the multiple of its rating.
 
-    `engine_space_factor` is taken on the rating of a device that stands in an engine space.
+    `engine_space_factor` is taken on the rating of a device that stands in an engine space; None
+    where it is not written, which is read as 1.
     """
 
     id: str
     points: tuple[BandPoint, ...]
-    engine_space_factor: float = 1.0
+    engine_space_factor: float | None = None
     at: Span = field(default=NOWHERE, compare=False, repr=False)
 
 
@@ -266,10 +267,18 @@ class Cable:
     cores: int = 1
     is_welding: bool = False
     core_colours: tuple[str, ...] = ()
-    real_areas_mm2: tuple[tuple[str, float], ...] = ()
+    real_areas_mm2: tuple[tuple[str, float], ...] = ()  # by the text of a size: 6 AWG, 2.5 mm2
     at: Span = field(default=NOWHERE, compare=False, repr=False)
 
     posts: tuple[str, ...] = ()
+
+    def states_area(self, size: Size) -> bool:
+        """Tell whether the part states the copper area of a size."""
+        return size.text in dict(self.real_areas_mm2)
+
+    def real_size(self, size: Size) -> Size:
+        """Return a size with the copper area that the part states for it, or as it is."""
+        return replace(size, area_mm2=dict(self.real_areas_mm2).get(size.text, size.area_mm2))
 
 
 Part = Battery | Overcurrent | Bus | Metal | Switch | Diode | Shunt | Load | Source | Cable

@@ -26,6 +26,7 @@ def read_workmanship(top: Entry) -> Workmanship:
         fuse_marks=known_flag(row, "fuse_marks"),
         switch_marks=known_flag(row, "switch_marks"),
         ac=row.text("ac"),
+        supports_m=row.number("supports", Dimension.LENGTH),
         at=row.at() if top.has("workmanship") else top.at("class"),
     )
 
@@ -51,7 +52,11 @@ def read_end(row: Entry, name: str, usual: Workmanship) -> End:
 
 
 def read_landings(top: Entry, posts: Container[str], conductors: Container[str]) -> dict[str, tuple[Stack, ...]]:
-    """Read the section `landings`; every post and conductor named must exist."""
+    """Read the section `landings`; every post named must exist.
+
+    A conductor that is not aboard leaves its stack: an option or a change took it away. One that
+    is aboard and in no stack is told by the checks.
+    """
     found: dict[str, tuple[Stack, ...]] = {}
     for post, studs in sorted(top.fields("landings").items()):
         if post not in posts:
@@ -59,11 +64,8 @@ def read_landings(top: Entry, posts: Container[str], conductors: Container[str])
             continue
         stacks: list[Stack] = []
         for stud, names in sorted((studs or {}).items()):
-            for index, name in enumerate(names):
-                if name not in conductors:
-                    top.unknown("conductor", str(name), top.at("landings", post, stud, index), conductors)
-            at = top.key_at("landings", post, stud)
-            stacks.append(Stack(post=post, stud=stud, conductors=tuple(map(str, names)), at=at))
+            aboard = tuple(str(name) for name in names if name in conductors)
+            stacks.append(Stack(post=post, stud=stud, conductors=aboard, at=top.key_at("landings", post, stud)))
         found[post] = tuple(stacks)
     return found
 

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from checker.boat.parts import Battery
+from checker.checks.bearing import SIZING
 from checker.checks.check import Case, Place, Told, at_conductor, check
 from checker.checks.words import BATTERY_FIGURES, ampere, no_figures, plain
 from checker.finding import Basis, Level, Measure, Outcome
@@ -62,6 +63,7 @@ def alike_batteries(case: Case) -> Iterator[Outcome]:
     why="the battery nearest the leads works itself to death first",
     level=Level.WARNING,
     catalogue=("BNK-04",),
+    needs=("bank",),
 )
 def even_shares(case: Case) -> Iterator[Outcome]:
     """In the condition that asks most of a bank, does no string give much more than its equal share?
@@ -69,7 +71,7 @@ def even_shares(case: Case) -> Iterator[Outcome]:
     The shares come out of the solved network: links, take-offs and internal resistances. Leads
     from opposite corners, or equal leads to a bus, share evenly; both leads from one end do not.
     """
-    most = 1 + bank_figures().most_uneven_fraction
+    most = 1 + bank_figures(case.house.common).most_uneven_fraction
     for bank, place in _banks(case):
         if len(bank.strings) < 2:
             continue
@@ -143,6 +145,7 @@ def inner_landing(case: Case) -> Iterator[Outcome]:
     why="with one string failed the link of the other burns",
     catalogue=("BNK-06",),
     per_set=True,
+    needs=SIZING,
 )
 def bank_links(case: Case) -> Iterator[Outcome]:
     """With each string of a bank out in turn, does every conductor of the bank bear the largest lasting current?"""
@@ -201,7 +204,7 @@ def _hardest(case: Case, bank: Bank) -> Solved | None:
     shares = [
         (abs(sum(s.full.battery_currents().get(string[0], 0.0) for string in bank.strings)), s)
         for s in case.studies.conditions.solved
-        if isinstance(s.full, Flow) and s.lasts_beyond(surge_s())
+        if isinstance(s.full, Flow) and s.lasts_beyond(surge_s(case.house.common))
     ]
     return max(shares, key=lambda row: (row[0], row[1].operation.condition.id))[1] if shares else None
 
@@ -214,10 +217,11 @@ def _hardest(case: Case, bank: Bank) -> Solved | None:
     level=Level.WARNING,
     catalogue=("BNK-07",),
     exemptions="two lead-acid strings: short, sleeved, full-size bank conductors do",
+    needs=("bank",),
 )
 def string_device(case: Case) -> Iterator[Outcome]:
     """Has every string of a lithium bank, or of a bank of three strings or more, an overcurrent device?"""
-    figures = bank_figures()
+    figures = bank_figures(case.house.common)
     for bank, place in _banks(case):
         first = case.boat.devices[bank.strings[0][0]].part if bank.strings else None
         is_lithium = isinstance(first, Battery) and first.chemistry in LITHIUM

@@ -8,6 +8,9 @@ from checker.boat.hull import Boat, Conductor
 from checker.limits.limit_set import LimitSet
 from checker.units import Size
 
+SIZING = ("ampacity", "engine_factor", "bundle")
+"""The tables of a limit set that say what a conductor bears."""
+
 
 @dataclass(frozen=True, slots=True)
 class Bearing:
@@ -20,10 +23,10 @@ class Bearing:
 class Bearings:
     """Look up and correct ampacities for the conductors of one boat under one limit set."""
 
-    def __init__(self, boat: Boat, limits: LimitSet, *, next_smaller_awg: bool) -> None:
+    def __init__(self, boat: Boat, limits: LimitSet, *, next_smaller: bool) -> None:
         self._boat = boat
         self.limits = limits
-        self.next_smaller_awg = next_smaller_awg
+        self.next_smaller = next_smaller
         self._known: dict[tuple[str, str], Bearing | None] = {}
 
     def of(self, conductor: Conductor, size: Size | None = None) -> Bearing | None:
@@ -37,14 +40,19 @@ class Bearings:
     def allowed_a(self, conductor: Conductor, size: Size | None = None) -> float | None:
         """Return the largest overcurrent protection that a conductor may stand behind."""
         bearing = self.of(conductor, size)
-        return None if bearing is None else self.limits.device_rating.largest_allowed_a(bearing.ampacity_a)
+        if bearing is None or self.limits.lacks(["device_rating"]):
+            return None
+        return self.limits.device_rating.largest_allowed_a(bearing.ampacity_a)
 
     def _bearing(self, conductor: Conductor, size: Size) -> Bearing | None:
-        row = self.limits.ampacity.at(size, conductor.cable.insulation_c, next_smaller_awg=self.next_smaller_awg)
+        if self.limits.lacks(SIZING):
+            return None
+        row = self.limits.ampacity.at(size, conductor.cable.insulation_c, next_smaller=self.next_smaller)
         if row is None:
             return None
         ampacity_a = row.ampacity_a
-        gauge = size.text if size.awg else f"{size.text} judged as {row.awg} AWG"
+        is_own = (size.awg is None) is self.limits.ampacity.is_metric
+        gauge = size.text if is_own else f"{size.text} judged as {row.size}"
         words = f"{row.ampacity_a:g} A for {gauge} at {row.column_c:g} C"
         engine = next((z for z in conductor.zones if self._boat.zones[z].is_engine_space), None)
         if engine is not None:

@@ -8,7 +8,7 @@ limit, so that every measure ends as passed or as a finding and none is forgotte
 from __future__ import annotations
 
 import inspect
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass, field
 from functools import cached_property
 from typing import Any
@@ -17,15 +17,78 @@ from checker.boat.hull import Boat, Conductor
 from checker.checks.bearing import Bearings
 from checker.finding import NOWHERE, Basis, Card, Level, Measure, Outcome, Span, Verdict
 from checker.limits.limit_set import LimitSet, thin_margin_fraction
+from checker.limits.table_file import AS_SHIPPED, CommonChanges
 from checker.network.studies import Studies
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class HouseChange:
+    """Describe one limit, level or list that the yard's own rules change.
+
+    `what` names it as the yard wrote it, `limit_set` and `table` are empty where it belongs to
+    none. `old` and `new` are in the table's own unit. A change that lets pass what the set
+    refuses is loosened; the reports tell it first, and that of a law before all others.
+    """
+
+    kind: str
+    what: str
+    old: str
+    new: str
+    reason: str
+    clause: str
+    basis: Basis
+    is_loosened: bool
+    limit_set: str = ""
+    table: str = ""
+    check: str = ""
+    part: str = ""
+    at: Span = field(default=NOWHERE, compare=False, repr=False)
+
+    @property
+    def is_of_law(self) -> bool:
+        """Tell whether a law stands behind what was changed."""
+        return self.basis is Basis.LAW
+
+    @property
+    def words(self) -> str:
+        """Tell the change in one line: "drop.critical_percent of voluntary-dc is 2.5 instead of 3"."""
+        if self.kind in ("always on", "drop group"):
+            return f"{self.what}: {self.new}"
+        return f"{self.what}{f' of {self.limit_set}' if self.limit_set else ''} is {self.new} instead of {self.old}"
 
 
 @dataclass(frozen=True, slots=True)
 class House:
-    """Hold a yard's own rules. They may only tighten what a limit set asks."""
+    """Hold a yard's own rules, and the places where it writes them.
+
+    `next_smaller_awg` lets a gauge speak for a metric size, `next_smaller_mm2` a metric size for
+    a gauge. What `always_on_services` and `always_on_circuits` name may stay live with all
+    switches off, each for a reason.
+    `common` are its figures in the tables that belong to no set; those of a set's tables are in
+    the set already. `changes` tells all of them.
+    """
 
     drop_critical: tuple[str, ...] = ()
     next_smaller_awg: bool = False
+    next_smaller_mm2: bool = False
+    levels: Mapping[str, Level] = field(default_factory=dict)
+    always_on_services: Mapping[str, str] = field(default_factory=dict)
+    always_on_circuits: Mapping[str, str] = field(default_factory=dict)
+    common: CommonChanges = AS_SHIPPED
+    changes: tuple[HouseChange, ...] = ()
+    at_sets: Mapping[str, Span] = field(default_factory=dict)
+
+    def stays_live(self, service: str, circuit: str) -> str:
+        """Return why a circuit may stay live with all switches off by the yard's own rule, or an empty text."""
+        return self.always_on_circuits.get(circuit, "") or self.always_on_services.get(service, "")
+
+    def told(self, check: str, limit_set: str, tables: tuple[str, ...]) -> tuple[str, ...]:
+        """Return the changes that bear on a finding: of the tables the check rests on, and of its level."""
+        return tuple(
+            change.words
+            for change in self.changes
+            if change.check == check or (change.table in tables and change.limit_set in ("", limit_set))
+        )
 
 
 @dataclass(frozen=True)
@@ -50,7 +113,15 @@ class Case:
     @cached_property
     def bearings(self) -> Bearings:
         """Return what each conductor bears under the limit set."""
-        return Bearings(self.boat, self.limits, next_smaller_awg=self.house.next_smaller_awg)
+        return Bearings(self.boat, self.limits, next_smaller=self.next_smaller)
+
+    @property
+    def next_smaller(self) -> bool:
+        """Tell whether the next smaller row of the set's table speaks for a size of the other kind."""
+        if self.limits.lacks(["ampacity"]):
+            return False
+        is_metric = self.limits.ampacity.is_metric
+        return self.house.next_smaller_mm2 if is_metric else self.house.next_smaller_awg
 
     def under(self, limits: LimitSet) -> Case:
         """Return the same case judged by another limit set."""
@@ -77,23 +148,44 @@ class Told:
 
 @dataclass(frozen=True, slots=True)
 class Check:
-    """Join a card with the function that looks. `is_per_set` checks run once for each limit set."""
+    """Join a card with the function that looks. `is_per_set` checks run once for each limit set.
+
+    `needs` are the tables of the limit set, and of those that belong to no set, that it rests on.
+    """
 
     card: Card
     run: Callable[[Case], Iterator[Outcome]] = field(repr=False)
     is_per_set: bool
+    needs: tuple[str, ...] = ()
 
     @property
     def id(self) -> str:
         """Return the check's id."""
         return self.card.id
 
+    def look(self, case: Case) -> Iterator[Outcome]:
+        """Run the check; without a table that it rests on, tell once which the yard has to enter."""
+        lacking = case.limits.lacks(self.needs)
+        if not lacking:
+            yield from self.run(case)
+            return
+        limit_set = case.limits.id
+        files = [f"{table}.yaml" for table in lacking]
+        yield self.not_assessed(
+            case,
+            Place(limit_set, case.house.at_sets.get(limit_set, NOWHERE)),
+            f"nothing is judged here: {_listed(lacking)} of {limit_set} {'is' if len(lacking) == 1 else 'are'} "
+            "not entered",
+            f"{_listed(files)} in limits/{limit_set}/, from your licensed copy",
+        )
+
     def judge(
         self, case: Case, place: Place, measure: Measure, otherwise: Callable[[], Told], note: str = ""
     ) -> Outcome:
         """Compare a value with its limit; `otherwise` tells the finding if the limit is not kept."""
         if measure.holds:
-            return self._outcome(case, place, Verdict.PASSED, measure=measure, note=note)
+            thin = is_thin(measure, thin_margin_fraction(case.house.common))
+            return self._outcome(case, place, Verdict.PASSED, measure=measure, note=note, is_thin=thin)
         told = otherwise()
         return self.found(case, place, told, measure)
 
@@ -115,14 +207,23 @@ class Check:
     def _outcome(
         self, case: Case, place: Place, verdict: Verdict, *, measure: Measure | None = None, fault: str = "",
         remedy: str = "", path: tuple[str, ...] = (), inputs: tuple[tuple[str, str], ...] = (),
-        missing: str = "", note: str = "", also_at: tuple[Span, ...] = (),
+        missing: str = "", note: str = "", also_at: tuple[Span, ...] = (), is_thin: bool = False,
     ) -> Outcome:  # fmt: skip
+        limit_set = case.limits.id if self.is_per_set else ""
+        is_finding = verdict is Verdict.FINDING
+        house = case.house.told(self.card.id, limit_set, self.needs) if is_finding and case.house.changes else ()
+        rests_on = case.limits.cited(self.needs) if limit_set and self.needs and verdict is not Verdict.PASSED else ""
         return Outcome(
-            verdict=verdict, check=self.card.id, level=self.card.level, part=place.part, at=place.at,
-            limit_set=case.limits.id if self.is_per_set else "", circuit=place.circuit, measure=measure,
+            verdict=verdict, check=self.card.id, level=case.house.levels.get(self.card.id, self.card.level),
+            part=place.part, at=place.at, limit_set=limit_set, circuit=place.circuit, measure=measure,
             fault=fault, remedy=remedy, state=place.state, path=path, missing=missing, note=note, inputs=inputs,
-            also_at=also_at,
+            also_at=also_at, is_thin=is_thin, house=house, rests_on=rests_on,
         )  # fmt: skip
+
+
+def _listed(names: tuple[str, ...] | list[str]) -> str:
+    """List names in a sentence: a, b and c."""
+    return names[0] if len(names) == 1 else f"{', '.join(names[:-1])} and {names[-1]}"
 
 
 @dataclass(frozen=True, slots=True)
@@ -147,6 +248,7 @@ def check(
     exemptions: str = "",
     caution: str = "",
     per_set: bool = False,
+    needs: tuple[str, ...] = (),
 ) -> Callable[[Callable[[Case], Iterator[Outcome]]], Check]:
     """Make a check of the function below; its id is the function's name with hyphens."""
 
@@ -165,7 +267,7 @@ def check(
             catalogue=catalogue,
             can_be_waived=True,
         )
-        return Check(card, function, per_set)
+        return Check(card, function, per_set, needs)
 
     return decorate
 
@@ -175,9 +277,9 @@ def at_conductor(conductor: Conductor, at: Span | None = None, state: str = "") 
     return Place(conductor.id, conductor.at_size if at is None else at, conductor.circuit, state)
 
 
-def is_thin(measure: Measure | None) -> bool:
+def is_thin(measure: Measure, thin_fraction: float) -> bool:
     """Tell whether a limit is kept with little to spare."""
-    if measure is None or measure.is_stepped or not measure.holds:
+    if measure.is_stepped or not measure.holds:
         return False
     headroom = measure.headroom_fraction
-    return headroom is not None and headroom < thin_margin_fraction()
+    return headroom is not None and headroom < thin_fraction

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from checker.checks.check import Case, Place, Told, at_conductor, check
-from checker.checks.roles import BANK, CRANKING, PIGTAIL, role_holds
+from checker.checks.roles import BANK, CRANKING, EXEMPTIONS, PIGTAIL, role_holds
 from checker.finding import Basis, Level, Outcome
 from checker.network.states import MOST_STATES
 
@@ -62,6 +62,10 @@ def role_claim(case: Case) -> Iterator[Outcome]:
         if conductor.role in NEEDS_REASON and not conductor.role_reason:
             told = Told(f"role {conductor.role} has no reason", "add “reason”", inputs=(("role", conductor.role),))
             yield role_claim.found(case, place, told)
+        elif conductor.role == PIGTAIL and case.limits.lacks([EXEMPTIONS]):
+            fault = f"how long a pigtail may be under {case.limits.id} is not entered"
+            file = f"{EXEMPTIONS}.yaml in limits/{case.limits.id}/, from your licensed copy"
+            yield role_claim.not_assessed(case, place, fault, file)
         elif not role_holds(case, conductor) and conductor.id not in case.studies.take_offs:
             why = {
                 CRANKING: "it does not lie between a battery and a motor with nothing but switches between",

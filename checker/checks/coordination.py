@@ -27,6 +27,7 @@ def _part(device: Device) -> Overcurrent:
     level=Level.WARNING,
     catalogue=("PRO-12",),
     exemptions="two devices in series with nothing between them but conductors",
+    needs=("selectivity",),
 )
 def selectivity(case: Case) -> Iterator[Outcome]:
     """Does the lower of two devices open before the one directly above it begins to?
@@ -48,7 +49,7 @@ def selectivity(case: Case) -> Iterator[Outcome]:
 
 def _by_ratio(case: Case, pair: Pair, place: Place) -> Outcome:
     upper, lower = (_part(case.boat.devices[name]) for name in (pair.upper, pair.lower))
-    least = least_selectivity_ratio()
+    least = least_selectivity_ratio(case.house.common)
     told = Told(
         fault=f"{pair.upper} {ampere(upper.rating_a)} is {plain(upper.rating_a / lower.rating_a)} times "
         f"{pair.lower} {ampere(lower.rating_a)}; a part without a band needs {plain(least)} times",
@@ -110,6 +111,7 @@ def rating_order(case: Case) -> Iterator[Outcome]:
     level=Level.WARNING,
     catalogue=("PRO-14", "PRO-19"),
     caution="the time a load takes to start is a common figure; the maker's decides",
+    needs=("start",),
 )
 def device_carries_load(case: Case) -> Iterator[Outcome]:
     """Is every device at least as large as its circuit's continuous current, and does its band carry the start?
@@ -141,7 +143,7 @@ def _judge_start(case: Case, device: Device, load: Load, peak_a: float) -> Outco
         inputs=(("peak", ampere(peak_a)), ("device", _part(device).id)),
     )
     place = Place(f"{device.id} while {load.id} starts", device.at_rating, device.circuit)
-    measure = Measure("holding time", opens_s, start_s(), "s", at_least=True, is_stepped=True)
+    measure = Measure("holding time", opens_s, start_s(case.house.common), "s", at_least=True, is_stepped=True)
     return device_carries_load.judge(case, place, measure, lambda: told)
 
 

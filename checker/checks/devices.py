@@ -5,8 +5,9 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator
 
-from checker.boat.hull import Device
+from checker.boat.hull import Device, Zone
 from checker.boat.parts import Bus, Diode, Load, Overcurrent, Source, Switch
+from checker.checks.air import vapour_zones
 from checker.checks.check import Case, Place, Told, check
 from checker.checks.words import ampere, plain
 from checker.finding import Basis, Level, Measure, Outcome
@@ -35,6 +36,7 @@ def _at(device: Device, state: str = "") -> Place:
     catalogue=("PRO-10",),
     caution="the rating must be a DC rating",
     per_set=True,
+    needs=("device_voltage",),
 )
 def device_voltage(case: Case) -> Iterator[Outcome]:
     """Is every fuse and breaker rated for the voltage of the net it stands in?
@@ -67,6 +69,7 @@ def device_voltage(case: Case) -> Iterator[Outcome]:
     why="a breaker that closes by itself, or can be held closed, cycles into the fault until there is a fire",
     catalogue=("PRO-11",),
     per_set=True,
+    needs=("breaker",),
 )
 def breaker_type(case: Case) -> Iterator[Outcome]:
     """Is every breaker that protects a conductor trip-free, and reset by hand only?"""
@@ -93,7 +96,8 @@ def breaker_type(case: Case) -> Iterator[Outcome]:
     citation="ABYC E-11, bus and panel protection (from memory)",
     formula="the largest, over divisions of its ways, of min(Σ In in, Σ In out) ≤ rating",
     why="the bus bar overheats before anything opens",
-    catalogue=("PRO-23",),
+    catalogue=("PRO-23", "PAN-02", "PAN-06"),
+    needs=("surge",),
 )
 def bus_rating(case: Case) -> Iterator[Outcome]:
     """Is every live bus and panel rated for the most that can flow through it?
@@ -137,7 +141,7 @@ def _bank_demand(case: Case, bus: str) -> tuple[float, str]:
     banks = {b.bank for b in case.studies.network.batteries if net in (case.studies.usual.net[b.pos],)}
     currents = [
         c for c in case.studies.bank_currents
-        if c.bank in banks and not (c.short_time_s is not None and c.short_time_s <= surge_s())
+        if c.bank in banks and not (c.short_time_s is not None and c.short_time_s <= surge_s(case.house.common))
     ]  # fmt: skip
     if not currents:
         return -1.0, ""
@@ -242,30 +246,45 @@ def legend_rating(case: Case) -> Iterator[Outcome]:
     citation="33 CFR § 183.410(a); stowed tender petrol: common practice, no source",
     why="a spark in petrol vapour is an explosion",
     catalogue=("ZON-01", "ZON-04"),
-    caution="isolation by bulkhead, height or distance (§ 183.410(b)) is not judged here",
+    exemptions="zones that a claim isolates which holds (§ 183.410(b)); the claims are judged by isolation-claim",
     per_set=True,
+    needs=("ignition",),
 )
 def ignition_protection(case: Case) -> Iterator[Outcome]:
     """Is every load, source, switch and overcurrent device in a petrol-vapour zone ignition protected?
 
-    A zone counts by its own fact `petrol_vapour`, whatever fuel the engine burns.
+    A zone counts by its own fact `petrol_vapour`, whatever fuel the engine burns; so does one
+    that shares air with it over openings (`opens_to`), unless it is isolated from it.
     """
     if case.limits.ignition is None:
         return
+    vapour = vapour_zones(case.boat, case.limits.ignition)
     for device in case.boat.devices.values():
-        zone = case.boat.zones[device.zone]
-        if not zone.has_petrol_vapour:
-            continue
         if not isinstance(device.part, (Load, Source, Switch, Diode, Overcurrent)):
             continue
+        source = vapour.comes_from.get(device.zone)
         place = Place(device.id, device.at, device.circuit)
+        if source is None:
+            continue
         if device.part.ignition_protected:
             yield ignition_protection.passed(case, place)
-            continue
-        told = Told(
-            fault=f"{device.part.id} is not ignition protected and stands in {device.zone}, which has petrol vapour",
-            remedy="use an ignition-protected part, move it, or keep the petrol out of this zone",
-            also_at=(zone.at_petrol,),
-            inputs=(("part", device.part.id), ("zone", device.zone)),
-        )
-        yield ignition_protection.found(case, place, told)
+        else:
+            told = _told_spark(device, device.part.id, case.boat.zones[source])
+            yield ignition_protection.found(case, place, told)
+    for name, (claim, verdict) in sorted(vapour.in_doubt.items()):
+        fault = f"{name} shares air with {claim.zone}, which has petrol vapour, and its isolation lacks figures"
+        yield ignition_protection.not_assessed(case, Place(name, claim.at), fault, ", ".join(verdict.missing))
+
+
+def _told_spark(device: Device, part: str, source: Zone) -> Told:
+    """Tell a part that can spark in a zone's own vapour, or in what comes from another zone."""
+    is_own = source.id == device.zone
+    where = "which has petrol vapour" if is_own else f"which shares air with {source.id}, a zone with petrol vapour"
+    inputs = [("part", part), ("zone", device.zone)] + ([] if is_own else [("vapour", source.id)])
+    return Told(
+        fault=f"{part} is not ignition protected and stands in {device.zone}, {where}",
+        remedy="use an ignition-protected part, move it, or keep the petrol out of this zone"
+        + ("" if is_own else f", or close the opening to {source.id}"),
+        also_at=(source.at_petrol,),
+        inputs=tuple(inputs),
+    )

@@ -15,6 +15,8 @@ from checker.limits.formulas import copper_temperature_c
 LEAST_ROUTE_RATIO, MOST_ROUTE_RATIO = 0.6, 1.67
 """A measured length this far from its route is another way of counting, not another way of pulling."""
 DOUBLE_TOLERANCE = 0.005
+FREE_OF_SIZE = ("inside-housing", "resistance", "pigtail")
+"""Roles whose conductors are no measure for the other way: their size says nothing of the circuit's."""
 
 _DROP_CAUTION = (
     "reckoned with K = 10.75, which is copper at about 29 C; a conductor at 50 to 75 C drops 8 to 17 per cent more. "
@@ -31,6 +33,7 @@ _DROP_CAUTION = (
     catalogue=("CON-07", "CON-08"),
     caution=_DROP_CAUTION,
     per_set=True,
+    needs=("drop",),
 )
 def voltage_drop(case: Case) -> Iterator[Outcome]:
     """Does a circuit alone lose no more than its group allows?
@@ -53,6 +56,7 @@ def voltage_drop(case: Case) -> Iterator[Outcome]:
     catalogue=("CON-09",),
     caution=_DROP_CAUTION,
     per_set=True,
+    needs=("drop",),
 )
 def voltage_drop_from_bank(case: Case) -> Iterator[Outcome]:
     """Does a circuit lose no more than its group allows, counted from the bank?
@@ -193,10 +197,14 @@ def _only_back(case: Case, conductor: Conductor) -> Conductor | None:
     catalogue=("CON-16",),
 )
 def return_size(case: Case) -> Iterator[Outcome]:
-    """Is the thinnest return conductor of a circuit as large as its thinnest feed conductor?"""
+    """Is the thinnest return conductor of a circuit as large as its thinnest feed conductor?
+
+    Conductors whose role frees them from the rules of size are left out on both sides.
+    """
     index, usual = case.studies.network.index, case.studies.usual
     for circuit in case.boat.circuits.values():
         conductors = [case.boat.conductors[n] for n in circuit.conductors if n in case.boat.conductors]
+        conductors = [c for c in conductors if c.role not in FREE_OF_SIZE]
         backs = [c for c in conductors if usual.is_return(index[c.start])]
         feeds = [c for c in conductors if c not in backs]
         if not backs or not feeds:

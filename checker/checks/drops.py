@@ -95,7 +95,7 @@ def circuit_drop(
 
 
 def _volts(conductor: Conductor, current_a: float, k: float, sizes: Mapping[str, Size]) -> float:
-    size = sizes.get(conductor.id, conductor.size)
+    size = sizes.get(conductor.id, conductor.copper)
     return drop_v(current_a, conductor.length_m, size.area_cmil, k)
 
 

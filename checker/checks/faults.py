@@ -8,7 +8,7 @@ from collections.abc import Iterator
 from checker.boat.hull import Device
 from checker.boat.parts import Battery, Overcurrent
 from checker.checks.check import Case, Place, Told, check
-from checker.checks.feeding import Kind, feedings
+from checker.checks.feeding import PROTECTION, Kind, feedings
 from checker.checks.words import BATTERY_FIGURES, ampere, no_figures, plain, seconds
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.formulas import adiabatic, adiabatic_k, study_figures
@@ -154,6 +154,7 @@ def _judge_far(case: Case, device: Device, part: Overcurrent, far: FarEnd, place
     formula="I²·t ≤ k²·S², valid up to 5 s",
     why="the insulation is spoiled before the device has opened",
     catalogue=("PRO-04", "PRO-15"),
+    needs=PROTECTION,
 )
 def conductor_withstand(case: Case) -> Iterator[Outcome]:
     """Over the whole range of fault currents, does the conductor withstand the device's total clearing time?
@@ -178,7 +179,7 @@ def _judge_withstand(case: Case, device: Device, name: str, far: FarEnd, largest
     constants = adiabatic()
     k = adiabatic_k(min(conductor.cable.insulation_c, constants.final_c - 1), constants.final_c)
     curve = curve_of(case.boat, device)
-    k2s2 = (k * conductor.size.area_mm2) ** 2
+    k2s2 = (k * conductor.copper.area_mm2) ** 2
     ratio, at_a = withstand_ratio(curve, k2s2, far.current_a, max(largest_a, far.current_a), constants.valid_up_to_s)
     let_through, withstood = ratio * k2s2 / 1e6, k2s2 / 1e6
     told = Told(

@@ -10,15 +10,21 @@ from __future__ import annotations
 import math
 from dataclasses import dataclass, replace
 from enum import Enum
+from functools import cached_property
 
 from checker.boat.hull import Conductor
+from checker.checks.bearing import SIZING
 from checker.checks.check import Case
-from checker.checks.roles import BANK, PIGTAIL, protection_exemption, role_holds
+from checker.checks.roles import BANK, EXEMPTIONS, PIGTAIL, protection_exemption, role_holds
 from checker.network.exposure import ExposureStudy
 from checker.network.graph import Edge, EdgeKind
 from checker.network.potentials import Potentials
 from checker.network.runs import HAS_LENGTH_OR_OPENS, Run, unprotected_runs
-from checker.network.states import SwitchState, places
+from checker.network.states import SwitchState, live_edges, places
+from checker.network.walk import Neighbours, neighbours, path_between
+
+PROTECTION = (*SIZING, EXEMPTIONS, "distance", "device_rating")
+"""The tables of a limit set that say what protects a conductor, and from how far off."""
 
 UNKNOWN_ALLOWED_A = 1e12
 """Stands for "finite" where the table has no row: only an unlimited feed is then a fault."""
@@ -112,7 +118,9 @@ class _State:
         freed = [name for name in exempt if case.boat.conductors[name].role != PIGTAIL]
         self._runs = unprotected_runs(case.studies.network, potentials, study, allowed, freed)
         # Pieces ahead of others: they are judged where their run ends.
-        self._onward = {name for run in self._runs.values() if run.device for name in run.conductors[:-1]}
+        onward = [(run, name) for run in self._runs.values() if run.device for name in run.conductors[:-1]]
+        self._onward = {name for _, name in onward}
+        self._near_onward = {name for run, name in onward if run.length_m <= self._limit_m(run) * (1 + 1e-9)}
         self._place = places(case.studies.network, potentials.state, HAS_LENGTH_OR_OPENS, over_diodes=True)
 
     def feeding(self, edge: Edge) -> Feeding:
@@ -134,18 +142,20 @@ class _State:
         """Judge a conductor that more can reach than it may stand behind."""
         run = self._runs[edge.part]
         limit_m = self._limit_m(run)
-        if run.device:
-            if run.length_m <= limit_m * (1 + 1e-9):
-                return self._near(run, limit_m, found)
-        elif edge.part in self._onward:
-            return replace(found, kind=Kind.SHORT, run=run, note="its length is judged at the device it leads to")
+        if run.device and run.length_m <= limit_m * (1 + 1e-9):
+            return self._near(run, limit_m, found)
         exposure = self._study.exposures[edge.index]
         node = edge.a if exposure.at_a >= exposure.at_b else edge.b
         terms = tuple(self._study.terms(edge, node))
         found = replace(found, run=run, limit_m=limit_m, terms=terms)
-        if math.isinf(found.reaching_a):
-            return replace(found, kind=Kind.FAR if run.device else Kind.OPEN)
-        return replace(found, kind=self._finite_kind(node, terms, found.allowed_a))
+        kind = Kind.FAR if run.device else Kind.OPEN
+        if not math.isinf(found.reaching_a):
+            kind = self._finite_kind(edge, node, terms, found.allowed_a)
+        is_onward = not run.device and edge.part in self._onward
+        if is_onward and (kind is not Kind.RATING or edge.part in self._near_onward):
+            note = "its length is judged at the device it leads to"
+            return replace(found, kind=Kind.SHORT, terms=(), limit_m=0.0, note=note)
+        return replace(found, kind=kind)
 
     def _near(self, run: Run, limit_m: float, found: Feeding) -> Feeding:
         rule = self._case.limits.distance
@@ -165,13 +175,28 @@ class _State:
             return rule.battery_enclosed_m
         return rule.enclosed_m
 
-    def _finite_kind(self, node: int, terms: tuple[tuple[str, float], ...], allowed_a: float) -> Kind:
+    def _finite_kind(self, edge: Edge, node: int, terms: tuple[tuple[str, float], ...], allowed_a: float) -> Kind:
         """Tell one device too large from several that add up, and from a step to a thinner size."""
         if len(terms) > 1 and terms[0][1] <= allowed_a * (1 + 1e-9):
             return Kind.DOUBLE
         device = terms[0][0] if terms else ""
         if device not in self._case.boat.devices:
             return Kind.RATING  # a source of limited output is too strong for its own lead
-        posts = [self._case.studies.network.index.get(f"{device}.{post}") for post in ("line", "load")]
-        at_device = any(post is not None and self._place[post] == self._place[node] for post in posts)
-        return Kind.RATING if at_device or not device else Kind.STEP
+        index = self._case.studies.network.index
+        posts = [index[f"{device}.{post}"] for post in ("line", "load") if f"{device}.{post}" in index]
+        at_device = any(self._place[post] == self._place[node] for post in posts)
+        return Kind.RATING if at_device or not self._steps_down(edge, node, posts, terms[0][1]) else Kind.STEP
+
+    def _steps_down(self, edge: Edge, node: int, posts: list[int], rating_a: float) -> bool:
+        """Tell whether a conductor between a device and this one suits the device: else the device is too large."""
+        way = path_between(self._ways, node, posts, frozenset((edge.part,)))
+        if way is None:
+            return True
+        return any(self._allowed[e.part] >= rating_a * (1 - 1e-9) for e in way if e.part in self._allowed)
+
+    @cached_property
+    def _ways(self) -> Neighbours:
+        """Return what conducts at each post with every device taken out."""
+        network = self._case.studies.network
+        live = [i for i in live_edges(network, self._state) if network.edges[i].kind is not EdgeKind.DEVICE]
+        return neighbours(network, [*live, *(edge.index for edge in network.diodes)])

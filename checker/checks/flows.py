@@ -6,10 +6,11 @@ from collections.abc import Iterator
 
 from checker.boat.hull import Circuit, Conductor
 from checker.boat.parts import Bus, Diode, Load, Overcurrent, Switch
+from checker.checks.bearing import SIZING
 from checker.checks.check import Case, Place, Told, at_conductor, check
 from checker.checks.drops import drop_limit, nominal_v
-from checker.checks.remedy import smallest_gauge, together
-from checker.checks.roles import exempt_as
+from checker.checks.remedy import gauges, smallest_gauge, together
+from checker.checks.roles import EXEMPTIONS, exempt_as
 from checker.checks.words import BATTERY_FIGURES, ampere, percent, plain
 from checker.finding import Basis, Level, Measure, Outcome
 from checker.limits.limit_set import surge_s
@@ -18,7 +19,6 @@ from checker.network.flow import Flow, NoOperatingPoint
 from checker.network.graph import EdgeKind
 from checker.network.potentials import study_potentials
 from checker.network.solved import Solved
-from checker.units import awg_size
 
 CIRCUIT_LAWS = "Kirchhoff's laws: ΣI = 0 at every post, V = I·R along every conductor, R = rho·l/A at 30 C"
 SERIES_FRACTION = 0.99
@@ -29,8 +29,8 @@ def _solved(case: Case) -> tuple[Solved, ...]:
     return case.studies.conditions.solved
 
 
-def _is_surge(solved: Solved) -> bool:
-    return not solved.lasts_beyond(surge_s())
+def _is_surge(case: Case, solved: Solved) -> bool:
+    return not solved.lasts_beyond(surge_s(case.house.common))
 
 
 def _unknown(case: Case) -> str:
@@ -87,6 +87,7 @@ def working_point(case: Case) -> Iterator[Outcome]:
     catalogue=("CON-01", "CON-11", "CON-19", "RET-06"),
     exemptions="the roles of § 183.425(g); currents that last no longer than a surge",
     per_set=True,
+    needs=(*SIZING, EXEMPTIONS, "surge"),
 )
 def solved_ampacity(case: Case) -> Iterator[Outcome]:
     """Does every conductor bear the largest current that any operating condition sends through it?
@@ -113,7 +114,7 @@ def _worst_currents(case: Case) -> dict[str, tuple[float, str]]:
         worst: dict[str, tuple[float, str]] = {}
         edges = case.studies.network.edges
         for solved in _solved(case):
-            if _is_surge(solved):
+            if _is_surge(case, solved):
                 continue
             for flow in solved.flows():
                 for index, current_a in flow.currents_a.items():
@@ -159,10 +160,12 @@ def _solved_gauge(case: Case, conductor: Conductor, current_a: float) -> str:
     names = together(case, conductor)
     size = smallest_gauge(case, names)
     for limits in case.every_set:
-        for name in limits.ampacity.sizes:
-            bearing = case.under(limits).bearings.of(conductor, awg_size(name))
+        bearings = case.under(limits).bearings
+        if bearings.of(conductor) is None:
+            continue
+        for enough in limits.ampacity.conductor_sizes:
+            bearing = bearings.of(conductor, enough)
             if bearing is not None and bearing.ampacity_a >= current_a:
-                enough = awg_size(name)
                 size = enough if size is None or enough.area_mm2 > size.area_mm2 else size
                 break
         else:
@@ -181,6 +184,7 @@ def _solved_gauge(case: Case, conductor: Conductor, current_a: float) -> str:
     catalogue=("CON-09", "LOD-03", "LOD-04"),
     caution="terminals are taken as zero; the real drop is larger",
     per_set=True,
+    needs=("drop",),
 )
 def solved_drop(case: Case) -> Iterator[Outcome]:
     """In every condition that judges drop, does each load or source lose no more than its group allows?
@@ -264,15 +268,14 @@ def _less_drop(case: Case, circuit: Circuit, flow: Flow, too_much_v: float) -> s
         current_a = abs(flow.currents_a.get(edge.index, 0.0))
         if current_a:
             ends = frozenset((flow.grid.place[edge.a], flow.grid.place[edge.b]))
-            area_mm2 = case.boat.conductors[name].size.area_mm2
+            area_mm2 = case.boat.conductors[name].copper.area_mm2
             beside.setdefault(ends, []).append((current_a, area_mm2, current_a * flow.grid.ohm(edge)))
     # What carries the whole current lies in series, out and back; side branches cannot be counted on.
     most_a = max((sum(amps for amps, _, _ in rows) for rows in beside.values()), default=0.0)
     series = [rows for rows in beside.values() if sum(amps for amps, _, _ in rows) >= SERIES_FRACTION * most_a]
     own = [max((lost_v, area_mm2) for _, area_mm2, lost_v in rows)[::-1] for rows in series]
     own_v = sum(lost_v for _, lost_v in own)
-    for name in case.limits.ampacity.sizes:
-        size = awg_size(name)
+    for size in gauges(case):
         left_v = sum(lost_v * min(1.0, area_mm2 / size.area_mm2) for area_mm2, lost_v in own)
         if own_v - left_v >= too_much_v:
             return f"use {size.text} or larger for its own conductors, which lose {own_v:.3f} V of it, or shorten them"
@@ -361,7 +364,7 @@ def solved_rating(case: Case) -> Iterator[Outcome]:
     worst: dict[tuple[str, bool], tuple[float, str]] = {}
     for solved in _solved(case):
         for name, current_a in _part_currents(case, solved):
-            key = (name, _is_surge(solved))
+            key = (name, _is_surge(case, solved))
             if current_a > worst.get(key, (-1.0, ""))[0]:
                 worst[key] = (current_a, solved.operation.condition.id)
     for (name, is_surge), (current_a, condition) in sorted(worst.items()):

@@ -5,15 +5,23 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from checker.boat.hull import Conductor
+from checker.checks.bearing import SIZING
 from checker.checks.check import Case, Place, Told, at_conductor, check
 from checker.checks.remedy import smallest_gauge_words
-from checker.checks.roles import continuous_a, exempt_as, size_exemption
+from checker.checks.roles import EXEMPTIONS, continuous_a, exempt_as, is_electronic, size_exemption
 from checker.checks.words import ampere, kept_length, short_length
 from checker.finding import Basis, Measure, Outcome
-from checker.units import awg_area_mm2, awg_text
+from checker.units import Size
 
 NO_FIGURE = "the table has no row for {size}"
 METRIC_FIELD = "house.metric_sizes in yard.yaml (next-smaller-awg), or an AWG size"
+GAUGE_FIELD = "house.gauge_sizes in yard.yaml (next-smaller-mm2), or a size in mm2"
+
+
+def size_field(case: Case) -> str:
+    """Name what to fill in where the set's table has no row for a size."""
+    is_metric = not case.limits.lacks(["ampacity"]) and case.limits.ampacity.is_metric
+    return GAUGE_FIELD if is_metric else METRIC_FIELD
 
 
 def _facts(conductor: Conductor) -> tuple[tuple[str, str], ...]:
@@ -35,6 +43,7 @@ def _facts(conductor: Conductor) -> tuple[tuple[str, str], ...]:
     exemptions="communication, navigation electronics, inside a housing, resistance, pigtail, cranking (§ 183.425(g))",
     caution="the table holds for 30 C ambient; surges of seconds are not judged",
     per_set=True,
+    needs=(*SIZING, EXEMPTIONS),
 )
 def ampacity(case: Case) -> Iterator[Outcome]:
     """Does every conductor bear the continuous current that it is meant to carry?
@@ -57,7 +66,7 @@ def ampacity(case: Case) -> Iterator[Outcome]:
         bearing = case.bearings.of(conductor)
         if bearing is None:
             fault = NO_FIGURE.format(size=conductor.size.text)
-            yield ampacity.not_assessed(case, place, fault, METRIC_FIELD)
+            yield ampacity.not_assessed(case, place, fault, size_field(case))
         elif current_a is None:
             yield ampacity.not_assessed(case, place, "its continuous current is not written", "current")
         else:
@@ -85,36 +94,52 @@ def _judge_ampacity(case: Case, conductor: Conductor, current_a: float, ampacity
     exemptions="communication, navigation electronics, electronic circuits below 1 A, inside a housing, "
     "resistance, pigtails with less than 7 in exposed, cranking (§ 183.425(g)); none of these is free of protection",
     per_set=True,
+    needs=("minimum_size",),
 )
 def minimum_size(case: Case) -> Iterator[Outcome]:
-    """Is every conductor at least 16 AWG, or 18 AWG inside a sheath of several cores?
+    """Is every conductor as thick as the limit set asks: 16 AWG, or 18 AWG inside a sheath of several cores?
 
-    A metric size is held against the area of that gauge if the yard lets the next smaller
-    gauge speak for metric sizes; else it is not assessed.
+    The metric set asks 1 mm2 of a single conductor longer than 200 mm, and 0.75 mm2 inside a
+    sheath. A metric size is held against the area of a gauge if the yard lets the next smaller
+    gauge speak for metric sizes; else it is not assessed. A gauge is held against a metric area
+    as it is.
     """
     rule = case.limits.minimum_size
     for conductor in case.boat.conductors.values():
         place = at_conductor(conductor)
         exempt = size_exemption(case, conductor)
         in_sheath = conductor.cable.is_sheathed and conductor.cable.cores > 1
-        least = rule.sheathed_awg if in_sheath else rule.single_awg
-        measure = Measure("area", conductor.size.area_mm2, awg_area_mm2(least), "mm2", at_least=True, is_stepped=True)
+        least = rule.least(is_in_sheath=in_sheath, length_m=conductor.length_m)
+        if least is None:
+            note = f"single conductor no longer than {kept_length(rule.single_longer_than_m)}: no smallest size"
+            yield minimum_size.passed(case, place, note)
+            continue
+        measure = Measure("area", conductor.size.area_mm2, least.area_mm2, "mm2", at_least=True, is_stepped=True)
         if exempt and not measure.holds:
             yield minimum_size.passed(case, place, exempt)
-        elif conductor.size.awg is None and not case.house.next_smaller_awg:
+        elif not measure.holds and _may_be_exempt(case, conductor):
+            fault = f"{conductor.size.text} is thinner than {least.text}; whether its role is exempt is not known"
+            file = f"{EXEMPTIONS}.yaml in limits/{case.limits.id}/, from your licensed copy"
+            yield minimum_size.not_assessed(case, place, fault, file)
+        elif conductor.size.awg is None and not rule.is_metric and not case.house.next_smaller_awg:
             fault = f"the rule is printed in AWG, the size is {conductor.size.text}"
             yield minimum_size.not_assessed(case, place, fault, METRIC_FIELD)
         else:
             yield _judge_minimum(case, conductor, place, measure, least, in_sheath)
 
 
+def _may_be_exempt(case: Case, conductor: Conductor) -> bool:
+    """Tell whether a table of exemptions that was not entered could free a conductor of the smallest size."""
+    return bool(case.limits.lacks([EXEMPTIONS])) and (bool(conductor.role) or is_electronic(case, conductor))
+
+
 def _judge_minimum(
-    case: Case, conductor: Conductor, place: Place, measure: Measure, least: str, in_sheath: bool
+    case: Case, conductor: Conductor, place: Place, measure: Measure, least: Size, in_sheath: bool
 ) -> Outcome:
     def told() -> Told:
         where = "inside a sheath" if in_sheath else "as a single conductor"
         return Told(
-            fault=f"{conductor.size.text} is thinner than {awg_text(least)}, the smallest allowed {where}",
+            fault=f"{conductor.size.text} is thinner than {least.text}, the smallest allowed {where}",
             remedy=smallest_gauge_words(case, conductor),
             inputs=_facts(conductor),
         )
@@ -131,16 +156,18 @@ def _judge_minimum(
     catalogue=("CON-06",),
     exemptions="as for the smallest size",
     per_set=True,
+    needs=("minimum_size",),
 )
 def sheath_exit(case: Case) -> Iterator[Outcome]:
     """Does a core that is thinner than 16 AWG leave its sheath by no more than 30 in?
 
-    Only cores that rely on their sheath for their size are looked at. The longer of both ends
-    counts; it is written as `bare_tail`.
+    Under the metric set: one thinner than 1 mm2, by no more than 800 mm. Only cores that rely on
+    their sheath for their size are looked at. The longer of both ends counts; it is written as
+    `bare_tail`.
     """
     rule = case.limits.minimum_size
     for conductor in case.boat.conductors.values():
-        relies = conductor.size.area_mm2 < awg_area_mm2(rule.single_awg) * (1 - 1e-9)
+        relies = conductor.size.area_mm2 < rule.single.area_mm2 * (1 - 1e-9)
         if not relies or not conductor.cable.is_sheathed or size_exemption(case, conductor):
             continue
         place = at_conductor(conductor)
@@ -158,7 +185,7 @@ def _judge_exit(case: Case, conductor: Conductor, place: Place, bare_m: float) -
         return Told(
             fault=f"{conductor.size.text} core is out of its sheath for {short_length(bare_m)}",
             remedy=f"keep the sheath to within {kept_length(most_m)} of the end, "
-            f"or use {awg_text(case.limits.minimum_size.single_awg)}",
+            f"or use {case.limits.minimum_size.single.text}",
             inputs=(*_facts(conductor), ("bare tail", short_length(bare_m))),
         )
 
@@ -174,6 +201,7 @@ def _judge_exit(case: Case, conductor: Conductor, place: Place, bare_m: float) -
     why="insulation melts at the normal heat of an engine",
     catalogue=("CON-14",),
     per_set=True,
+    needs=("insulation",),
 )
 def insulation_rating(case: Case) -> Iterator[Outcome]:
     """Is the insulation rated for the hottest zone that the conductor crosses?
@@ -213,6 +241,7 @@ def _judge_insulation(case: Case, conductor: Conductor, measure: Measure, engine
     catalogue=("CON-15",),
     exemptions="the roles of § 183.425(g)",
     per_set=True,
+    needs=("material", EXEMPTIONS),
 )
 def conductor_material(case: Case) -> Iterator[Outcome]:
     """Is every conductor insulated stranded copper, and no welding cable?"""

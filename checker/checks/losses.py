@@ -6,6 +6,7 @@ from collections.abc import Iterator
 
 from checker.boat.hull import Circuit, Device
 from checker.boat.parts import Load
+from checker.checks.bearing import SIZING
 from checker.checks.check import Case, Place, Told, check
 from checker.checks.words import BATTERY_FIGURES, ampere, no_figures, plain
 from checker.finding import Basis, Level, Measure, Outcome
@@ -101,11 +102,12 @@ def _first_post(case: Case, device: str) -> str:
     why="it cannot be isolated in a fire",
     catalogue=("BNK-08", "BNK-12"),
     exemptions="bilge pumps, alarms, sense and charging leads, the monitor of a shunt; a circuit that gives its "
-    "reason as `always_on`",
+    "reason as `always_on`; what the yard's own rules let stay live",
+    needs=("always_on",),
 )
 def ahead_of_switch(case: Case) -> Iterator[Outcome]:
     """With every battery switch off, is no load still live but those that may be?"""
-    rule, potentials = always_on_rule(), case.studies.all_off
+    rule, potentials = always_on_rule(case.house.common), case.studies.all_off
     for load in _loads(case):
         device = case.boat.devices[load]
         circuit = _circuit(case, device)
@@ -116,6 +118,8 @@ def ahead_of_switch(case: Case) -> Iterator[Outcome]:
             yield ahead_of_switch.passed(case, _at(device), f"may stay live: {service or device.belongs_to}")
         elif circuit is not None and circuit.always_on:
             yield ahead_of_switch.passed(case, _at(device), f"stays live: {circuit.always_on}")
+        elif reason := case.house.stays_live(service, circuit.id if circuit else ""):
+            yield ahead_of_switch.passed(case, _at(device), f"stays live by the yard's own rule: {reason}")
         else:
             told = Told(
                 fault="it stays live with every battery switch off",
@@ -131,10 +135,11 @@ def ahead_of_switch(case: Case) -> Iterator[Outcome]:
     citation="common practice, no source; BSS 2002 Part 3, 3.5 allows it",
     why="the boat sinks while it is locked up",
     catalogue=("BNK-11",),
+    needs=("always_on",),
 )
 def pump_stays_live(case: Case) -> Iterator[Outcome]:
     """With every battery switch off, is every bilge pump still fed?"""
-    rule = always_on_rule()
+    rule = always_on_rule(case.house.common)
     for load in _loads(case):
         device = case.boat.devices[load]
         circuit = _circuit(case, device)
@@ -175,6 +180,7 @@ def _circuit(case: Case, device: Device) -> Circuit | None:
     why="an empty bank pumps no bilge",
     level=Level.NOTE,
     catalogue=("LOD-09",),
+    needs=("bank",),
 )
 def standby_days(case: Case) -> Iterator[Outcome]:
     """With everything off, does what stays live leave half of each bank for at least ten days?
@@ -182,7 +188,7 @@ def standby_days(case: Case) -> Iterator[Outcome]:
     The current is that of the condition with every battery switch off; without one, the sum of
     the standby currents of the loads that stay live.
     """
-    figures = bank_figures()
+    figures = bank_figures(case.house.common)
     for bank in case.studies.banks:
         if not bank.strings:
             continue
@@ -231,6 +237,7 @@ def _standby_a(case: Case, bank: str) -> float | None:
     level=Level.WARNING,
     catalogue=("RET-11",),
     per_set=True,
+    needs=(*SIZING, "always_on"),
 )
 def lost_return(case: Case) -> Iterator[Outcome]:
     """With each heavy return opened in turn, does every path beside it bear what it then carries?
@@ -240,7 +247,7 @@ def lost_return(case: Case) -> Iterator[Outcome]:
     as resistances, since a motor behind a bad return draws less. Cranking too is held against
     the lasting ampacity: nobody mends a return after one start.
     """
-    rule = always_on_rule()
+    rule = always_on_rule(case.house.common)
     if missing := case.studies.conditions.missing:
         place = _at(case.boat.devices[missing[0]])
         yield lost_return.not_assessed(case, place, no_figures(missing), BATTERY_FIGURES)

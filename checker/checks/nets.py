@@ -11,6 +11,7 @@ from checker.checks.words import plain
 from checker.finding import Basis, Level, Outcome
 from checker.network.graph import EdgeKind, LoadTie
 from checker.network.potentials import SAME_V, Potentials
+from checker.network.sensing import array_strings
 
 
 def _at(device: Device, state: str = "") -> Place:
@@ -165,7 +166,7 @@ def load_return(case: Case) -> Iterator[Outcome]:
     for device, feed, back, is_source in ties:
         if device.id in seen:
             continue
-        floating = _floating_end(case, feed, back, is_source=is_source)
+        floating = _floating_end(case, device, feed, back, is_source=is_source)
         if floating is None:
             yield load_return.passed(case, _at(device))
             continue
@@ -183,18 +184,19 @@ def load_return(case: Case) -> Iterator[Outcome]:
         yield load_return.found(case, _at(device), told)
 
 
-def _floating_end(case: Case, feed: int, back: int, *, is_source: bool) -> tuple[int, str] | None:
+def _floating_end(case: Case, device: Device, feed: int, back: int, *, is_source: bool) -> tuple[int, str] | None:
     """Return the end of a load or source that floats, and its name; None where it is held.
 
     It is held in a state in which batteries tie its two ends together, or in which something
     else hangs between the same two nets: an array and its controller, a load on an isolated
-    converter.
+    converter. Arrays in series are held by the controller that they feed as one. What a
+    converter's own input and output share holds neither.
     """
     network = case.studies.network
     others = (
-        [(tie.feed, tie.back) for tie in network.loads]
+        [(tie.feed, tie.back) for tie in network.loads if tie.device != device.id]
         if is_source
-        else [(tie.out, tie.back) for tie in network.sources]
+        else [(tie.out, tie.back) for tie in network.sources if tie.device != device.id]
     )
     for potentials in case.studies.potentials:
         if potentials.battery_island[feed] == potentials.battery_island[back]:
@@ -202,10 +204,24 @@ def _floating_end(case: Case, feed: int, back: int, *, is_source: bool) -> tuple
         nets = (potentials.net[feed], potentials.net[back])
         if any((potentials.net[a], potentials.net[b]) == nets for a, b in others):
             return None
+    if _is_in_row(case, feed, back):
+        return None
     for word, post in (("return", back), ("feed", feed)):
         if not _is_anchored(case, post):
             return post, word
     return back, "return"
+
+
+def _is_in_row(case: Case, feed: int, back: int) -> bool:
+    """Tell whether two posts are those of an array in a row that feeds a controller, or of that input."""
+    network = case.studies.network
+    for potentials in case.studies.potentials:
+        for tie in network.loads:
+            rows = array_strings(network, potentials, tie) if tie.is_input else ()
+            held = {(source.out, source.back) for row in rows for source in row}
+            if (feed, back) in held or (rows and (feed, back) == (tie.feed, tie.back)):
+                return True
+    return False
 
 
 def _is_anchored(case: Case, post: int) -> bool:

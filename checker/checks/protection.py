@@ -7,8 +7,8 @@ from collections.abc import Iterator
 from checker.boat.hull import Conductor
 from checker.boat.parts import Overcurrent
 from checker.checks.check import Case, Place, Told, at_conductor, check
-from checker.checks.feeding import UNKNOWN_ALLOWED_A, Feeding, Kind, feedings
-from checker.checks.gauge import METRIC_FIELD
+from checker.checks.feeding import PROTECTION, UNKNOWN_ALLOWED_A, Feeding, Kind, feedings
+from checker.checks.gauge import size_field
 from checker.checks.remedy import highest_rating, smallest_gauge, smallest_gauge_words, together
 from checker.checks.roles import BANK, protection_exemption, role_holds
 from checker.checks.words import ampere, kept_length, short_length
@@ -42,11 +42,25 @@ def _sum(feeding: Feeding) -> str:
     citation="33 CFR § 183.455(a)",
     formula="the maximum flow into each end, with the conductor taken out, is finite",
     why="nothing would open a short circuit here: a chafe becomes a fire",
-    catalogue=("PRO-01", "PRO-07", "PRO-16", "PRO-17", "PRO-18", "PRO-20", "PRO-21", "PRO-22"),
+    catalogue=(
+        "PRO-01",
+        "PRO-07",
+        "PRO-16",
+        "PRO-17",
+        "PRO-18",
+        "PRO-20",
+        "PRO-21",
+        "PRO-22",
+        "PAN-02",
+        "BNK-10",
+        "SHU-08",
+        "SHU-09",
+    ),
     exemptions="cranking motor conductors, resistance conductors, pigtails below 7 in (§ 183.455(e), from memory); "
     "bank conductors belong to the bank; what only a self-limiting source can feed is held to its greatest output",
     caution=_CAUTION,
     per_set=True,
+    needs=PROTECTION,
 )
 def unprotected_conductor(case: Case) -> Iterator[Outcome]:
     """Does some overcurrent device stand between every live conductor and every battery?
@@ -108,10 +122,11 @@ def _device_in_return(case: Case, conductor: Conductor) -> str:
     citation="33 CFR § 183.455(b)(1), (b)(2)",
     formula="l1 + l2 + … of the conductors ahead of the first device ≤ the limit",
     why="the piece ahead of the device burns before anything opens",
-    catalogue=("PRO-02", "PRO-03", "PRO-16", "PRO-17"),
+    catalogue=("PRO-02", "PRO-03", "PRO-16", "PRO-17", "PAN-02", "SRC-01"),
     exemptions="cranking motor conductors: what leaves them is measured from where it leaves",
     caution=_CAUTION,
     per_set=True,
+    needs=PROTECTION,
 )
 def protection_distance(case: Case) -> Iterator[Outcome]:
     """Is the conductor ahead of the first overcurrent device short enough?
@@ -166,6 +181,7 @@ def _told_far(case: Case, feeding: Feeding) -> Told:
     caution="the federal text does not say whether the engine-space factor comes before the 150 %; it is taken first, "
     "the stricter reading",
     per_set=True,
+    needs=PROTECTION,
 )
 def device_rating(case: Case) -> Iterator[Outcome]:
     """Does the device that protects a conductor open before the conductor is overloaded?
@@ -183,9 +199,10 @@ def device_rating(case: Case) -> Iterator[Outcome]:
     citation="33 CFR § 183.455(a), (c)(1)",
     formula="largest flow into the conductor ≤ largest rating allowed for its corrected ampacity",
     why="a thin tail behind a device meant for a thick cable burns first",
-    catalogue=("PRO-05", "PRO-06"),
+    catalogue=("PRO-05", "PRO-06", "PAN-02"),
     caution=_CAUTION,
     per_set=True,
+    needs=PROTECTION,
 )
 def size_step(case: Case) -> Iterator[Outcome]:
     """Is every conductor down to the load protected at its own size, also after a step or two?
@@ -203,9 +220,10 @@ def size_step(case: Case) -> Iterator[Outcome]:
     citation="33 CFR § 183.455(c)(1); that the sum is judged is common practice, no source",
     formula="In,1 + In,2 + … ≤ largest rating allowed for the conductor's corrected ampacity",
     why="each device is small enough alone, but a fault is fed by their sum",
-    catalogue=("PRO-25",),
+    catalogue=("PRO-25", "PAN-06"),
     caution=_CAUTION,
     per_set=True,
+    needs=PROTECTION,
 )
 def double_feed(case: Case) -> Iterator[Outcome]:
     """Is what several devices and sources can send into a conductor together within what it allows?
@@ -222,7 +240,7 @@ def _judge_rating(case: Case, feeding: Feeding, kind: Kind) -> Iterator[Outcome]
     place = _place(case, feeding)
     if feeding.kind is Kind.NO_FIGURE:
         fault = f"the table has no row for {feeding.conductor.size.text}"
-        yield rule.not_assessed(case, place, fault, METRIC_FIELD)
+        yield rule.not_assessed(case, place, fault, size_field(case))
     elif feeding.kind is Kind.PROTECTED or feeding.kind is kind:
         measure = Measure("protection", feeding.reaching_a, feeding.allowed_a, "A")
         yield rule.judge(case, place, measure, lambda: _told_rating(case, feeding))
@@ -268,6 +286,7 @@ def _told_rating(case: Case, feeding: Feeding) -> Told:
     catalogue=("CON-16", "RET-06"),
     level=Level.ERROR,
     per_set=True,
+    needs=PROTECTION,
 )
 def return_protection(case: Case) -> Iterator[Outcome]:
     """Does the device in a load's feed open before the load's return is overloaded?
@@ -293,7 +312,7 @@ def return_protection(case: Case) -> Iterator[Outcome]:
             allowed_a = case.bearings.allowed_a(conductor)
             if allowed_a is None:
                 fault = f"the table has no row for {conductor.size.text}"
-                yield return_protection.not_assessed(case, place, fault, METRIC_FIELD)
+                yield return_protection.not_assessed(case, place, fault, size_field(case))
                 continue
             measure = Measure("protection", failed.current_a, allowed_a, "A")
             if not measure.holds and failed.is_in_loop:
@@ -305,10 +324,15 @@ def return_protection(case: Case) -> Iterator[Outcome]:
 
 def _is_told_or_cranks(case: Case, load: str, feeds: dict[str, Kind]) -> bool:
     """Tell whether the missing device ahead of a load is told at its feed, or the load is a cranking motor."""
+    place, index = case.studies.places, case.studies.network.index
+    # An instrument that is mounted on a shunt's post has the conductor there for its own.
+    own = {place[tie.feed] for tie in case.studies.network.loads if tie.device == load}
     for name, kind in feeds.items():
         conductor = case.boat.conductors[name]
-        owners = [case.boat.device_of(post) for post in (conductor.start, conductor.end)]
+        ends = (conductor.start, conductor.end)
+        owners = [case.boat.device_of(post) for post in ends]
         is_its_own = any(owner is not None and owner.id == load for owner in owners)
+        is_its_own = is_its_own or any(place[index[post]] in own for post in ends)
         if is_its_own and (kind in (Kind.OPEN, Kind.FAR) or name in case.studies.cranking):
             return True
     return False

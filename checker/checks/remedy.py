@@ -8,9 +8,9 @@ from checker.boat.hull import Conductor
 from checker.boat.parts import Overcurrent
 from checker.checks.check import Case
 from checker.checks.drops import circuit_drop, circuits_through, drop_limit
-from checker.checks.roles import continuous_a, exempt_as, size_exemption
+from checker.checks.roles import EXEMPTIONS, continuous_a, exempt_as, size_exemption
 from checker.limits.limit_set import metric_sizes, standard_ratings
-from checker.units import Size, awg_area_mm2, awg_size
+from checker.units import Size
 
 
 def together(case: Case, conductor: Conductor) -> tuple[str, ...]:
@@ -32,8 +32,16 @@ def smallest_gauge(case: Case, names: tuple[str, ...], *, also_drop_of: str = ""
         also_drop_of: A circuit whose voltage drop must be kept too.
     """
     is_metric = all(case.boat.conductors[name].size.awg is None for name in names)
-    sizes = metric_sizes() if is_metric else tuple(awg_size(name) for name in case.limits.ampacity.sizes)
+    sizes = metric_sizes() if is_metric else gauges(case)
     return next((size for size in sizes if _passes(case, names, size, also_drop_of)), None)
+
+
+def gauges(case: Case) -> tuple[Size, ...]:
+    """Return the gauges of a table that the boat is judged by; the metric sizes where none has gauges."""
+    for limits in (case.limits, *case.every_set):
+        if not limits.lacks(["ampacity"]) and not limits.ampacity.is_metric:
+            return limits.ampacity.conductor_sizes
+    return metric_sizes()
 
 
 def smallest_gauge_words(case: Case, conductor: Conductor) -> str:
@@ -59,29 +67,38 @@ def _returns_of(case: Case, conductor: Conductor) -> list[Conductor]:
 
 
 def _passes(case: Case, names: tuple[str, ...], size: Size, also_drop_of: str) -> bool:
-    return all(
-        _passes_under(case.under(limits), [case.boat.conductors[name] for name in names], size, also_drop_of)
-        for limits in case.every_set
-    )
+    conductors = [case.boat.conductors[name] for name in names]
+    views = [case.under(limits) for limits in case.every_set]
+    if not all(any(view.bearings.of(conductor, size) for view in views) for conductor in conductors):
+        return False  # no set says what it would bear
+    return all(_passes_under(view, conductors, size, also_drop_of) for view in views)
 
 
 def _passes_under(case: Case, conductors: list[Conductor], size: Size, also_drop_of: str) -> bool:
-    return all(_bears(case, conductor, size) for conductor in conductors) and _drops(
-        case, conductors, size, also_drop_of
-    )
+    if not all(_is_thick(case, conductor, size) for conductor in conductors):
+        return False
+    judged = [c for c in conductors if case.bearings.of(c) is not None or case.bearings.of(c, size) is not None]
+    return all(_bears(case, conductor, size) for conductor in judged) and _drops(case, conductors, size, also_drop_of)
+
+
+def _is_thick(case: Case, conductor: Conductor, size: Size) -> bool:
+    """Tell whether a conductor of another size passes the smallest size."""
+    sheathed = conductor.cable.is_sheathed and conductor.cable.cores > 1
+    least = case.limits.minimum_size.least(is_in_sheath=sheathed, length_m=conductor.length_m)
+    if least is None or size.area_mm2 >= least.area_mm2 * (1 - 1e-9):
+        return True
+    return bool(size_exemption(case, conductor))
 
 
 def _bears(case: Case, conductor: Conductor, size: Size) -> bool:
-    """Tell whether a conductor of another size passes ampacity, protection and smallest size."""
+    """Tell whether a conductor of another size passes ampacity and protection, as far as the set judges these."""
     bearing = case.bearings.of(conductor, size)
+    if bearing is None:
+        return False
+    if case.limits.lacks([EXEMPTIONS, "device_rating"]):
+        return True
     allowed_a = case.bearings.allowed_a(conductor, size)
-    if bearing is None or allowed_a is None:
-        return False
-    rule = case.limits.minimum_size
-    sheathed = conductor.cable.is_sheathed and conductor.cable.cores > 1
-    least = rule.sheathed_awg if sheathed else rule.single_awg
-    if size.area_mm2 < awg_area_mm2(least) * (1 - 1e-9) and not size_exemption(case, conductor):
-        return False
+    assert allowed_a is not None
     roles = case.limits.exemptions.ampacity_exempt_roles
     current_a = continuous_a(case, conductor)
     is_exempt = bool(exempt_as(case, conductor, roles, "ampacity_exempt_roles"))

@@ -11,6 +11,8 @@ from checker.checks.check import Case
 CRANKING = "cranking"
 PIGTAIL = "pigtail"
 BANK = "bank"
+EXEMPTIONS = "exemptions"
+"""The table of a limit set that says which roles are exempt from what."""
 ELECTRONIC_SERVICES = frozenset(("electronics", "radio", "sense", "gauges", "alarm"))
 
 
@@ -21,7 +23,7 @@ def role_holds(case: Case, conductor: Conductor) -> bool:
     if conductor.role == BANK:
         return conductor.id in case.studies.bank_conductors
     if conductor.role == PIGTAIL:
-        return conductor.length_m < case.limits.exemptions.pigtail_below_m
+        return not case.limits.lacks([EXEMPTIONS]) and conductor.length_m < case.limits.exemptions.pigtail_below_m
     return bool(conductor.role)
 
 
@@ -34,17 +36,23 @@ def exempt_as(case: Case, conductor: Conductor, roles: tuple[str, ...], figure: 
 
 
 def size_exemption(case: Case, conductor: Conductor) -> str:
-    """Return why a conductor is free of the minimum size, or an empty text."""
+    """Return why a conductor is free of the minimum size, or an empty text; nothing is exempt without the table."""
+    if case.limits.lacks([EXEMPTIONS]):
+        return ""
     rule = case.limits.exemptions
     told = exempt_as(case, conductor, rule.roles, "roles")
     if told:
         return told
-    circuit = case.boat.circuits.get(conductor.circuit)
-    is_electronic = conductor.role == "sense" or (circuit is not None and circuit.service in ELECTRONIC_SERVICES)
     current_a = continuous_a(case, conductor)
-    if is_electronic and current_a is not None and current_a < rule.electronic_below_a:
+    if is_electronic(case, conductor) and current_a is not None and current_a < rule.electronic_below_a:
         return f"exempt as electronic circuit below {rule.electronic_below_a:g} A ({rule.citation.clause})"
     return ""
+
+
+def is_electronic(case: Case, conductor: Conductor) -> bool:
+    """Tell whether a conductor belongs to an electronic circuit."""
+    circuit = case.boat.circuits.get(conductor.circuit)
+    return conductor.role == "sense" or (circuit is not None and circuit.service in ELECTRONIC_SERVICES)
 
 
 def protection_exemption(case: Case, conductor: Conductor) -> str:

@@ -67,8 +67,11 @@ def _not_recorded(case: Case) -> list[tuple[str, str, Span]]:
 def _bypasses(case: Case, metering: Metering, words: str) -> Iterator[Outcome]:
     if metering.bypass:
         yield _round_it(case, metering, words)
+    by_landing: dict[str, list[Unmetered]] = {}
     for item in metering.unmetered:
-        yield _beside_it(case, metering.shunt, item, words)
+        by_landing.setdefault(item.landing, []).append(item)
+    for landing, items in by_landing.items():
+        yield _beside_it(case, metering.shunt, landing, items, words)
 
 
 def _round_it(case: Case, metering: Metering, words: str) -> Outcome:
@@ -79,7 +82,7 @@ def _round_it(case: Case, metering: Metering, words: str) -> Outcome:
         p for p in metering.bypass_parts if p in shields or (p in boat.conductors and boat.conductors[p].is_bond)
     ]
     wires = [p for p in metering.bypass_parts if p in boat.conductors]
-    blamed = (strange or [p for p in wires if boat.conductors[p].role != "bank"] or wires or [metering.shunt])[0]
+    blamed = (strange or [p for p in wires if p not in metering.own_parts] or wires or [metering.shunt])[0]
     at = boat.conductors[blamed].at if blamed in boat.conductors else boat.devices[metering.shunt].at
     at = next((s.at for s in boat.shields or () if s.id == blamed), at)
     told = Told(
@@ -91,9 +94,15 @@ def _round_it(case: Case, metering: Metering, words: str) -> Outcome:
     return shunt_bypass.found(case, Place(blamed, at, "", words), told)
 
 
-def _beside_it(case: Case, shunt: str, item: Unmetered, words: str) -> Outcome:
-    boat = case.boat
-    conductor = boat.conductors.get(item.last)
+MOST_NAMED = 3
+"""What lands by one conductor is named up to this many; then the rest is counted."""
+
+
+def _beside_it(case: Case, shunt: str, landing: str, items: list[Unmetered], words: str) -> Outcome:
+    """Tell what lands on the bank's side by one conductor there; a load that lands alone at its own conductor."""
+    boat, item = case.boat, items[0]
+    many = len(items) > 1
+    conductor = boat.conductors.get(landing if many else item.last)
     if conductor is not None:
         place = Place(conductor.id, conductor.at, conductor.circuit, words)
     else:
@@ -101,12 +110,22 @@ def _beside_it(case: Case, shunt: str, item: Unmetered, words: str) -> Outcome:
         at = device.at if device else next(s.at for s in boat.shields or () if s.id == item.device)
         place = Place(item.device, at, device.circuit if device else "", words)
     told = Told(
-        fault=f"{item.what} {item.device} is joined to the bank's side of {shunt}: its current is not measured",
-        remedy=f"land it on the boat's side, e.g. on {boat.reference}",
+        fault=f"{_named(items)} {'are' if many else 'is'} joined to the bank's side of {shunt}"
+        + (f" by {place.part}: their" if many else ": its")
+        + " current is not measured",
+        remedy=f"land {place.part if many else 'it'} on the boat's side, e.g. on {boat.reference}",
         path=item.path,
-        inputs=(("path", " ".join(item.path)),),
+        inputs=(("path", " ".join(item.path)), *((("with", " ".join(i.device for i in items[1:])),) if many else ())),
     )
     return shunt_bypass.found(case, place, told)
+
+
+def _named(items: list[Unmetered]) -> str:
+    """Name what lands by one conductor: all of a few, the first of many."""
+    names = [f"{item.what} {item.device}" for item in items]
+    if len(names) <= MOST_NAMED + 1:
+        return ", ".join(names[:-1]) + (" and " if names[1:] else "") + names[-1]
+    return f"{', '.join(names[:MOST_NAMED])} and {len(names) - MOST_NAMED} more"
 
 
 @check(

@@ -14,15 +14,16 @@ CITABLE = (Basis.LAW, Basis.STANDARD, Basis.HANDBOOK, Basis.FROM_MEMORY, Basis.C
 
 @dataclass(frozen=True, slots=True)
 class Citation:
-    """Name the place of a figure: document, clause, edition, and what it rests on."""
+    """Name the place of a figure: document, clause, edition, and what it rests on; a yard's table also the page."""
 
     document: str
     clause: str
     edition: str
     basis: Basis
     note: str = ""
+    page: str = ""
 
     @property
     def text(self) -> str:
-        """Return document and clause in one line: "33 CFR Part 183, Subpart I, § 183.455(b)"."""
-        return f"{self.document}, {self.clause}" if self.clause else self.document
+        """Return document, clause and page in one line: "33 CFR Part 183, Subpart I, § 183.455(b)"."""
+        return ", ".join(filter(None, (self.document, self.clause, self.page)))

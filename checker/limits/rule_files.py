@@ -6,7 +6,7 @@ page; they become SI and fractions here.
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Callable, Iterable
 from itertools import pairwise
 
 from checker.limits.citation import Citation
@@ -30,10 +30,15 @@ from checker.limits.rules import (
     ProtectionDistance,
     SelfLimitingSource,
     SizeExemptions,
+    SourceDevice,
+    SupportRule,
     figure_at,
+    is_metric,
+    row_size,
 )
 from checker.limits.table_file import Table, common_table
-from checker.units import METRE_PER_FOOT, awg_number, metre_from_inch
+from checker.reading.words import shown
+from checker.units import CIRCULAR_MIL_MM2, METRE_PER_FOOT, Size, awg_number, metre_from_inch, metre_from_millimetre
 
 
 def read_applies(table: Table) -> Applicability:
@@ -43,24 +48,31 @@ def read_applies(table: Table) -> Applicability:
 
 
 def read_ampacity(table: Table) -> AmpacityTable:
-    """Read the ampacity grid, and refuse one that falls with temperature or with size."""
+    """Read the ampacity grid, and refuse one that falls with temperature or with size.
+
+    Its rows are gauges ('16') or areas (2.5 mm2).
+    """
     citation, figures = _cited(table, ("ambient_c", "columns_c", "rows"))
     columns_c = table.numbers("columns_c")
     if not columns_c or any(lower >= higher for lower, higher in pairwise(columns_c)):
-        table.refuse("columns_c must rise")
+        table.refuse("columns_c must rise", "columns_c")
     grid = table.table("rows")
     rows = tuple((awg, grid.numbers(awg)) for awg in grid.values)
-    for awg, amperes in rows:
-        _expect_gauge(grid, awg)
+    areas_mm2 = [_row_area_mm2(grid, name) for name, _ in rows]
+    for name, amperes in rows:
+        if is_metric(name) is not is_metric(rows[0][0]):
+            grid.refuse("rows are all gauges or all metric sizes", name)
         if len(amperes) != len(columns_c):
-            grid.refuse(f"{awg} AWG has {len(amperes)} figures for {len(columns_c)} columns")
+            grid.refuse(f"{_row(name)} has {len(amperes)} figures for {len(columns_c)} columns", name)
         if any(cooler > hotter for cooler, hotter in pairwise(amperes)):
-            grid.refuse(f"{awg} AWG falls with the temperature")
-    for (small, below), (large, above) in pairwise(rows):
-        if awg_number(small) <= awg_number(large):
-            grid.refuse(f"{large} AWG must not follow {small} AWG: rows go from small to large")
+            grid.refuse(f"{_row(name)} falls with the temperature", name)
+    for (smaller_mm2, larger_mm2), ((small, below), (large, above)) in zip(
+        pairwise(areas_mm2), pairwise(rows), strict=True
+    ):
+        if smaller_mm2 >= larger_mm2:
+            grid.refuse(f"{_row(large)} must not follow {_row(small)}: rows go from small to large", large)
         if any(a > b for a, b in zip(below, above, strict=True)):
-            grid.refuse(f"{large} AWG bears less than {small} AWG")
+            grid.refuse(f"{_row(large)} bears less than {_row(small)}", large)
     if not rows:
         grid.refuse("the table has no rows")
     return AmpacityTable(
@@ -68,15 +80,30 @@ def read_ampacity(table: Table) -> AmpacityTable:
         figures=figures,
         ambient_c=table.number("ambient_c"),
         columns_c=columns_c,
-        rows=rows,
+        rows=tuple((name if not is_metric(name) else row_size(name).text, amperes) for name, amperes in rows),
     )
+
+
+def _row(name: str) -> str:
+    """Name a row for a reader: "6 AWG", "16 mm2"."""
+    return name if is_metric(name) else f"{name} AWG"
+
+
+def _row_area_mm2(grid: Table, name: str) -> float:
+    """Return the area of a row, and refuse a name that is no size."""
+    if not is_metric(name):
+        _expect_gauge(grid, name)
+    try:
+        return row_size(name).area_mm2
+    except ValueError:
+        grid.refuse(f"{shown(name)!r} is no area of copper; write e.g. 2.5 mm2", name)
 
 
 def read_engine_factor(table: Table) -> EngineFactor:
     """Read the engine-space factors; a factor may have a citation of its own, named "105 C"."""
     rows = tuple(_engine_row(row) for row in table.tables("rows"))
     if any(lower[0] >= higher[0] for lower, higher in pairwise(rows)):
-        table.refuse("rows must rise with column_c")
+        table.refuse("rows must rise with column_c", "rows")
     citation, figures = _cited(
         table, ("ambient_c", "rows"), figure_names=tuple(figure_at(column_c) for column_c, _ in rows)
     )
@@ -104,11 +131,11 @@ def _bundle_rows(table: Table, key: str) -> tuple[BundleRow, ...]:
     rows = tuple(_bundle_row(row) for row in table.tables(key))
     for less, more in pairwise(rows):
         if less.most is None or more.least != less.most + 1:
-            table.refuse(f"{key} must follow each other: a gap or overlap stands before {more.least}")
+            table.refuse(f"{key} must follow each other: a gap or overlap stands before {more.least}", key)
         if more.factor > less.factor:
-            table.refuse(f"{key}: the factor rises at {more.least} conductors")
+            table.refuse(f"{key}: the factor rises at {more.least} conductors", key)
     if rows and rows[-1].most is not None:
-        table.refuse(f"{key}: the last row must be open, without max")
+        table.refuse(f"{key}: the last row must be open, without max", key)
     return rows
 
 
@@ -116,7 +143,7 @@ def _bundle_row(row: Table) -> BundleRow:
     row.expect(("min", "factor"), ("max",))
     least, most = row.count("min"), row.count("max") if row.has("max") else None
     if most is not None and most < least:
-        row.refuse(f"max {most} is below min {least}")
+        row.refuse(f"max {most} is below min {least}", "max")
     return BundleRow(least, most, _factor(row))
 
 
@@ -139,16 +166,53 @@ def _interrupting_row(row: Table) -> InterruptingRow:
     return InterruptingRow(bound, row.number("main_a"), row.number("branch_a"))
 
 
+_LENGTHS: dict[str, Callable[[float], float]] = {"in": metre_from_inch, "mm": metre_from_millimetre}
+"""The units in which documents print short lengths, as the keys of tables end in them."""
+
+
+def _key(table: Table, name: str, units: Iterable[str]) -> str:
+    """Return the key of a figure in the unit that the table gives it in: open_in, open_mm; else the first."""
+    keys = [f"{name}_{unit}" for unit in units]
+    given = [key for key in keys if table.has(key)]
+    if len(given) > 1:
+        table.refuse(f"{' and '.join(given)} are one figure in two units: keep the document's own", given[1])
+    return given[0] if given else keys[0]
+
+
+def _length_key(table: Table, name: str) -> str:
+    return _key(table, name, _LENGTHS)
+
+
+def _length_m(table: Table, name: str) -> float:
+    key = _length_key(table, name)
+    return _LENGTHS[key.rpartition("_")[2]](table.number(key))
+
+
 def read_minimum_size(table: Table) -> MinimumSize:
-    """Read the smallest gauges."""
-    citation, figures = _cited(table, ("single_awg", "sheathed_awg", "max_out_of_sheath_in"))
+    """Read the smallest sizes: gauges, or areas."""
+    sizes = [_key(table, name, ("awg", "mm2")) for name in ("single", "sheathed")]
+    longer = _length_key(table, "single_longer_than")
+    citation, figures = _cited(table, (*sizes, _length_key(table, "max_out_of_sheath")), (longer,))
+    single, sheathed = (_size(table, key) for key in sizes)
+    if (single.awg is None) is not (sheathed.awg is None):
+        table.refuse("both sizes are gauges, or both are areas", sizes[1])
+    if sheathed.area_mm2 > single.area_mm2:
+        table.refuse(f"{sizes[1]} is larger than {sizes[0]}", sizes[1])
     return MinimumSize(
         citation=citation,
         figures=figures,
-        single_awg=_gauge(table, "single_awg"),
-        sheathed_awg=_gauge(table, "sheathed_awg"),
-        max_out_of_sheath_m=metre_from_inch(table.number("max_out_of_sheath_in")),
+        single=single,
+        sheathed=sheathed,
+        max_out_of_sheath_m=_length_m(table, "max_out_of_sheath"),
+        single_longer_than_m=_length_m(table, "single_longer_than") if table.has(longer) else 0.0,
     )
+
+
+def _size(table: Table, key: str) -> Size:
+    if key.endswith("_awg"):
+        return row_size(_gauge(table, key))
+    area_mm2 = table.number(key)
+    return Size(f"{area_mm2:g} mm2", area_mm2)
 
 
 def read_exemptions(table: Table) -> SizeExemptions:
@@ -161,7 +225,7 @@ def read_exemptions(table: Table) -> SizeExemptions:
             "material_exempt_roles",
             "protection_exempt_roles",
             "electronic_below_a",
-            "pigtail_below_in",
+            _length_key(table, "pigtail_below"),
         ),
     )
     return SizeExemptions(
@@ -172,23 +236,25 @@ def read_exemptions(table: Table) -> SizeExemptions:
         material_exempt_roles=table.names("material_exempt_roles"),
         protection_exempt_roles=table.names("protection_exempt_roles"),
         electronic_below_a=table.number("electronic_below_a"),
-        pigtail_below_m=metre_from_inch(table.number("pigtail_below_in")),
+        pigtail_below_m=_length_m(table, "pigtail_below"),
     )
 
 
 def read_distance(table: Table) -> ProtectionDistance:
     """Read the longest conductors ahead of the first device."""
-    citation, figures = _cited(table, ("open_in", "enclosed_in", "needs_reason"), ("battery_enclosed_in",))
-    open_in, enclosed_in = table.number("open_in"), table.number("enclosed_in")
-    battery_in = table.number("battery_enclosed_in") if table.has("battery_enclosed_in") else None
-    if enclosed_in < open_in:
-        table.refuse("enclosed_in is shorter than open_in")
+    open_key, enclosed_key, battery_key = (
+        _length_key(table, name) for name in ("open", "enclosed", "battery_enclosed")
+    )
+    citation, figures = _cited(table, (open_key, enclosed_key, "needs_reason"), (battery_key,))
+    open_m, enclosed_m = _length_m(table, "open"), _length_m(table, "enclosed")
+    if enclosed_m < open_m:
+        table.refuse(f"{enclosed_key} is shorter than {open_key}", enclosed_key)
     return ProtectionDistance(
         citation=citation,
         figures=figures,
-        open_m=metre_from_inch(open_in),
-        enclosed_m=metre_from_inch(enclosed_in),
-        battery_enclosed_m=None if battery_in is None else metre_from_inch(battery_in),
+        open_m=open_m,
+        enclosed_m=enclosed_m,
+        battery_enclosed_m=_length_m(table, "battery_enclosed") if table.has(battery_key) else None,
         needs_reason=table.flag("needs_reason"),
     )
 
@@ -200,10 +266,10 @@ def read_device_rating(table: Table) -> DeviceRating:
     if table.has("next_standard_up_to_percent"):
         cap = table.number("next_standard_up_to_percent") / 100
         if cap < factor:
-            table.refuse("next_standard_up_to_percent is below ampacity_percent")
+            table.refuse("next_standard_up_to_percent is below ampacity_percent", "next_standard_up_to_percent")
     judges = table.text("judges")
     if judges not in {judged.value for judged in Judged}:
-        table.refuse(f"judges must be sum or largest, not {judges!r}")
+        table.refuse(f"judges must be sum or largest, not {shown(judges)!r}", "judges")
     return DeviceRating(
         citation=citation,
         figures=figures,
@@ -271,16 +337,44 @@ def read_material(table: Table) -> MaterialRule:
     )
 
 
+_K_PER_RESISTIVITY = METRE_PER_FOOT / CIRCULAR_MIL_MM2
+
+
 def read_drop(table: Table) -> DropRule:
-    """Read the voltage-drop groups and the constant."""
-    citation, figures = _cited(table, ("critical_percent", "general_percent", "critical_services", "k_ohm_cmil_per_ft"))
+    """Read the voltage-drop groups and the constant: K, or the resistivity of copper."""
+    constant = "resistivity_ohm_mm2_per_m" if table.has("resistivity_ohm_mm2_per_m") else "k_ohm_cmil_per_ft"
+    citation, figures = _cited(table, ("critical_percent", "general_percent", "critical_services", constant))
+    if table.number("critical_percent") > table.number("general_percent"):
+        table.refuse("critical_percent is above general_percent", "critical_percent")
     return DropRule(
         citation=citation,
         figures=figures,
         critical_fraction=table.number("critical_percent") / 100,
         general_fraction=table.number("general_percent") / 100,
         critical_services=table.names("critical_services"),
-        k_ohm_cmil_per_ft=table.number("k_ohm_cmil_per_ft"),
+        k_ohm_cmil_per_ft=table.number(constant) * (_K_PER_RESISTIVITY if constant.startswith("res") else 1.0),
+    )
+
+
+def read_source_device(table: Table) -> SourceDevice:
+    """Read how far from a charge source its device may stand."""
+    key = _length_key(table, "max_distance")
+    citation, figures = _cited(table, (key, "is_self_limiting_exempt"))
+    return SourceDevice(
+        citation=citation,
+        figures=figures,
+        max_distance_m=_length_m(table, "max_distance"),
+        is_self_limiting_exempt=table.flag("is_self_limiting_exempt"),
+    )
+
+
+def read_supports(table: Table) -> SupportRule:
+    """Read the largest spacing of supports."""
+    names = ("single", "sheathed", "battery")
+    citation, figures = _cited(table, tuple(_length_key(table, name) for name in names))
+    single_m, sheathed_m, battery_m = (_length_m(table, name) for name in names)
+    return SupportRule(
+        citation=citation, figures=figures, single_m=single_m, sheathed_m=sheathed_m, battery_m=battery_m
     )
 
 
@@ -297,12 +391,16 @@ def read_insulation(table: Table) -> InsulationRule:
 
 def read_ignition(table: Table) -> IgnitionRule:
     """Read where parts must be ignition protected."""
-    citation, figures = _cited(table, ("hazards", "open_space_ft"))
+    bulkhead = ("bulkhead_tight_in", "bulkhead_tight_parts_of_height", "bulkhead_gap_in")
+    citation, figures = _cited(table, ("hazards", "open_space_ft", *bulkhead))
     return IgnitionRule(
         citation=citation,
         figures=figures,
         hazards=table.names("hazards"),
         open_space_m=table.number("open_space_ft") * METRE_PER_FOOT,
+        bulkhead_tight_m=metre_from_inch(table.number("bulkhead_tight_in")),
+        bulkhead_tight_parts=table.number("bulkhead_tight_parts_of_height"),
+        bulkhead_gap_m=metre_from_inch(table.number("bulkhead_gap_in")),
     )
 
 
@@ -325,7 +423,7 @@ def _cited(
 def _factor(row: Table) -> float:
     factor = row.number("factor")
     if factor > 1:
-        row.refuse(f"a factor of {factor:g} would raise the ampacity")
+        row.refuse(f"a factor of {factor:g} would raise the ampacity", "factor")
     return factor
 
 
@@ -338,5 +436,5 @@ def _gauge(table: Table, key: str) -> str:
 def _expect_gauge(table: Table, awg: str) -> None:
     try:
         awg_number(awg)
-    except ValueError as fault:
-        table.refuse(str(fault))
+    except ValueError:
+        table.refuse(f"{shown(awg)!r} is no wire gauge", awg if table.has(awg) else "")

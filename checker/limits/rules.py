@@ -8,9 +8,11 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from enum import Enum
+from functools import cache
 
 from checker.limits.citation import Citation
-from checker.units import Size, awg_area_mm2
+from checker.reading.quantity import read_size
+from checker.units import Size, awg_size
 
 # Ampacities are products of decimal factors: 0.7 * 50 may miss 35 by one part in 1e16, and
 # the next standard size above "34.999..." must not be judged against that hair.
@@ -38,19 +40,19 @@ class Applicability(Rule):
 
 @dataclass(frozen=True, slots=True)
 class AmpacityRow:
-    """One cell of an ampacity table: the figure, and the column and gauge it was read at."""
+    """One cell of an ampacity table: the figure, and the column and size it was read at ("6 AWG", "16 mm2")."""
 
     ampacity_a: float
     column_c: float
-    awg: str
+    size: str
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class AmpacityTable(Rule):
-    """Allowable current by gauge and insulation temperature.
+    """Allowable current by conductor size and insulation temperature.
 
-    `rows` run from the smallest gauge to the largest; each holds amperes in the order of
-    `columns_c`, which rise.
+    `rows` run from the smallest size to the largest, all of them gauges or all of them metric;
+    each holds amperes in the order of `columns_c`, which rise.
     """
 
     ambient_c: float
@@ -59,32 +61,59 @@ class AmpacityTable(Rule):
 
     @property
     def sizes(self) -> tuple[str, ...]:
-        """Return the gauge names of the table, small to large."""
-        return tuple(awg for awg, _ in self.rows)
+        """Return the names of the table's rows, small to large: gauges as "6", metric sizes as "16 mm2"."""
+        return tuple(name for name, _ in self.rows)
 
-    def at(self, size: Size, insulation_c: float, *, next_smaller_awg: bool) -> AmpacityRow | None:
+    @property
+    def is_metric(self) -> bool:
+        """Tell whether the rows are metric sizes."""
+        return bool(self.rows) and is_metric(self.rows[0][0])
+
+    @property
+    def conductor_sizes(self) -> tuple[Size, ...]:
+        """Return the sizes of the table, small to large."""
+        return tuple(row_size(name) for name in self.sizes)
+
+    def at(self, size: Size, insulation_c: float, *, next_smaller: bool) -> AmpacityRow | None:
         """Return the cell for a conductor, or None where the table has none.
 
         Args:
-            size: Gauge or metric size. A gauge that is not in the table has no figure.
+            size: Gauge or metric size. One that is not in the table has no figure.
             insulation_c: Between two columns the lower one governs; below all of them, none.
-            next_smaller_awg: The yard lets the next smaller gauge speak for a metric size.
+            next_smaller: The yard lets the next smaller row speak for a size of the other kind:
+                a gauge for a metric size, a metric size for a gauge.
         """
         columns = [index for index, column_c in enumerate(self.columns_c) if column_c <= insulation_c]
         if not columns:
             return None
-        row = self._row(size, next_smaller_awg=next_smaller_awg)
+        row = self._row(size, next_smaller=next_smaller)
         if row is None:
             return None
-        awg, amperes = row
-        return AmpacityRow(amperes[columns[-1]], self.columns_c[columns[-1]], awg)
+        name, amperes = row
+        return AmpacityRow(amperes[columns[-1]], self.columns_c[columns[-1]], row_size(name).text)
 
-    def _row(self, size: Size, *, next_smaller_awg: bool) -> tuple[str, tuple[float, ...]] | None:
-        if size.awg is not None:
-            return next((row for row in self.rows if row[0] == size.awg), None)
-        if not next_smaller_awg:
+    def _row(self, size: Size, *, next_smaller: bool) -> tuple[str, tuple[float, ...]] | None:
+        if (size.awg is None) is self.is_metric:
+            # By its name, not by its copper: a cable's real area is judged apart.
+            return next((row for row in self.rows if row[0] == (size.awg or size.text)), None)
+        if not next_smaller:
             return None
-        return next((row for row in reversed(self.rows) if awg_area_mm2(row[0]) <= size.area_mm2), None)
+        return next((row for row in reversed(self.rows) if row_size(row[0]).area_mm2 <= size.area_mm2), None)
+
+
+def is_metric(row: str) -> bool:
+    """Tell whether a row of a table is named by an area: "2.5 mm2"; else it is a gauge: "14"."""
+    return row.endswith("mm2")
+
+
+@cache
+def row_size(row: str) -> Size:
+    """Return the size of a table's row.
+
+    Raises:
+        ValueError: If the name is neither a gauge nor an area above 0.
+    """
+    return read_size(row) if is_metric(row) else awg_size(row)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -152,11 +181,26 @@ def _bundle_factor(rows: tuple[BundleRow, ...], count: int) -> float:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class MinimumSize(Rule):
-    """Smallest gauge of a conductor, alone and in a sheath, and how far it may leave the sheath."""
+    """Smallest size of a conductor, alone and in a sheath, and how far it may leave the sheath.
 
-    single_awg: str
-    sheathed_awg: str
+    A single conductor no longer than `single_longer_than_m` may have any size.
+    """
+
+    single: Size
+    sheathed: Size
     max_out_of_sheath_m: float
+    single_longer_than_m: float = 0.0
+
+    @property
+    def is_metric(self) -> bool:
+        """Tell whether the rule is printed in areas, with which any size can be compared."""
+        return self.single.awg is None
+
+    def least(self, *, is_in_sheath: bool, length_m: float) -> Size | None:
+        """Return the smallest size allowed to a conductor, None where the set asks for none."""
+        if is_in_sheath:
+            return self.sheathed
+        return None if length_m <= self.single_longer_than_m * (1 + _HAIR) else self.single
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -256,13 +300,18 @@ class MaterialRule(Rule):
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class IgnitionRule(Rule):
-    """Where a part must be ignition protected, and how wide an open space isolates it.
+    """Where a part must be ignition protected, and what isolates it from petrol.
 
-    `hazards` are the zone facts that call for it.
+    `hazards` are the zone facts that call for it; `open_space_m` is how wide an open space
+    isolates. A bulkhead holds water up to `bulkhead_tight_m` or its height over
+    `bulkhead_tight_parts`, whichever is less; above that its gaps are no wider than `bulkhead_gap_m`.
     """
 
     hazards: tuple[str, ...]
     open_space_m: float
+    bulkhead_tight_m: float
+    bulkhead_tight_parts: float
+    bulkhead_gap_m: float
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -275,6 +324,23 @@ class SelfLimitingSource(Rule):
 
     is_exempt: bool
     largest_output_factor: float | None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class SourceDevice(Rule):
+    """Where a charge source is protected: inside it, or by a device within this distance of it."""
+
+    max_distance_m: float
+    is_self_limiting_exempt: bool
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class SupportRule(Rule):
+    """Largest spacing of supports: of unsheathed conductors, of sheathed ones, and of those from a battery."""
+
+    single_m: float
+    sheathed_m: float
+    battery_m: float
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -54,7 +54,7 @@ def curve_of(boat: Boat, device: Device) -> Curve:
     band = part.band
     if band is None:
         return Curve(part.rating_a, (), ())
-    factor = band.engine_space_factor if boat.zones[device.zone].is_engine_space else 1.0
+    factor = (band.engine_space_factor or 1.0) if boat.zones[device.zone].is_engine_space else 1.0
     return Curve(
         part.rating_a * factor,
         tuple((p.multiple, p.earliest_s) for p in band.points),

@@ -153,7 +153,7 @@ def build_network(boat: Boat) -> Network:
 
     for conductor in boat.conductors.values():
         kind = EdgeKind.BOND if conductor.is_bond else EdgeKind.CONDUCTOR
-        facts = {"length_m": conductor.length_m, "area_mm2": conductor.size.area_mm2}
+        facts = {"length_m": conductor.length_m, "area_mm2": conductor.copper.area_mm2}
         join(kind, conductor.start, conductor.end, conductor.id, **facts)
     for device in boat.devices.values():
         name = device.id

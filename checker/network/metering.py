@@ -20,13 +20,15 @@ from checker.network.walk import neighbours, path_between, path_words
 class Unmetered:
     """Name a post that stays joined to the bank with the shunt out, what it is, and by which path.
 
-    `last` is the conductor by which the post's device lands there: the one to move.
+    `last` is the conductor by which the post's device lands there; `landing` is the first part of
+    the path that does not belong between bank and shunt: the one to move.
     """
 
     device: str
     what: str
     last: str
     path: tuple[str, ...]
+    landing: str
 
 
 @dataclass(frozen=True, slots=True)
@@ -35,7 +37,8 @@ class Metering:
 
     `is_beside_bank`, `is_turned`: which stud the bank's own links reach; `other_bank` is another
     bank that the bank stud faces, if it does not face its own. `bypass` is a path
-    from stud to stud beside the shunt, if there is one; then nothing else is named.
+    from stud to stud beside the shunt, if there is one; then nothing else is named. `own_parts`
+    are what leads from the bank stud to the bank.
     """
 
     shunt: str
@@ -46,6 +49,7 @@ class Metering:
     bypass: tuple[str, ...]
     bypass_parts: tuple[str, ...]
     unmetered: tuple[Unmetered, ...]
+    own_parts: frozenset[str] = frozenset()
 
 
 def study_metering(boat: Boat, network: Network, state: SwitchState) -> tuple[Metering, ...]:
@@ -65,17 +69,25 @@ def _metering(boat: Boat, network: Network, state: SwitchState, shunt: str, bank
     bypass = path_between(at, bat, [sys])
     reaches_bat = path_between(at, bat, bank_posts) is not None
     reaches_sys = path_between(at, sys, bank_posts) is not None
+    own = _own_parts(at, bat, sys, bank_posts)
     if bypass is not None:
         words, parts = path_words(network, bat, bypass), tuple(edge.part for edge in bypass)
-        return Metering(shunt, state, reaches_bat or reaches_sys, False, "", words, parts, ())
+        return Metering(shunt, state, reaches_bat or reaches_sys, False, "", words, parts, (), own)
     others = {post: b.bank for b in network.batteries if b.bank != bank for post in (b.pos, b.neg)}
-    found = _unmetered(boat, network, at, bat, shunt, bank)
+    found = _unmetered(boat, network, at, bat, shunt, bank, own)
     # What draws and charges tells the boat's side: turned round, the bank stud has it; beside the
     # wrong bank, it does not.
     faced = "" if reaches_bat or found else _faced(at, bat, others)
     turned = reaches_sys and not reaches_bat and not faced
     found = () if turned or faced else found
-    return Metering(shunt, state, reaches_bat or reaches_sys, turned, faced, (), (), found)
+    return Metering(shunt, state, reaches_bat or reaches_sys, turned, faced, (), (), found, own)
+
+
+def _own_parts(at: list[list[Edge]], bat: int, sys: int, bank_posts: set[int]) -> frozenset[str]:
+    """Return what leads from the bank stud to each post of the bank by a shortest way that does not meet the boat."""
+    apart = [[edge for edge in edges if sys not in (edge.a, edge.b)] for edges in at]
+    ways = (path_between(apart, bat, [post]) for post in sorted(bank_posts))
+    return frozenset(edge.part for way in ways for edge in way or ())
 
 
 def _faced(at: list[list[Edge]], bat: int, others: dict[int, str]) -> str:
@@ -92,7 +104,7 @@ def _is_mount(edge: Edge) -> bool:
 
 
 def _unmetered(
-    boat: Boat, network: Network, at: list[list[Edge]], bat: int, shunt: str, bank: str
+    boat: Boat, network: Network, at: list[list[Edge]], bat: int, shunt: str, bank: str, own: frozenset[str]
 ) -> tuple[Unmetered, ...]:
     """Name the loads, sources, metal parts and shields on the bank's side of the shunt."""
     found: list[Unmetered] = []
@@ -106,13 +118,20 @@ def _unmetered(
         if landed:
             path = path_between(at, bat, landed) or []
             last = path[-1].part if path else device.id
-            found.append(Unmetered(device.id, what, last, path_words(network, bat, path)))
+            landing = _landing(path, own, last)
+            found.append(Unmetered(device.id, what, last, path_words(network, bat, path), landing))
     for shield in boat.shields or ():
         landed = [network.index[post] for post in shield.joins or () if network.index[post] in joined]
         if landed and not _is_of_known_device(boat, network, landed, found):
             path = path_between(at, bat, landed) or []
-            found.append(Unmetered(shield.id, "shield", shield.id, path_words(network, bat, path)))
+            words = path_words(network, bat, path)
+            found.append(Unmetered(shield.id, "shield", shield.id, words, _landing(path, own, shield.id)))
     return tuple(found)
+
+
+def _landing(path: list[Edge], own: frozenset[str], last: str) -> str:
+    """Return the first part of a path that does not belong between bank and shunt."""
+    return next((edge.part for edge in path if edge.part not in own), last)
 
 
 def _is_of_known_device(boat: Boat, network: Network, posts: list[int], found: list[Unmetered]) -> bool:

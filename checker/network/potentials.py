@@ -94,8 +94,11 @@ def _potentials(network: Network, state: SwitchState) -> Potentials:
             placed.append(battery)
     _tie_over_diodes(network, net, islands)
     by_batteries = {number: islands.root(number)[0] for number in set(net)}
+    anchored = {by_batteries[net[battery.pos]] for battery in network.batteries}
     for source in _held_last(network):
-        if islands.between(net[source.out], net[source.back]) is None:
+        # One whose output a battery holds and whose return nothing holds has lost its return: it fixes nothing.
+        has_lost = by_batteries[net[source.out]] in anchored and by_batteries[net[source.back]] not in anchored
+        if not has_lost and islands.between(net[source.out], net[source.back]) is None:
             islands.tie(net[source.out], net[source.back], source.voltage_v)
     roots = {number: islands.root(number) for number in set(net)}
     return Potentials(

@@ -7,8 +7,10 @@ from __future__ import annotations
 
 import json
 from collections.abc import Mapping
+from dataclasses import asdict
 from typing import Any
 
+from checker.checks.check import HouseChange
 from checker.finding import Card, Outcome, Verdict
 from checker.network.ladder import Rung
 from checker.result.gather import fingerprint
@@ -25,6 +27,7 @@ def json_report(result: FleetResult, cards: Mapping[str, Card]) -> str:
         "yard": result.yard,
         "clean": result.is_clean,
         "open_errors": result.open_errors,
+        "house_rules": [_Line(_house(change)) for change in result.house],
         "checks": [_Line(_card(card)) for card in cards.values()],
         "subjects": [_subject(subject) for subject in result.subjects],
         "studies": [_study(study) for study in result.studies],
@@ -44,7 +47,23 @@ def _card(card: Card) -> dict[str, Any]:
 
 
 def _set_use(use: SetUse) -> _Line:
-    return _Line(id=use.id, title=use.title, why=use.why, figures_from_memory=use.from_memory)
+    facts: dict[str, Any] = {
+        "id": use.id, "title": use.title, "why": use.why, "figures_from_memory": use.from_memory,
+    }  # fmt: skip
+    if use.entered:
+        facts["entered"] = [asdict(table) for table in use.entered]
+    if use.not_entered:
+        facts["not_entered"] = list(use.not_entered)
+    return _Line(facts)
+
+
+def _house(change: HouseChange) -> dict[str, Any]:
+    """Return one of the yard's own rules."""
+    return {
+        "kind": change.kind, "what": change.what, "limit_set": change.limit_set, "old": change.old, "new": change.new,
+        "loosened": change.is_loosened, "clause": change.clause, "basis": change.basis.value, "reason": change.reason,
+        "file": change.at.file, "line": change.at.line, "column": change.at.column,
+    }  # fmt: skip
 
 
 def _counts(subject: SubjectResult) -> _Line:
@@ -154,6 +173,10 @@ def _outcome(outcome: Outcome) -> dict[str, Any]:
         facts["also_at"] = [str(span) for span in outcome.also_at]
     if outcome.path:
         facts["path"] = list(outcome.path)
+    if outcome.house:
+        facts["house_rules"] = list(outcome.house)
+    if outcome.rests_on:
+        facts["rests_on"] = outcome.rests_on
     if outcome.verdict is not Verdict.NOT_ASSESSED:
         facts["fingerprint"] = fingerprint(outcome)
     return facts

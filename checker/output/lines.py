@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 
-from checker.checks.check import is_thin
+from checker.checks.check import HouseChange
 from checker.checks.words import measured
 from checker.finding import Card, Outcome, Verdict
 from checker.reading.words import flat
@@ -20,7 +20,7 @@ def headroom_words(outcome: Outcome) -> str:
     if fraction == float("-inf"):
         return ""
     words = f"headroom {fraction * 100:.1f} %"
-    return words + (", thin" if is_thin(outcome.measure) else "")
+    return words + (", thin" if outcome.is_thin else "")
 
 
 def measure_words(outcome: Outcome) -> str:
@@ -72,8 +72,9 @@ def finding_lines(
     for remedy in dict.fromkeys(o.remedy for o in outcomes if o.remedy):
         yield f"  remedy: {flat(remedy)}"
     yield f"  why: {card.why}"
-    sets = " and ".join(outcome.limit_set for outcome in outcomes if outcome.limit_set)
-    yield f"  rests on: {sets}{'; ' if sets else ''}{card.rests_on}"
+    yield from _rests_on(outcomes, card)
+    for rule in dict.fromkeys(rule for outcome in outcomes for rule in outcome.house):
+        yield f"  yard's own rule: {flat(rule)}"
     if first.state:
         yield f"  state: {flat(first.state)}"
     if first.path:
@@ -84,6 +85,17 @@ def finding_lines(
             yield f"  fingerprint: {fingerprint(outcome)}{under}"
     for outcome in outcomes:
         yield from _acceptance_lines(acceptances.get(fingerprint(outcome)))
+
+
+def _rests_on(outcomes: Sequence[Outcome], card: Card) -> Iterator[str]:
+    """Print the limit sets of a fault, and the clause: the card's, or that of the table which the yard entered."""
+    by_card = [outcome.limit_set for outcome in outcomes if not outcome.rests_on]
+    if by_card:
+        sets = " and ".join(filter(None, by_card))
+        yield f"  rests on: {sets}{'; ' if sets else ''}{card.rests_on}"
+    for outcome in outcomes:
+        if outcome.rests_on:
+            yield f"  rests on: {outcome.limit_set}; {flat(outcome.rests_on)}"
 
 
 def _limit_lines(outcome: Outcome, is_one_of_several: bool) -> Iterator[str]:
@@ -106,6 +118,38 @@ def shown_path(path: Iterable[str]) -> str:
 
 
 def set_lines(sets: Iterable[SetUse]) -> Iterator[str]:
-    """Print the limit sets that a boat is judged by, and why."""
+    """Print the limit sets that a boat is judged by, and why, with the tables that the yard enters."""
     for use in sets:
         yield f"judged by {use.id}: {use.why}; {use.from_memory} tables or figures of it are from memory"
+        for table in use.entered:
+            cited = ", ".join(filter(None, (table.document, table.edition, table.clause, table.page)))
+            yield f"table {table.table} of {use.id}: entered by the yard from {flat(cited)} ({flat(table.file)})"
+        if use.not_entered:
+            yield f"tables of {use.id} not entered: {', '.join(use.not_entered)}; what needs them is not assessed"
+
+
+def house_lines(changes: Sequence[HouseChange]) -> Iterator[str]:
+    """Print the yard's own rules, a change a line: what it loosens first, and what departs from a law before that."""
+    loosened = [change for change in changes if change.is_loosened]
+    yield "loosened by the yard" if loosened else "loosened by the yard: none"
+    yield from map(_house_line, loosened)
+    tightened = [change for change in changes if not change.is_loosened]
+    if tightened:
+        yield "tightened by the yard"
+        yield from map(_house_line, tightened)
+
+
+def _house_line(change: HouseChange) -> str:
+    law = "LAW: " if change.is_loosened and change.is_of_law else ""
+    reason = f"; reason: {flat(change.reason)}" if change.reason else ""
+    return f"  {law}{flat(change.words)} ({flat(change.clause)}){reason}"
+
+
+def loosened_words(changes: Sequence[HouseChange]) -> str:
+    """Tell in a verdict how much the yard has loosened, or return an empty text."""
+    loosened = [change for change in changes if change.is_loosened]
+    if not loosened:
+        return ""
+    of_law = sum(change.is_of_law for change in loosened)
+    law = f", {of_law} of LAW" if of_law else ""
+    return f"{len(loosened)} {'rule' if len(loosened) == 1 else 'rules'} loosened by the yard{law}"

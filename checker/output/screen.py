@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 
 from checker.finding import Card, Level, Verdict
-from checker.output.lines import finding_lines
+from checker.output.lines import finding_lines, house_lines, loosened_words
 from checker.output.text import CAUTION, fleet_totals, fleet_verdict, grouped, summary_lines
 from checker.result.model import FleetResult
 
@@ -25,6 +25,9 @@ def _lines(result: FleetResult, cards: Mapping[str, Card]) -> Iterator[str]:
             yield from finding_lines(block.outcomes, cards[block.outcomes[0].check], block.who, block.accepted)
             yield ""
     yield from _not_assessed(result, cards)
+    if loosened_words(result.house):
+        yield from house_lines(result.house)
+        yield ""
     yield from fleet_totals(result)
     yield ""
     yield from summary_lines(result)
@@ -49,7 +52,7 @@ def _painted(line: str, colour: bool) -> str:
         return line
     for start, paint in (
         (f"{Level.ERROR.value}:", _RED), (f"{Level.WARNING.value}:", _YELLOW), ("accepted ", _YELLOW),
-        ("not assessed:", _YELLOW), ("verdict:", _BOLD),
+        ("not assessed:", _YELLOW), ("verdict:", _BOLD), ("loosened by the yard", _BOLD), ("  LAW:", _RED),
     ):  # fmt: skip
         if line.startswith(start):
             return f"{paint}{line}{_PLAIN}"

@@ -10,7 +10,7 @@ from dataclasses import dataclass
 from checker.checks.words import ampere, measured, seconds
 from checker.finding import EQUAL_FRACTION, Card, Outcome, Verdict
 from checker.network.ladder import Rung
-from checker.output.lines import finding_lines, measure_words, same_fault, set_lines
+from checker.output.lines import finding_lines, house_lines, loosened_words, measure_words, same_fault, set_lines
 from checker.reading.words import flat
 from checker.result.gather import fingerprint, natural
 from checker.result.model import Acceptance, FleetResult, SubjectResult
@@ -25,8 +25,10 @@ EMPTY: Mapping[str, Outcome] = {}
 
 def verdict_words(subject: SubjectResult) -> str:
     """Tell how a hull or option set came out, in a few words."""
+    loosened = loosened_words(subject.house)
+    under = f"; {loosened}" if loosened else ""
     if subject.open_errors:
-        return f"FAILS with {count(subject.open_errors, 'open error')}"
+        return f"FAILS with {count(subject.open_errors, 'open error')}{under}"
     extras = [
         count(n, word)
         for n, word in (
@@ -37,7 +39,7 @@ def verdict_words(subject: SubjectResult) -> str:
         )
         if n
     ]
-    return "passes" + (f" with {', '.join(extras)}" if extras else "")
+    return "passes" + (f" with {', '.join(extras)}" if extras else "") + under
 
 
 def count(number: int, word: str) -> str:
@@ -121,6 +123,7 @@ def _head(subject: SubjectResult) -> Iterator[str]:
     yield f"status: {subject.status}"
     yield f"same wiring: {', '.join(subject.alike) or 'no other'}"
     yield from set_lines(subject.sets)
+    yield from house_lines(subject.house)
     yield f"verdict: {verdict_words(subject)}"
     yield f"caution: {CAUTION}"
 
@@ -180,6 +183,7 @@ def fleet_report(result: FleetResult, cards: Cards) -> str:
         f"yard: {flat(result.yard)}",
         f"fairloom: {result.tool_version}",
         f"verdict: {fleet_verdict(result)}",
+        *house_lines(result.house),
         f"caution: {CAUTION}",
         "",
         *fleet_totals(result),
@@ -206,6 +210,8 @@ def fleet_verdict(result: FleetResult) -> str:
         words[0] += f" ({', '.join(failing)})"
     if sets:
         words.append(f"{count(len(sets), 'option set')} with open errors ({', '.join(sets)})")
+    if loosened := loosened_words(result.house):
+        words.append(loosened)
     if result.file_outcomes:
         words.append(f"{count(len(result.file_outcomes), 'fault')} in the yard's files")
     if result.unstudied:

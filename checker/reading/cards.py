@@ -29,7 +29,7 @@ FILE_CARDS: tuple[Card, ...] = (
     _card("bad-value", "Every value can be understood",
           "a value that two programs read differently is two boats",
           "A quantity without unit, with an unknown unit or a decimal comma; text where a number is due; an id that "
-          "is not plain; an empty value; a number that starts with a zero; infinity."),
+          "is not plain; an empty value; a number that starts with a zero; infinity.", ("CON-17",)),
     _card("unknown-reference", "Every id that is named exists",
           "a conductor to a post that is not there is a conductor to nowhere",
           "Parts, zones, ways, posts, devices, circuits, options, states and classes. What an option removes must not "

@@ -18,7 +18,7 @@ from checker.reading.document import Document, Fault
 from checker.reading.quantity import Dimension, QuantityError, read_number, read_size
 from checker.reading.words import nearest, shown
 
-KINDS = ("yard", "parts", "class", "option", "hull", "waivers")
+KINDS = ("yard", "parts", "class", "option", "hull", "waivers", "limits")
 """The kinds of document that a yard writes."""
 
 
@@ -181,7 +181,7 @@ def _bad_value(document: Document, path: Path, error: Any) -> Fault:
         fault = _bad_quantity(written, Dimension(schema["x-quantity"]), shown(str(path[-1])), at)
         if fault is not None:
             return fault
-    choices = [str(choice) for choice in schema.get("enum", ())]
+    choices = [str(choice) for choice in schema.get("enum", ()) if choice is not None]
     if choices and written is not None and value is not None:
         meant = nearest(written, choices)
         remedy = f"did you mean “{meant}”?" if meant else f"one of: {', '.join(choices)}"

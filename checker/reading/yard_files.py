@@ -26,8 +26,9 @@ _PLACES = (
     ("option", re.compile(r"classes/([^/]+)/options/[^/]+\.yaml\Z")),
     ("class", re.compile(r"classes/([^/]+)/[^/]+\.yaml\Z")),
     ("hull", re.compile(r"hulls/[^/]+\.yaml\Z")),
+    ("limits", re.compile(r"limits/([^/]+)/[^/]+\.yaml\Z")),
 )
-_FOLDERS = ("parts", "classes", "hulls")
+_FOLDERS = ("parts", "classes", "hulls", "limits")
 _PLAIN_ID = re.compile(r"[A-Za-z0-9][A-Za-z0-9_-]{0,39}\Z")
 
 
@@ -45,6 +46,7 @@ class YardFiles:
     options: dict[str, list[Document]] = field(default_factory=dict)
     hulls: list[Document] = field(default_factory=list)
     waivers: Document | None = None
+    limits: list[Document] = field(default_factory=list)
     faults: list[Fault] = field(default_factory=list)
     bytes_read: int = 0
 
@@ -133,7 +135,7 @@ def _misplaced(name: str) -> Fault:
         if meant
         else (
             "a yard keeps yard.yaml, waivers.yaml, parts/*.yaml, classes/ID/*.yaml, classes/ID/options/*.yaml, "
-            "hulls/*.yaml"
+            "hulls/*.yaml, limits/SET/*.yaml"
         )
     )
     return Fault("unreadable-file", Span(name, 1, 1), "no kind of document is kept at this place", remedy)
@@ -168,5 +170,7 @@ def _file_in(files: YardFiles, kind: str, owner: str, document: Document) -> Non
             files.classes.setdefault(owner, []).append(document)
         case "option":
             files.options.setdefault(owner, []).append(document)
+        case "limits":
+            files.limits.append(document)
         case _:
             files.hulls.append(document)

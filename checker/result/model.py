@@ -5,19 +5,38 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
 
+from checker.checks.check import HouseChange
 from checker.finding import Level, Outcome, Span, Verdict
 from checker.network.ladder import Rung
 
 
 @dataclass(frozen=True, slots=True)
+class EnteredTable:
+    """Tell a table of a limit set that the yard has entered, where it was read, and the yard's file."""
+
+    table: str
+    document: str
+    clause: str
+    edition: str
+    page: str
+    basis: str
+    file: str
+
+
+@dataclass(frozen=True, slots=True)
 class SetUse:
-    """Tell a limit set that a boat is judged by, why, and how many of its figures are from memory."""
+    """Tell a limit set that a boat is judged by, why, and how many of its figures are from memory.
+
+    `entered` are the tables that the yard has entered, `not_entered` those it has yet to enter.
+    """
 
     id: str
     title: str
     why: str
     from_memory: int
     caution: str
+    entered: tuple[EnteredTable, ...] = ()
+    not_entered: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,7 +74,8 @@ class SubjectResult:
 
     `news` are the study's with waivers applied and what is found of this subject alone, `own`,
     in report order; `passes` and `thin` are the study's, shared by all alike subjects.
-    `alike` are the other subjects with the same content.
+    `alike` are the other subjects with the same content, `house` the yard's own rules that bear
+    on it.
     """
 
     id: str
@@ -77,6 +97,7 @@ class SubjectResult:
     ladder: tuple[Rung, ...]
     tightest: Mapping[str, Outcome]
     accepted: dict[str, Acceptance]
+    house: tuple[HouseChange, ...] = ()
 
     @property
     def outcomes(self) -> tuple[Outcome, ...]:
@@ -103,6 +124,7 @@ class FleetResult:
     studies: tuple[Study, ...]
     file_outcomes: tuple[Outcome, ...]
     unstudied: tuple[str, ...]
+    house: tuple[HouseChange, ...] = ()
 
     @property
     def open_errors(self) -> int:

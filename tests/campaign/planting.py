@@ -15,7 +15,9 @@ must stay silent.
 from __future__ import annotations
 
 import hashlib
+import importlib
 import json
+import pkgutil
 import tempfile
 from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
@@ -33,6 +35,10 @@ ROOT = Path(__file__).resolve().parents[2]
 Row = dict[str, Any]
 Finds = tuple[str, str]
 """Check and part."""
+ANYTHING = "*"
+"""Stands in `follows` for every check: of a boat with a shorted battery nothing else can be said."""
+OWN_FILE = "the hull's file"
+"""The part of a fault of the hull's own file, whatever number the hull gets."""
 
 
 @dataclass(frozen=True)
@@ -42,8 +48,12 @@ class Plant:
     `finds` are the check and part of what must be found, `line` a text that the line pointed at
     must hold, `state` a text that the state named must hold. `follows` are checks that may
     speak as well, since what they find follows physically; say why beside each. `parts` are new
-    parts; `options` the options of the hull. `yard` are further files, or changed ones, and
-    `faulty_file` says that the fault is one of the yard's files, so that nothing is studied.
+    parts; `options` the options of the hull.
+
+    A fault of the fleet is planted by whole `files` beside those of the class, without a change:
+    hulls, options, waivers. Such a plant has a yard of its own, and all that is found there
+    counts; `on` is then a text that the id of every hull or option set must hold that has what
+    must be found.
     """
 
     change: Row
@@ -53,6 +63,8 @@ class Plant:
     follows: Sequence[str] = ()
     parts: Mapping[str, Row] = field(default_factory=dict)
     options: Sequence[str] = ()
+    files: Mapping[str, str] = field(default_factory=dict)
+    on: str = ""
 
 
 def at(*steps: Any) -> Row:
@@ -185,6 +197,13 @@ def _register(into: dict[str, list[Planter]], ids: Sequence[str]) -> Callable[[P
     return keep
 
 
+def load_planters() -> None:
+    """Import every module of planters, so that FAULTS and TRAPS are whole."""
+    for name in sorted(m.name for m in pkgutil.iter_modules([str(Path(__file__).parent)])):
+        if name.startswith("plants_"):
+            importlib.import_module(f"tests.campaign.{name}")
+
+
 # --- planting and judging
 
 
@@ -195,6 +214,8 @@ class Harvest:
     plant: Plant
     findings: tuple[tuple[Outcome, str], ...]
     hull_is_studied: bool
+    subjects: tuple[tuple[Finds, str], ...] = ()
+    """Of a fault of the fleet: each check and part that was found, with the hull or option set."""
 
     @property
     def missing(self) -> list[Finds]:
@@ -213,12 +234,18 @@ class Harvest:
                 told.append(f"{outcome.check} at {outcome.at}: {line!r}")
             if self.plant.state not in outcome.state:
                 told.append(f"{outcome.check} in state {outcome.state!r}")
+        wanted = [tuple(one) for one in self.plant.finds]
+        told += [
+            f"{found[0]} on {name}" for found, name in self.subjects if found in wanted and self.plant.on not in name
+        ]
         return told
 
     @property
     def extra(self) -> list[str]:
         """Return what was found and neither was planted nor follows."""
         wanted = {tuple(one) for one in self.plant.finds}
+        if ANYTHING in self.plant.follows:
+            return []
         return [
             f"{outcome.check} {outcome.part}: {outcome.fault}"
             for outcome, _ in self.findings
@@ -231,14 +258,63 @@ class Harvest:
         return not (self.missing or self.misplaced or self.extra)
 
     def __str__(self) -> str:
-        plant = f"plant {self.plant.change} {dict(self.plant.parts) or ''} {list(self.plant.options) or ''}"
-        rows = [f"missing {one}" for one in self.missing]
-        rows += [f"misplaced {one}" for one in self.misplaced] + [f"extra {one}" for one in self.extra]
-        return "\n  ".join([plant, *rows])
+        """Tell what was planted as the author of a yard would write it, and what came of it, one fact a line."""
+        plant = self.plant
+        rows = ["planted:", *_indented({"parts": dict(plant.parts)} if plant.parts else {})]
+        rows += _indented({"options": list(plant.options)} if plant.options else {}) + _indented(plant.change)
+        for name, text in plant.files.items():
+            rows += [f"    {name}:", *(f"      {line}" for line in text.splitlines())]
+        rows += [f"  missing: {check} at {part}" for check, part in self.missing]
+        rows += [f"  misplaced: {one}" for one in self.misplaced] + [f"  extra: {one}" for one in self.extra]
+        if self.missing:
+            rows += [f"  found: {outcome.check} at {outcome.part}: {outcome.fault}" for outcome, _ in self.findings]
+        return "\n  ".join(rows)
+
+
+def _indented(data: Row) -> list[str]:
+    return [f"    {line}" for line in _dump(data).splitlines()] if data else []
 
 
 def harvest(design: Design, plants: Sequence[Plant], *, workers: int = 1) -> list[Harvest]:
-    """Plant each on a hull of its own, check them all in one run, and return what was found of each."""
+    """Plant each on a hull of its own, check them all in one run, and return what was found of each.
+
+    A fault of the fleet is checked in a run of its own.
+    """
+    on_hulls = [plant for plant in plants if not plant.files]
+    found = iter(_harvest_of_hulls(design, on_hulls, workers) if on_hulls else ())
+    return [_harvest_of_yard(design, plant) if plant.files else next(found) for plant in plants]
+
+
+def _harvest_of_yard(design: Design, plant: Plant) -> Harvest:
+    files = {**design.files, **plant.files}
+    if plant.parts:
+        files["parts/planted.yaml"] = _dump({"parts": dict(plant.parts)})
+    with tempfile.TemporaryDirectory() as name:
+        _write(Path(name), files)
+        result = check_fleet(Path(name), today=TODAY)
+    lines = {path: text.splitlines() for path, text in files.items()}
+    outcomes: dict[tuple[object, ...], Outcome] = {}
+    subjects: list[tuple[Finds, str]] = []
+    for outcome in result.file_outcomes:
+        outcomes.setdefault((outcome.check, outcome.part, outcome.at, outcome.limit_set), outcome)
+    for subject in result.subjects:
+        for outcome in subject.news:
+            if outcome.verdict is Verdict.FINDING:
+                outcomes.setdefault((outcome.check, outcome.part, outcome.at, outcome.limit_set), outcome)
+                subjects.append(((outcome.check, outcome.part), subject.id))
+    told = [
+        (o, _line(lines, o)) for o in outcomes.values() if o.verdict is Verdict.FINDING and o.check != "not-studied"
+    ]
+    return Harvest(plant, tuple(told), bool(result.subjects), tuple(subjects) if plant.on else ())
+
+
+def _write(folder: Path, files: Mapping[str, str]) -> None:
+    for path, text in files.items():
+        (folder / path).parent.mkdir(parents=True, exist_ok=True)
+        (folder / path).write_text(text, encoding="utf-8")
+
+
+def _harvest_of_hulls(design: Design, plants: Sequence[Plant], workers: int) -> list[Harvest]:
     with tempfile.TemporaryDirectory() as name:
         folder = Path(name)
         files = dict(design.files)
@@ -247,16 +323,16 @@ def harvest(design: Design, plants: Sequence[Plant], *, workers: int = 1) -> lis
             files["parts/planted.yaml"] = _dump({"parts": parts})
         for number, plant in enumerate(plants):
             files[f"hulls/seed-{number}.yaml"] = _dump(_hull(design, number, plant))
-        for path, text in files.items():
-            (folder / path).parent.mkdir(parents=True, exist_ok=True)
-            (folder / path).write_text(text, encoding="utf-8")
+        _write(folder, files)
         ids = [f"SEED-{number}" for number in range(len(plants))]
         result = check_fleet(folder, today=TODAY, only=ids, workers=workers)
         lines = {path: text.splitlines() for path, text in files.items()}
     subjects = {subject.id: subject for subject in result.subjects}
     found: list[Harvest] = []
     for number, plant in enumerate(plants):
-        own = [o for o in result.file_outcomes if o.at.file == f"hulls/seed-{number}.yaml" and o.check != "not-studied"]
+        file = f"hulls/seed-{number}.yaml"
+        own = [o for o in result.file_outcomes if o.at.file == file and o.check != "not-studied"]
+        own = [o._replace(part=OWN_FILE) if o.part == file else o for o in own]
         subject = subjects.get(f"SEED-{number}")
         outcomes = [*own, *(subject.news if subject else ())]
         told = [(o, _line(lines, o)) for o in outcomes if o.verdict is Verdict.FINDING]
@@ -277,6 +353,7 @@ def _hull(design: Design, number: int, plant: Plant) -> Row:
 
 
 def _dump(data: Row) -> str:
+    data = json.loads(json.dumps(data))  # a part held twice would be written as an alias, which yards may not
     return yaml.safe_dump(data, sort_keys=False, allow_unicode=True, width=1000, default_flow_style=False)
 
 

@@ -65,6 +65,8 @@ def row_of(
     batteries = [f"  BAT-H{i}: {{part: {part}, zone: LOCKER, bank: HOUSE}}" for i in range(2, count + 1)]
     links = [f"  {link(i, pole, size, length)}" for i in range(1, count) for pole in ("pos", "neg")]
     yard = roomy().also("\n".join(["devices:", *batteries, "conductors:", *links]) + "\n")
+    capacity_ah = 100 + (count - 1) * (75 if part == "start-battery" else 100)
+    yard = yard.edit("capacity: 100 Ah, ratio", f"capacity: {capacity_ah} Ah, ratio")  # of the monitor
     return yard.edit("from: BAT-H.neg, to: SHUNT.bat", f"from: BAT-H{count}.neg, to: SHUNT.bat") if corners else yard
 
 

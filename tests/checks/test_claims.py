@@ -61,6 +61,7 @@ def test_cranking_role_does_not_silence_a_missing_device() -> None:
     )
     assert [told[:3] for told in found(yard)] == [
         ("role-claim", "V2", BOTH),
+        ("sense-place", "REGULATOR", NEITHER),  # the alternator charges the other bank
         ("unprotected-conductor", "V2", BOTH),
     ]
 

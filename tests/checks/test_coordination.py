@@ -14,7 +14,8 @@ PUMP_PART = "cooling-pump: {kind: load, voltage: 12 V, current: 8 A,"
 def feeder(facts: str) -> Yard:
     """Return the yard with another fuse ahead of the panel."""
     return SOUND.edit(FEEDER, "F-PANEL: {part: feeder, zone: LOCKER,").also_parts(
-        f"feeder: {{kind: fuse, voltage: 32 V, interrupting: 10 kA, resistance: 0.3 mohm, {facts}}}"
+        "feeder: {kind: fuse, voltage: 32 V, interrupting: 10 kA, resistance: 0.3 mohm, terminal: stud, stud: M8, "
+        f"smallest_size: 16 AWG, largest_size: 4/0 AWG, {facts}}}"
     )
 
 
@@ -96,14 +97,14 @@ def test_fuses_of_chargers_at_the_battery_stand_under_no_other() -> None:
     assert above == {"F-PANEL under F-MAIN", *(f"P{n} under F-PANEL" for n in range(1, 6))}
 
 
-def test_two_fuses_side_by_side_from_one_bus_to_another_are_sound() -> None:
-    """PRO-12, PRO-15: the fault behind the one is fed through the other until both have opened."""
+def test_two_fuses_side_by_side_from_one_bus_to_another_stand_above_neither() -> None:
+    """PRO-12, PRO-15: that they lie side by side is told, and not that they are not selective; the fault behind the one is fed through the other until both have opened."""
     second = (
         "devices:\n  F-SPARE: {part: bolt-fuse, zone: LOCKER, rating: 60 A, mount: {line: BUS-P}}\n"
         "circuits:\n  SPARE:\n    name: Spare feed\n    service: feeder\n    current: 30 A\n    conductors:\n"
         "      X1: {from: F-SPARE.load, to: PANEL, size: 6 AWG, length: 1.5 m}\n"
     )
-    assert found(SOUND.also(second)) == []
+    assert [told[:2] for told in found(SOUND.also(second))] == [("paralleled-devices", "F-SPARE")]
 
 
 # PRO-13: the order of the ratings

@@ -8,7 +8,8 @@ from checker.finding import Verdict
 from tests.small_yard import BOTH, NEITHER, SOUND, Yard, check_yard, finding, found, not_assessed, passed
 
 ISOLATOR = (
-    "isolator: {kind: diode, posts: [in, house, start], passes: [[in, house], [in, start]], "
+    "isolator: {kind: diode, terminal: stud, stud: M8, cover: true, torque: 10 Nm, smallest_size: 16 AWG, "
+    "largest_size: 4/0 AWG, posts: [in, house, start], passes: [[in, house], [in, start]], "
     "drop: 0.4 V, resistance: 2 mohm, continuous: 120 A}"
 )
 ISO_LINE = "ISO: {part: isolator, zone: LOCKER}"

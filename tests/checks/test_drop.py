@@ -7,7 +7,7 @@ import pytest
 from tests.small_yard import BOTH, LAW_ONLY, NEITHER, PRACTICE, SOUND, Yard, found
 
 FEED_OUT = "D1: {from: F-PANEL.load, to: PANEL, size: 6 AWG, length: 1.5 m}"
-FEED_BACK = "D2: {from: PANEL-N, to: BUS-N, size: 6 AWG, length: 1.5 m}"
+FEED_BACK = "D2: {from: PANEL-N, to: BUS-N, size: 6 AWG, length: 1.5 m, colour: yellow}"
 
 
 def bow_light_of(length: str) -> Yard:
@@ -178,6 +178,15 @@ def test_return_of_a_branch_is_like_its_feed_in_all_that_is_left_out() -> None:
     """CON-16: only the size differs, so that the length is that of the route."""
     yard = SOUND.edit("    cable: 14 AWG\n", "    cable: 14 AWG\n    back: {size: 12 AWG}\n")
     assert found(yard) == []
+
+
+@pytest.mark.parametrize("role", ["inside-housing", "resistance"])
+def test_thin_return_that_its_role_frees_from_the_rules_of_size_is_sound(role: str) -> None:
+    """CON-16, T-28, T-29."""
+    back = "V3: {from: REGULATOR.gnd, to: BUS-N, size: 16 AWG"
+    free = SOUND.edit(back, back.replace("16 AWG", f"18 AWG, role: {role}, reason: inside the regulator's housing"))
+    assert found(free) == []
+    assert ("return-size", "V3", NEITHER) in {told[:3] for told in found(SOUND.edit(back, back.replace("16", "18")))}
 
 
 @pytest.mark.parametrize("size", ["6 AWG", "4 AWG"])

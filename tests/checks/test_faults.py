@@ -68,7 +68,7 @@ def test_batteries_in_parallel_add_to_what_a_device_must_break() -> None:
     """PRO-09: a second battery on the same posts; each of both adds 3.1 kA at the least."""
     yard = breaks("3280 A").without("M1:").edit(MAIN_FUSE, MAIN_FUSE.replace("}", ", mount: {line: BAT-H.pos}}"))
     role = "length: 2 in, size: 2/0 AWG, role: bank, reason: link of the bank, current: 40 A"
-    twice = yard.also(
+    twice = yard.edit("capacity: 100 Ah, ratio", "capacity: 200 Ah, ratio").also(
         "devices:\n  BAT-H2: {part: house-battery, zone: LOCKER, bank: HOUSE}\n"
         f"conductors:\n  L1: {{from: BAT-H2.pos, to: BAT-H.pos, {role}}}\n"
         f"  L2: {{from: BAT-H2.neg, to: BAT-H.neg, {role}}}\n"
@@ -162,7 +162,10 @@ def test_device_without_a_band_is_not_assessed_at_the_far_end_with_the_field() -
         "P5": "protect: 5 A",
     }
     assert found(yard) == []
-    assert not_assessed(yard) == [("far-end-clearing", name, NEITHER, line) for name, line in lines.items()]
+    assert not_assessed(yard) == [
+        *(("far-end-clearing", name, NEITHER, line) for name, line in lines.items()),
+        ("stalled-motor", "panel-breaker", NEITHER, "panel-breaker:"),
+    ]
     told = outcomes(yard, Verdict.NOT_ASSESSED)
     assert {o.missing for o in told} == {"band"}
     assert [o.fault for o in told if o.part == "P2"] == [

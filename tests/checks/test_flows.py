@@ -43,7 +43,7 @@ def condition(name: str, loads: str, more: str = "") -> str:
 def winch(yard: Yard, amps: str, fuse: str, *conductors: str) -> Yard:
     """Return a yard with a winch on a fuse of its own at the house battery, and a condition that runs it."""
     lines = "".join(f"      {line}\n" for line in conductors)
-    part = f"winch: {{kind: load, voltage: 12 V, current: {amps}, motor: true}}"
+    part = f"winch: {{kind: load, voltage: 12 V, current: {amps}}}"
     return yard.also_parts(part).also(
         "devices:\n  WINCH: {part: winch, zone: BOW}\n"
         f"  F-WINCH: {{part: bolt-fuse, zone: LOCKER, rating: {fuse}, mount: {{line: BAT-H.pos}}}}\n"
@@ -172,7 +172,7 @@ def winch_back(amps: str, to: str) -> Yard:
 def test_shared_negative_that_is_sized_for_one_of_two_feeders_is_found() -> None:
     """CON-19, RET-06: D2 is written for 30 A, and carries 120 A of the winch and 1 A of the panel."""
     yard = winch_back("120 A", "PANEL-N")
-    line = "D2: {from: PANEL-N, to: BUS-N, size: 6 AWG, length: 1.5 m}"
+    line = "D2: {from: PANEL-N, to: BUS-N, size: 6 AWG, length: 1.5 m, colour: yellow}"
     assert found(yard) == [("solved-ampacity", "D2", LAW, line)]
     told = finding(yard, "solved-ampacity", "D2")
     assert told.measure is not None

@@ -18,7 +18,7 @@ from tests.small_yard import (
 )
 
 C1 = "C1: {from: CHARGER.out, to: F-CHARGER.load, size: 10 AWG, length: 2 m}"
-C2 = "C2: {from: CHARGER.neg, to: BUS-N, size: 10 AWG, length: 2 m}"
+C2 = "C2: {from: CHARGER.neg, to: BUS-N, size: 10 AWG, length: 2 m, colour: yellow}"
 C3 = "C3: {from: F-CHARGER.line, to: BAT-H.pos, size: 10 AWG, length: 0.1 m}"
 V2 = "V2: {from: F-SENSE.load, to: REGULATOR.sense, size: 16 AWG, length: 2 m}"
 

@@ -15,6 +15,7 @@ def second_battery(positive_to: str, negative_to: str, part: str = "house-batter
         "F-MAIN: {part: bolt-fuse, zone: LOCKER, rating: 150 A}",
         "F-MAIN: {part: bolt-fuse, zone: LOCKER, rating: 150 A, mount: {line: BAT-H.pos}}",
     )
+    yard = yard.edit("capacity: 100 Ah, ratio", "capacity: 200 Ah, ratio")  # of the monitor
     return yard.also(
         f"devices:\n  BAT-H2: {{part: {part}, zone: LOCKER, bank: HOUSE}}\n"
         "conductors:\n"
@@ -77,7 +78,7 @@ def test_link_between_both_posts_of_a_battery_is_found_as_a_dead_short() -> None
 
 def series_bank(winch_on: str, voltage: str) -> Yard:
     """Return the yard with a 24 V bank of two batteries, and a winch fused on one of its posts."""
-    return SOUND.also_parts(f"winch: {{kind: load, voltage: {voltage}, current: 50 A, motor: true}}").also(
+    return SOUND.also_parts(f"winch: {{kind: load, voltage: {voltage}, current: 50 A}}").also(
         "devices:\n"
         "  BAT-1: {part: start-battery, zone: LOCKER, bank: BOW}\n"
         "  BAT-2: {part: start-battery, zone: LOCKER, bank: BOW}\n"
@@ -131,14 +132,18 @@ def test_load_of_the_voltage_of_its_net_is_sound(voltage: str) -> None:
 def test_load_without_a_return_conductor_is_found() -> None:
     """RET-01."""
     yard = SOUND.without("V3:")
-    assert found(yard) == [("load-return", "REGULATOR", NEITHER, "REGULATOR: {part: regulator, zone: ENGINE-SPACE}")]
+    assert found(yard) == [
+        ("load-return", "REGULATOR", NEITHER, "REGULATOR: {part: regulator, zone: ENGINE-SPACE, regulates: ALT}")
+    ]
     assert "return REGULATOR.gnd" in finding(yard, "load-return", "REGULATOR").fault
 
 
 def test_load_without_a_feed_conductor_is_found() -> None:
     """RET-01."""
     yard = SOUND.without("V2:")
-    assert found(yard) == [("load-return", "REGULATOR", NEITHER, "REGULATOR: {part: regulator, zone: ENGINE-SPACE}")]
+    assert found(yard) == [
+        ("load-return", "REGULATOR", NEITHER, "REGULATOR: {part: regulator, zone: ENGINE-SPACE, regulates: ALT}")
+    ]
     assert "feed REGULATOR.sense" in finding(yard, "load-return", "REGULATOR").fault
 
 

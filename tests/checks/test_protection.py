@@ -70,12 +70,15 @@ def test_fuse_in_the_negative_alone_leaves_the_positive_unprotected() -> None:
         "H3: {from: F-HORN.load, to: BUS-N, size: 14 AWG, length: 0.1 m}",
         devices="F-HORN: {part: blade-fuse, zone: LOCKER, rating: 10 A}",
     )
-    assert found(yard) == [("unprotected-conductor", "H1", BOTH, line)]
+    assert found(yard) == [
+        ("switched-return", "F-HORN", NEITHER, "F-HORN: {part: blade-fuse, zone: LOCKER, rating: 10 A}"),
+        ("unprotected-conductor", "H1", BOTH, line),
+    ]
     assert "F-HORN stands in the return" in finding(yard, "unprotected-conductor", "H1", LAW).fault
 
 
-def test_fuse_in_the_positive_and_in_the_negative_is_sound() -> None:
-    """PRO-07."""
+def test_fuse_in_the_positive_and_in_the_negative_protects_both() -> None:
+    """PRO-07: the one in the negative opens the return alone, which is a fault of its own."""
     yard = horn(
         "H0: {from: F-HORN.load, to: HORN.pos, size: 14 AWG, length: 4 m}",
         "H2: {from: HORN.neg, to: F-BACK.line, size: 14 AWG, length: 4 m}",
@@ -83,7 +86,7 @@ def test_fuse_in_the_positive_and_in_the_negative_is_sound() -> None:
         devices="F-HORN: {part: blade-fuse, zone: LOCKER, rating: 10 A, mount: {line: BAT-H.pos}}\n"
         "F-BACK: {part: blade-fuse, zone: LOCKER, rating: 10 A}",
     )
-    assert found(yard) == []
+    assert [told[:2] for told in found(yard)] == [("switched-return", "F-BACK")]
 
 
 # PRO-02, PRO-03, T-12, T-30, T-36: the distance from the source
@@ -215,7 +218,8 @@ def test_fuse_mounted_on_the_battery_post_is_sound() -> None:
 def two_batteries(link: str) -> Yard:
     """Return the yard with a second battery in parallel, the fuse leads of 0.1 m still on the first."""
     bank = "size: 2/0 AWG, role: bank, reason: link of the bank, current: 40 A"
-    return main_fuse_on_the_post().also(
+    monitor = main_fuse_on_the_post().edit("capacity: 100 Ah, ratio", "capacity: 200 Ah, ratio")
+    return monitor.also(
         "devices:\n  BAT-H2: {part: house-battery, zone: LOCKER, bank: HOUSE}\n"
         "conductors:\n"
         f"  L1: {{from: BAT-H2.pos, to: BAT-H.pos, length: {link}, {bank}}}\n"
@@ -255,6 +259,16 @@ def test_device_above_what_either_set_allows_is_found_at_the_conductor() -> None
     assert found(yard) == [("device-rating", "A1", BOTH, A1)]
     limits = [finding(yard, "device-rating", "A1", one).measure for one in (LAW, PRACTICE)]
     assert [round(measure.limit) for measure in limits if measure] == [153, 110]
+
+
+def test_main_device_beyond_its_own_conductors_is_found_at_these_and_is_no_step_in_size() -> None:
+    """PRO-04: 2 AWG allows 315 A by law and 225 A by the voluntary set; M2 and M3 lead on to the panel's fuse."""
+    parts = "main-fuse: {kind: fuse, voltage: 32 V, interrupting: 10 kA, band: slow, rating: 350 A}"
+    yard = SOUND.also_parts(parts).edit("F-MAIN: {part: bolt-fuse, zone: LOCKER, rating: 150 A",
+                                        "F-MAIN: {part: main-fuse, zone: LOCKER")  # fmt: skip
+    told = {(check, part): sets for check, part, sets, _ in found(yard) if check in ("device-rating", "size-step")}
+    assert told == {("device-rating", "M2"): BOTH, ("device-rating", "M3"): BOTH}
+    assert "F-MAIN 350 A protects 2 AWG" in finding(yard, "device-rating", "M2", LAW).fault
 
 
 def test_device_between_both_limits_is_found_under_the_voluntary_set_alone() -> None:
@@ -416,7 +430,7 @@ def doubly_fed(states: str) -> Yard:
         "      X4: {from: WINCH.neg, to: BUS-N, size: 4 AWG, length: 1 m}\n",
         states=states,
     ).also("devices:\n  WINCH: {part: winch, zone: BOW}\n").also_parts(
-        "winch: {kind: load, voltage: 12 V, current: 90 A, motor: true}"
+        "winch: {kind: load, voltage: 12 V, current: 90 A}"
     )  # fmt: skip
 
 
@@ -542,6 +556,13 @@ def test_converter_fused_at_both_batteries_is_sound() -> None:
     assert found(converter("Z2: {from: DCDC.out, to: F-OUT.load, size: 12 AWG, length: 1 m}")) == []
 
 
+def test_converter_without_its_return_is_told_to_have_none() -> None:
+    """SRC-12, RET-01: its input and its output share the missing return; neither holds it."""
+    yard = converter("Z2: {from: DCDC.out, to: F-OUT.load, size: 12 AWG, length: 1 m}").without("Z3:")
+    assert ("load-return", "DCDC") in {told[:2] for told in found(yard)}
+    assert "load-voltage" not in {check for check, *_ in found(yard)}
+
+
 def test_alternator_cable_without_a_fuse_at_the_battery_is_found() -> None:
     """PRO-21."""
     yard = SOUND.without("F-ALT:").edit("to: F-ALT.load", "to: BAT-H.pos")
@@ -567,6 +588,15 @@ def test_sense_lead_from_a_battery_post_without_a_fuse_is_found() -> None:
     yard = SOUND.without("V1:", "F-SENSE:").edit("from: F-SENSE.load", "from: BAT-H.pos")
     line = "V2: {from: BAT-H.pos, to: REGULATOR.sense, size: 16 AWG, length: 2 m}"
     assert found(yard) == [("unprotected-conductor", "V2", BOTH, line)]
+
+
+def test_monitor_lead_without_a_fuse_is_told_at_the_lead_alone() -> None:
+    """PRO-22: the instrument is mounted on the shunt's post; its return says nothing more."""
+    yard = SOUND.edit("Q2: {from: F-MONITOR.load,", "Q2: {from: BAT-H.pos,")
+    assert {check for check, *_ in found(yard)} & {"unprotected-conductor", "return-protection"} == {
+        "unprotected-conductor"
+    }
+    assert finding(yard, "unprotected-conductor", "Q2", LAW).part == "Q2"
 
 
 def test_sense_lead_with_its_fuse_near_the_battery_is_sound() -> None:

@@ -167,7 +167,7 @@ def test_rating_that_the_maker_allows_mends_a_load_s_device() -> None:
 @pytest.mark.parametrize(("pattern", "new"), [(r"a bus rated (\S+ A)", "rating: {}"), (r"at most (\S+ A)", "")])
 def test_printed_rating_of_a_bus_or_of_the_device_ahead_mends_it(pattern: str, new: str) -> None:
     """REMEDY: the panel's breakers let out 40 A; a feeder fuse of 30 A holds it to that."""
-    yard = SOUND.edit("bus-100: {kind: bus, rating: 100 A}", "bus-100: {kind: bus, rating: 39 A}")
+    yard = SOUND.edit("bus-100: {kind: bus, rating: 100 A", "bus-100: {kind: bus, rating: 39 A")
     value = printed(yard, "bus-rating", "PANEL", pattern, NEITHER)
     if new:
         after = yard.edit("rating: 39 A", new.format(value))

@@ -21,10 +21,20 @@ from tests.small_yard import (
 
 TOLD_BY_DEVICE_RATING = {"size-step", "double-feed"}
 """They single out two causes of one measure; where it holds, device-rating tells the pass."""
-LAW_ALONE = {"ignition-protection"}
-PRACTICE_ALONE = {"insulation-rating", "solved-drop", "voltage-drop", "voltage-drop-from-bank"}
-NOTHING_TO_JUDGE = {"bank-links", "diode-way", "even-shares", "lost-return", "pump-stays-live"}
-"""The small yard has no batteries in parallel, no returns beside each other, no diode and no bilge pump."""
+LAW_ALONE = {"battery-fuel", "ignition-protection", "isolation-claim"}
+PRACTICE_ALONE = {"insulation-rating", "solved-drop", "stud-terminals", "voltage-drop", "voltage-drop-from-bank"}
+NOTHING_TO_JUDGE = {
+    "conductor-area", "gas-locker", "hot-device",
+    "array-voltage", "bank-links", "charge-stop", "converter-enable", "diode-sense", "diode-way", "even-shares",
+    "lost-return", "pump-stays-live", "radio-device", "source-device", "splice-place", "support-spacing",
+    "unlike-banks",
+    "case-ground", "common-ground", "grounding-size", "heavy-motor",
+}  # fmt: skip
+"""The small yard has no batteries in parallel, no returns beside each other, no diode and no bilge pump; no array, no
+lithium, no converter, no banks that are joined; no radio and no splice; and neither set has a rule for `source-device`
+or `support-spacing`.
+No cooking gas, no fuse in the engine space, no cable that states its copper. No grounded case, one engine, and no heavy
+motor but the starter."""
 
 
 def test_nothing_is_found_and_nothing_is_left_unassessed() -> None:

@@ -24,9 +24,9 @@ LIMITS = load_limit_set("cfr33-183-i")
 
 @pytest.mark.parametrize(("awg", "insulation_c", "ampacity_a"), CELLS)
 def test_every_cell_is_the_printed_one(awg: str, insulation_c: float, ampacity_a: float) -> None:
-    row = LIMITS.ampacity.at(awg_size(awg), insulation_c, next_smaller_awg=False)
+    row = LIMITS.ampacity.at(awg_size(awg), insulation_c, next_smaller=False)
     assert row is not None
-    assert (row.ampacity_a, row.column_c, row.awg) == (ampacity_a, insulation_c, awg)
+    assert (row.ampacity_a, row.column_c, row.size) == (ampacity_a, insulation_c, awg_size(awg).text)
 
 
 def test_the_table_has_15_sizes_7_temperatures_and_nothing_else() -> None:

@@ -36,7 +36,7 @@ def drop_fraction(awg: str, loop_length_ft: float) -> float:
 
 
 def test_a_pair_of_16_awg_with_105_c_insulation_bears_17_5_a_outside_the_engine_space() -> None:
-    row = VOLUNTARY.ampacity.at(awg_size("16"), 105, next_smaller_awg=False)
+    row = VOLUNTARY.ampacity.at(awg_size("16"), 105, next_smaller=False)
     assert row is not None
     assert row.ampacity_a * VOLUNTARY.bundle.factor(2) == pytest.approx(17.5, rel=1e-12)
 

@@ -44,7 +44,7 @@ def smallest_area_of(example: dict[str, Any]) -> float:
 
 
 def federal_ampacity_a(awg: str, insulation_c: float) -> float:
-    row = FEDERAL.ampacity.at(awg_size(awg), insulation_c, next_smaller_awg=False)
+    row = FEDERAL.ampacity.at(awg_size(awg), insulation_c, next_smaller=False)
     assert row is not None
     return row.ampacity_a
 
@@ -137,7 +137,7 @@ def test_the_highest_device_for_16_awg_is_35_a_by_law_and_25_a_by_the_voluntary_
     limit_a = FEDERAL.device_rating.largest_allowed_a(federal_ampacity_a("16", 105))
     assert limit_a == expected["limit_a"]
     assert max(a for a in standard_ratings() if a <= limit_a) == expected["highest_standard_a"]
-    row = VOLUNTARY.ampacity.at(awg_size("16"), 105, next_smaller_awg=False)
+    row = VOLUNTARY.ampacity.at(awg_size("16"), 105, next_smaller=False)
     assert row is not None
     assert VOLUNTARY.device_rating.largest_allowed_a(row.ampacity_a) == expected["voluntary_a"]
 

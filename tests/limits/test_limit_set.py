@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import pickle
+import re
 import shutil
 import subprocess
 import sys
@@ -28,7 +29,9 @@ from checker.limits.limit_set import (
 
 FEDERAL = load_limit_set("cfr33-183-i")
 VOLUNTARY = load_limit_set("voluntary-dc")
-SETS = [FEDERAL, VOLUNTARY]
+METRIC = load_limit_set("iso-13297")
+SETS = [FEDERAL, VOLUNTARY, METRIC]
+SILENT = "[battery_fuel, ignition, source_device, supports]"
 SHIPPED = sorted(TABLES.glob("*/*.yaml"))
 
 
@@ -133,14 +136,14 @@ def refused(folder: Path, file: str, old: str, new: str) -> str:
             "id: voluntary",
             "the id must be the name of the folder, 'voluntary-dc'",
         ),
-        ("set.yaml", "[ignition]", "[ignition, drop]", "drop.yaml is no table of this set"),
+        ("set.yaml", SILENT, SILENT.replace("[", "[drop, "), "drop.yaml is no table of this set"),
         (
             "set.yaml",
-            "[ignition]",
-            "[ignition, material]",
-            "silent_on may name drop, insulation, ignition and interrupting",
+            SILENT,
+            SILENT.replace("[", "[material, "),
+            "only, not material",
         ),
-        ("set.yaml", "[ignition]", "[]", "voluntary-dc/ignition.yaml: the file cannot be read"),
+        ("set.yaml", SILENT, "[]", "voluntary-dc/ignition.yaml: the file cannot be read"),
     ],
 )
 def test_a_malformed_table_is_refused_by_name(tmp_path: Path, file: str, old: str, new: str, message: str) -> None:
@@ -171,7 +174,7 @@ def test_a_stray_file_is_refused_since_it_may_be_a_misspelt_table(tmp_path: Path
 
 
 def test_an_unknown_set_is_refused_with_the_known_ones() -> None:
-    with pytest.raises(LimitSetError, match="no limit set 'iso'; known: cfr33-183-i, voluntary-dc"):
+    with pytest.raises(LimitSetError, match="no limit set 'iso'; known: cfr33-183-i, voluntary-dc, iso-13297"):
         load_limit_set("iso")
 
 
@@ -203,17 +206,18 @@ def test_every_table_is_cited_with_document_clause_and_edition(limits: LimitSet)
 
 @pytest.mark.parametrize("limits", SETS, ids=lambda limits: limits.id)
 def test_every_rule_of_a_set_is_in_its_citations(limits: LimitSet) -> None:
-    head = {"id", "title", "basis", "edition", "caution"}
-    rules = {field.name for field in fields(limits)} - head - set(limits.silent_on)
+    head = {"id", "title", "basis", "edition", "caution", "entered", "not_entered"}
+    rules = {field.name for field in fields(limits)} - head - set(limits.silent_on) - set(limits.not_entered)
     assert {name.split(":")[0] for name, _ in limits.citations()} == rules
 
 
-def test_the_law_rests_on_memory_for_six_factors_the_exemptions_from_protection_and_the_alternator() -> None:
+def test_the_law_rests_on_memory_for_six_factors_the_exemptions_from_protection_the_alternator_and_a_gap() -> None:
     from_memory = [name for name, citation in FEDERAL.citations() if citation.basis is Basis.FROM_MEMORY]
     assert from_memory == [
         *(f"engine_factor: {column_c} C" for column_c in (60, 75, 80, 90, 125, 200)),
         "exemptions: protection_exempt_roles",
         "self_limiting_source",
+        "ignition: bulkhead_gap_in",
     ]
     assert FEDERAL.from_memory_count == len(from_memory)
 
@@ -236,19 +240,21 @@ def test_a_citation_without_clause_is_its_document_alone() -> None:
 
 
 def test_a_set_is_silent_where_its_document_is() -> None:
-    assert FEDERAL.silent_on == ("drop", "insulation", "interrupting")
-    assert VOLUNTARY.silent_on == ("ignition",)
+    assert FEDERAL.silent_on == ("drop", "insulation", "interrupting", "source_device", "supports")
+    assert VOLUNTARY.silent_on == ("battery_fuel", "ignition", "source_device", "supports")
+    assert METRIC.silent_on == ("battery_fuel", "ignition", "interrupting", "terminals")
     assert (FEDERAL.drop, FEDERAL.insulation, VOLUNTARY.ignition) == (None, None, None)
 
 
 def test_only_the_law_binds_a_boat_by_itself() -> None:
-    assert [limits.applies.binds_petrol_inboard for limits in SETS] == [True, False]
-    assert [limits.basis for limits in SETS] == [Basis.LAW, Basis.STANDARD]
+    assert [limits.applies.binds_petrol_inboard for limits in SETS] == [True, False, False]
+    assert [limits.basis for limits in SETS] == [Basis.LAW, Basis.STANDARD, Basis.STANDARD]
 
 
 def test_a_set_is_loaded_once_and_can_be_sent_to_a_worker() -> None:
     assert load_limit_set("cfr33-183-i") is FEDERAL
     assert pickle.loads(pickle.dumps(VOLUNTARY)) == VOLUNTARY
+    assert pickle.loads(pickle.dumps(METRIC)) == METRIC
 
 
 def test_each_table_file_is_read_once(monkeypatch: pytest.MonkeyPatch) -> None:
@@ -281,3 +287,63 @@ def test_importing_the_limits_brings_in_no_package_but_yaml() -> None:
     root = Path(limit_set.__file__).parents[2]
     run = subprocess.run([sys.executable, "-c", code], cwd=root, capture_output=True, text=True, check=True)
     assert run.stdout.split() == ["checker", "yaml"]
+
+
+# --- a set whose tables the yard enters
+
+
+def test_the_metric_set_ships_what_was_seen_in_published_copies_and_leaves_the_rest_to_the_yard() -> None:
+    assert METRIC.not_entered == (
+        "ampacity", "engine_factor", "bundle", "exemptions", "distance", "device_rating", "device_voltage", "breaker",
+        "self_limiting_source", "material", "insulation",
+    )  # fmt: skip
+    shipped = {name for name, citation in METRIC.citations() if citation.basis is Basis.STANDARD}
+    assert shipped == {"minimum_size", "supports", "source_device", "drop", "drop: resistivity_ohm_mm2_per_m"}
+
+
+def test_the_metric_set_has_the_figures_of_the_clauses() -> None:
+    size, drop = METRIC.minimum_size, METRIC.drop
+    assert (size.single.text, size.sheathed.text, size.max_out_of_sheath_m) == ("1 mm2", "0.75 mm2", 0.8)
+    assert METRIC.source_device is not None
+    assert (METRIC.source_device.max_distance_m, METRIC.source_device.is_self_limiting_exempt) == (1.8, True)
+    assert METRIC.supports is not None
+    assert (METRIC.supports.single_m, METRIC.supports.sheathed_m, METRIC.supports.battery_m) == (0.45, 0.3, 0.3)
+    assert drop is not None
+    assert "bilge-pump" in drop.critical_services
+    assert drop.critical_fraction == 0.03
+    # 0.0179 ohm mm2/m x 0.3048 m/ft / 5.067e-4 mm2/cmil
+    assert drop.k_ohm_cmil_per_ft == pytest.approx(10.767, abs=0.001)
+
+
+def test_a_figure_of_a_table_that_was_not_entered_cannot_be_asked_for_in_silence() -> None:
+    with pytest.raises(LookupError, match="table ampacity was not entered"):
+        _ = METRIC.ampacity.sizes
+    assert METRIC.lacks(["drop", "ampacity", "bundle"]) == ("ampacity", "bundle")
+    assert FEDERAL.lacks(["drop", "ampacity", "bundle"]) == ()
+
+
+@pytest.mark.parametrize(
+    ("old", "new", "message"),
+    [
+        (
+            "material, insulation]",
+            "material, supprots]",
+            "entered_by_yard names supprots, which is no table of the set",
+        ),
+        (
+            "material, insulation]",
+            "material, ignition]",
+            "entered_by_yard names ignition, which is no table of the set",
+        ),
+        ("material, insulation]", "material, insulation, drop]", "drop.yaml is no table of this set"),
+        ("material, insulation]", "material]", "iso-13297/insulation.yaml: the file cannot be read"),
+    ],
+)
+def test_a_set_says_plainly_which_tables_the_yard_enters(tmp_path: Path, old: str, new: str, message: str) -> None:
+    copy = tmp_path / "iso-13297"
+    shutil.copytree(TABLES / "iso-13297", copy)
+    text = (copy / "set.yaml").read_text(encoding="utf-8")
+    assert text.count(old) == 1
+    (copy / "set.yaml").write_text(text.replace(old, new), encoding="utf-8")
+    with pytest.raises(LimitSetError, match=re.escape(message)):
+        read_limit_set(copy)

@@ -37,7 +37,7 @@ def metric(area_mm2: float) -> Size:
 
 
 def row_at(limits: LimitSet, size: Size, insulation_c: float, *, next_smaller: bool = False) -> AmpacityRow | None:
-    return limits.ampacity.at(size, insulation_c, next_smaller_awg=next_smaller)
+    return limits.ampacity.at(size, insulation_c, next_smaller=next_smaller)
 
 
 @pytest.mark.parametrize(
@@ -55,7 +55,7 @@ def row_at(limits: LimitSet, size: Size, insulation_c: float, *, next_smaller: b
 def test_insulation_between_two_columns_takes_the_lower_one(
     insulation_c: float, column_c: float, ampacity_a: float
 ) -> None:
-    assert row_at(FEDERAL, awg_size("6"), insulation_c) == AmpacityRow(ampacity_a, column_c, "6")
+    assert row_at(FEDERAL, awg_size("6"), insulation_c) == AmpacityRow(ampacity_a, column_c, "6 AWG")
 
 
 def test_insulation_below_the_first_column_has_no_figure() -> None:
@@ -188,7 +188,7 @@ def test_the_distances_are_those_of_each_set_in_inches() -> None:
 @pytest.mark.parametrize("limits", SETS, ids=lambda limits: limits.id)
 def test_sizes_materials_and_devices_are_those_of_the_clauses(limits: LimitSet) -> None:
     size, material = limits.minimum_size, limits.material
-    assert (size.single_awg, size.sheathed_awg, size.max_out_of_sheath_m) == ("16", "18", metre_from_inch(30))
+    assert (size.single.awg, size.sheathed.awg, size.max_out_of_sheath_m) == ("16", "18", metre_from_inch(30))
     assert (material.materials, material.strands) == (("copper",), ("stranded",))
     assert (material.must_be_insulated, material.refuses_welding) == (True, True)
     assert (limits.breaker.must_reset_by_hand, limits.breaker.must_be_trip_free) == (True, True)
@@ -223,7 +223,7 @@ def test_the_drop_groups_leave_the_bilge_pump_to_the_yard() -> None:
     drop = VOLUNTARY.drop
     assert drop is not None
     assert (drop.critical_fraction, drop.general_fraction, drop.k_ohm_cmil_per_ft) == (0.03, 0.1, 10.75)
-    assert drop.critical_services == ("feeder", "navigation-light", "blower", "electronics", "radio")
+    assert drop.critical_services == ("feeder", "navigation-light", "anchor-light", "blower", "electronics", "radio")
 
 
 def test_the_insulation_the_ignition_and_the_alternator_rules_are_those_of_their_sets() -> None:

@@ -16,6 +16,7 @@ from checker.reading.document import compose
 from checker.reading.schema import KINDS, schema_faults
 
 EXAMPLE = Path(__file__).resolve().parents[2] / "fleet_example"
+TABLES = Path(__file__).resolve().parents[1] / "limits" / "sample"
 ID_WORDS = "Write an id of at most 40 letters, digits, hyphens or underscores, such as BUS-N"
 
 HULL = """\
@@ -326,15 +327,17 @@ def every_node(data: Any, path: tuple[Any, ...] = ()) -> Iterator[tuple[Any, ...
 def kind_of(name: str) -> str:
     if "/options/" in name:
         return "option"
-    return {"yard.yaml": "yard", "waivers.yaml": "waivers", "parts": "parts", "classes": "class", "hulls": "hull"}[
-        name.split("/", maxsplit=1)[0]
-    ]
+    return {
+        "yard.yaml": "yard", "waivers.yaml": "waivers", "parts": "parts", "classes": "class", "hulls": "hull",
+        "limits": "limits",
+    }[name.split("/", maxsplit=1)[0]]  # fmt: skip
 
 
 def mutants(kind: str, count: int) -> Iterator[str]:
     """Give documents of a kind with one to three values taken out, renamed or replaced by a wrong one."""
     rng = random.Random(kind)
-    files = [f for f in sorted(EXAMPLE.rglob("*.yaml")) if kind_of(f.relative_to(EXAMPLE).as_posix()) == kind]
+    named = [(f, f.relative_to(folder).as_posix()) for folder in (EXAMPLE, TABLES) for f in folder.rglob("*.yaml")]
+    files = sorted(file for file, name in named if kind_of(name) == kind)
     originals = [compose(file.read_bytes(), "f.yaml").data for file in files]
     for _ in range(count):
         data = copy.deepcopy(rng.choice(originals))

@@ -16,7 +16,8 @@ from checker.reading.yard_files import YardFiles, read_yard
 from tests.dory_yard import DORY, HULL, checked, edited, place, told, write
 
 PLACES = (
-    "a yard keeps yard.yaml, waivers.yaml, parts/*.yaml, classes/ID/*.yaml, classes/ID/options/*.yaml, hulls/*.yaml"
+    "a yard keeps yard.yaml, waivers.yaml, parts/*.yaml, classes/ID/*.yaml, classes/ID/options/*.yaml, hulls/*.yaml, "
+    "limits/SET/*.yaml"
 )
 ROOT = Path(__file__).resolve().parents[2]
 

@@ -1,0 +1,271 @@
+"""Run the campaign and count: what was planted, what was found where it was planted, what else was found.
+
+python -m tests.campaign.tally                       the first place of every planter, in both boats
+python -m tests.campaign.tally --places 5 --seed 3   up to five places each, drawn at random
+python -m tests.campaign.tally --places all          every place
+python -m tests.campaign.tally --together 200        and 200 boats with three faults each
+python -m tests.campaign.tally CON-04 PRO            only these faults or groups
+"""
+
+from __future__ import annotations
+
+import argparse
+import random
+import sys
+from collections.abc import Callable, Iterable, Iterator, Sequence
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Any
+
+import yaml
+
+if __package__ in (None, ""):
+    sys.path.insert(0, str(Path(__file__).resolve().parents[2]))
+
+from tests.campaign.planting import (
+    DESIGNS,
+    FAULTS,
+    TRAPS,
+    Design,
+    Harvest,
+    Plant,
+    Planter,
+    Row,
+    harvest,
+    load_planters,
+    merged,
+)
+
+CATALOGUE = Path(__file__).with_name("fault_catalogue.yaml")
+EVERY_PLACE = 1_000_000
+FAULTS_ON_ONE_BOAT = 3
+SOUND = "sound arrangements and twins"
+"""The group of what must stay silent: the catalogue's, and twins of faults that are just not at fault."""
+
+
+@dataclass(frozen=True)
+class Sown:
+    """Hold one plant: the faults or sound arrangements that it stands for, and the planter that made it."""
+
+    ids: tuple[str, ...]
+    planter: str
+    design: str
+    plant: Plant
+    is_sound: bool = False
+
+
+@dataclass(frozen=True)
+class Crop:
+    """Hold what came of one plant."""
+
+    sown: Sown
+    harvest: Harvest
+
+    def __str__(self) -> str:
+        return f"{', '.join(self.sown.ids)} in {self.sown.design}, {self.sown.planter}: {self.harvest}"
+
+
+@dataclass
+class Count:
+    """Count the plants of one kind of fault, or of a group."""
+
+    planted: int = 0
+    found: int = 0
+    missed: int = 0
+    misplaced: int = 0
+    extra: int = 0
+
+    def add(self, crop: Harvest) -> None:
+        """Count one plant; of a sound arrangement `found` counts those that stayed silent."""
+        self.planted += 1
+        self.found += crop.is_as_planted
+        self.missed += bool(crop.missing)
+        self.misplaced += bool(crop.misplaced)
+        self.extra += bool(crop.extra)
+
+    def cells(self) -> tuple[int, ...]:
+        """Return the figures in the order of the columns."""
+        return self.planted, self.found, self.missed, self.misplaced, self.extra
+
+
+def catalogue() -> dict[str, Any]:
+    """Return the catalogue of faults and sound arrangements."""
+    data: dict[str, Any] = yaml.safe_load(CATALOGUE.read_text(encoding="utf-8"))
+    return data
+
+
+def by_planter(kind: dict[str, list[Planter]]) -> dict[Planter, tuple[str, ...]]:
+    """Return every planter with the ids that it is registered for, in the order of the first."""
+    ids: dict[Planter, list[str]] = {}
+    for name, planters in sorted(kind.items()):
+        for planter in planters:
+            ids.setdefault(planter, []).append(name)
+    return {planter: tuple(names) for planter, names in ids.items()}
+
+
+def sow(
+    kind: dict[str, list[Planter]], design: Design, places: int, seed: int | None, only: Sequence[str]
+) -> list[Sown]:
+    """Return some places of every planter: the first ones, or with a seed ones drawn at random."""
+    chosen: list[Sown] = []
+    for planter, ids in by_planter(kind).items():
+        if only and not any(name.startswith(tuple(only)) for name in ids):
+            continue
+        plants = list(_first(planter(design), places if seed is None else EVERY_PLACE))
+        name = getattr(planter, "__name__", "")
+        if seed is not None and len(plants) > places:
+            drawn = random.Random(f"{seed} {name} {design.name}")
+            plants = [plants[index] for index in sorted(drawn.sample(range(len(plants)), places))]
+        chosen += [Sown(ids, name, design.name, plant, kind is TRAPS) for plant in plants]
+    return chosen
+
+
+def _first(plants: Iterable[Plant], most: int) -> Iterator[Plant]:
+    for number, plant in enumerate(plants):
+        if number >= most:
+            return
+        yield plant
+
+
+def reap(design: Design, sown: Sequence[Sown], workers: int) -> list[Crop]:
+    """Plant everything and return what came of it."""
+    crops = harvest(design, [one.plant for one in sown], workers=workers)
+    return [Crop(one, crop) for one, crop in zip(sown, crops, strict=True)]
+
+
+# --- several faults on one boat
+
+
+def touched(change: Row, path: tuple[str, ...] = ()) -> set[tuple[str, ...]]:
+    """Return the entries that a change touches: section and id, of a circuit's conductors each one."""
+    found: set[tuple[str, ...]] = set()
+    for key, value in change.items():
+        here = (*path, key)
+        deep = here[:1] == ("circuits",) and (len(here) == 2 or here[2:] == ("conductors",))
+        if isinstance(value, dict) and (len(here) == 1 or deep):
+            found |= touched(value, here)
+        else:
+            found.add(here)
+    return found
+
+
+def together(crops: Sequence[Crop], boats: int, seed: int) -> list[Sown]:
+    """Draw boats that carry several faults in different entries, each of which was found alone.
+
+    What one fault lets follow may follow here too, and what is found of each alone may be told
+    in other words; so a boat is as planted if every planted fault is found, and nothing else is
+    but what was found of one of them, or may follow.
+    """
+    drawn = random.Random(seed)
+    sound = [crop for crop in crops if crop.harvest.is_as_planted and crop.sown.plant.change and crop.sown.plant.finds]
+    alone = [crop for crop in sound if not _is_alone(crop)]
+    found: list[Sown] = []
+    while alone and len(found) < boats:
+        some = drawn.sample(alone, min(FAULTS_ON_ONE_BOAT, len(alone)))
+        plants = [crop.sown.plant for crop in some]
+        entries = [touched(plant.change) for plant in plants]
+        if (
+            any(a & b for i, a in enumerate(entries) for b in entries[:i])
+            or len({tuple(p.options) for p in plants}) > 1
+        ):
+            continue
+        follows = {check for crop in some for check in crop.sown.plant.follows}
+        follows |= {outcome.check for crop in some for outcome, _ in crop.harvest.findings}
+        whole = Plant(
+            merged(*(plant.change for plant in plants)),
+            finds=[one for plant in plants for one in plant.finds],
+            follows=sorted(follows),
+            parts={name: row for plant in plants for name, row in plant.parts.items()},
+            options=plants[0].options,
+        )
+        ids = tuple(sorted({name for crop in some for name in crop.sown.ids}))
+        found.append(Sown(ids, " + ".join(crop.sown.planter for crop in some), some[0].sown.design, whole))
+    return found
+
+
+def _is_alone(crop: Crop) -> bool:
+    """Tell whether a fault leaves nothing to say about the rest of its boat: shorted or disagreeing batteries."""
+    return bool(
+        {outcome.check for outcome, _ in crop.harvest.findings} & {"dead-short", "battery-loop", "working-point"}
+    )
+
+
+# --- the tally
+
+
+def tally(crops: Iterable[Crop]) -> dict[str, Count]:
+    """Count the crops by fault."""
+    counts: dict[str, Count] = {}
+    for crop in crops:
+        for name in crop.sown.ids:
+            counts.setdefault(name, Count()).add(crop.harvest)
+    return counts
+
+
+def table(crops: Sequence[Crop]) -> list[str]:
+    """Return the tally by group and in total, as lines."""
+    known = {row["id"]: row["group"] for row in catalogue()["faults"]}
+    by_group: dict[str, Count] = {}
+    kinds: dict[str, set[str]] = {}
+    for crop in crops:
+        groups = {name: SOUND if crop.sown.is_sound else known[name] for name in crop.sown.ids}
+        for group in set(groups.values()):
+            by_group.setdefault(group, Count()).add(crop.harvest)
+        for name, group in groups.items():
+            kinds.setdefault(group, set()).add(name)
+    order = [*dict.fromkeys(known.values()), SOUND]
+    lines = [f"{'group':38}{'kinds':>7}{'planted':>9}{'as planted':>12}{'missed':>8}{'misplaced':>11}{'extra':>7}"]
+    for group in order:
+        if group in by_group:
+            lines.append(_line(group, len(kinds[group]), by_group[group]))
+    whole = Count()
+    for crop in crops:
+        whole.add(crop.harvest)
+    lines.append(_line("boats in all", sum(len(names) for names in kinds.values()), whole))
+    return lines
+
+
+def _line(name: str, kinds: int, count: Count) -> str:
+    planted, found, missed, misplaced, extra = count.cells()
+    return f"{name:38}{kinds:>7}{planted:>9}{found:>12}{missed:>8}{misplaced:>11}{extra:>7}"
+
+
+def campaign(
+    places: int, seed: int | None, workers: int, only: Sequence[str] = (), boats: int = 0,
+    designs: Sequence[Callable[[], Design]] = DESIGNS,
+) -> tuple[list[Crop], list[Crop]]:  # fmt: skip
+    """Run the campaign; return the crops of the single faults and sound arrangements, and those of several."""
+    load_planters()
+    single: list[Crop] = []
+    several: list[Crop] = []
+    for make in designs:
+        design = make()
+        sown = [one for kind in (FAULTS, TRAPS) for one in sow(kind, design, places, seed, only)]
+        crops = reap(design, sown, workers)
+        single += crops
+        if boats:
+            several += reap(design, together(crops, boats, seed or 0), workers)
+    return single, several
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run the campaign as the command line asks; return 1 if anything is not as planted."""
+    parser = argparse.ArgumentParser(prog="python -m tests.campaign.tally", description=(__doc__ or "").split("\n")[0])
+    parser.add_argument("only", nargs="*", help="faults or groups: CON-04, PRO")
+    parser.add_argument("--places", default="1", help="places of each planter, or “all”")
+    parser.add_argument("--seed", type=int, help="draw the places at random")
+    parser.add_argument("--workers", type=int, default=1, help="processes that study boats side by side")
+    parser.add_argument("--together", type=int, default=0, metavar="BOATS", help="boats with several faults each")
+    given = parser.parse_args(arguments)
+    places = EVERY_PLACE if given.places == "all" else int(given.places)
+    single, several = campaign(places, given.seed, given.workers, given.only, given.together)
+    wrong = [crop for crop in (*single, *several) if not crop.harvest.is_as_planted]
+    sys.stdout.write("".join(f"{crop}\n" for crop in wrong))
+    sys.stdout.write("".join(f"{line}\n" for line in table(single)))
+    if several:
+        sys.stdout.write("".join(f"{line}\n" for line in ("", "several faults on one boat", *table(several))))
+    return 1 if wrong else 0
+
+
+if __name__ == "__main__":
+    sys.exit(main())

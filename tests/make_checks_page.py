@@ -1,0 +1,114 @@
+"""Make checker/checks/examples.yaml and checker/checks/CHECKS.md anew.
+
+Run it after a change of a check, a card or a planter; a test compares what it makes with what is
+kept. The example of a check is the first finding that a planter of the campaign makes with it, in
+the minimal boat if it can be planted there.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from itertools import islice
+from pathlib import Path
+
+import yaml
+
+from checker.finding import Card, Outcome, Verdict
+from checker.output.explain import examples, markdown_page
+from checker.output.lines import finding_lines
+from checker.pipeline import all_cards
+from checker.result.gather import fingerprint
+from tests.campaign.planting import DESIGNS, FAULTS, harvest, load_planters
+from tests.small_yard import SOUND, Yard, check_yard
+
+CHECKS = Path(__file__).resolve().parents[1] / "checker" / "checks"
+HEAD = "# An example finding of each check, made by tests/make_checks_page.py. The boats are invented.\n"
+
+
+def example_lines(card: Card, outcome: Outcome) -> list[str]:
+    """Return the lines of a finding, without its fingerprint, which says nothing to a reader of the page."""
+    return [line for line in finding_lines([outcome], card, "", {}) if not line.startswith("  fingerprint:")]
+
+
+def found_examples() -> dict[str, list[str]]:
+    """Return an example finding of every check that one can be planted for."""
+    cards = {card.id: card for card in all_cards()}
+    found: dict[str, list[str]] = {}
+    for outcome in _outcomes():
+        if outcome.check in cards and outcome.check not in found:
+            found[outcome.check] = example_lines(cards[outcome.check], outcome)
+    return {name: found[name] for name in cards if name in found}
+
+
+def _outcomes() -> Iterator[Outcome]:
+    """Yield findings: planted ones first, those that only follow from one last."""
+    load_planters()
+    following: list[Outcome] = []
+    for make in DESIGNS:
+        design = make()
+        plants = [p for _, planters in sorted(FAULTS.items()) for f in planters for p in islice(f(design), 1)]
+        for crop in harvest(design, plants):
+            wanted = {tuple(one) for one in crop.plant.finds}
+            for outcome, _ in crop.findings:
+                if (outcome.check, outcome.part) in wanted:
+                    yield outcome
+                else:
+                    following.append(outcome)
+    yield from _of_files()
+    yield from following
+
+
+OPEN = SOUND.edit("feed: P1\n    protect: 5 A", "feed: P1\n    protect: 10 A")
+"""A boat with one finding, for waivers to accept."""
+
+
+def waived(expires: str, fingerprint: str, limit_set: str = "") -> Yard:
+    """Return a yard that accepts that finding in some way."""
+    row = f"""\
+waivers:
+  WVR-1:
+    check: maker-device
+    hull: SKIFF-1
+    part: P1
+    fingerprint: {fingerprint}
+    reason: the maker agrees in writing
+    approved_by: electrical lead
+    expires: "{expires}"
+{limit_set}"""
+    return OPEN.with_file("waivers.yaml", row)
+
+
+def _of_files() -> Iterator[Outcome]:
+    """Yield findings of a yard's files: YAML, schema, references, revisions, waivers."""
+    (accepted,) = [o for o in _findings(OPEN) if o.check == "maker-device"]
+    good = fingerprint(accepted)
+    yards = [
+        SOUND.with_file("hulls/other.yaml", "hull: [\n"),
+        SOUND.with_file("hulls/other.yaml", "hull: SKIFF-2\nhull: SKIFF-3\nclass: skiff\n"),
+        SOUND.edit("status: in-build", "status: in-build\nsail: red"),
+        SOUND.edit("status: in-build\n", ""),
+        SOUND.edit("feed: P1\n    protect: 5 A", "feed: P1\n    protect: 5"),
+        SOUND.edit("load: plotter", "load: ploter"),
+        SOUND.edit("revision: 2\nstatus", "revision: 1\nstatus"),
+        waived("2026-11-30", good),
+        waived("2027-11-30", "000000000000"),
+    ]
+    for yard in yards:
+        yield from _findings(yard)
+
+
+def _findings(yard: Yard) -> list[Outcome]:
+    result = check_yard(yard)
+    rows = [*result.file_outcomes, *(o for subject in result.subjects if subject.is_hull for o in subject.news)]
+    return [o for o in rows if o.verdict is Verdict.FINDING]
+
+
+def examples_text() -> str:
+    """Return the text of examples.yaml."""
+    return HEAD + yaml.safe_dump(found_examples(), sort_keys=False, allow_unicode=True, width=1000)
+
+
+if __name__ == "__main__":
+    (CHECKS / "examples.yaml").write_text(examples_text(), encoding="utf-8")
+    examples.cache_clear()
+    (CHECKS / "CHECKS.md").write_text(markdown_page(all_cards()), encoding="utf-8")
