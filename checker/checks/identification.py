@@ -83,7 +83,7 @@ def label_ends(case: Case) -> Iterator[Outcome]:
             yield label_ends.found(case, place, told)
     if unknown:
         fault = f"which ends of {len(unknown)} conductors and cables are labelled is not recorded: {named(unknown)}"
-        yield label_ends.not_assessed(case, Place(WORKMANSHIP, case.boat.workmanship.at), fault, "labels")
+        yield label_ends.not_assessed(case, Place(WORKMANSHIP, case.boat.workmanship.at), fault, "workmanship: labels")
 
 
 _RATING = re.compile(r"\b[0-9]+(?:\.[0-9]+)? ?A\b")
@@ -172,7 +172,7 @@ def place_mark(case: Case) -> Iterator[Outcome]:
     for field, names in sorted(unknown.items()):
         what = "place is marked beside each switch" if field == "switch_marks" else "rating is marked at each holder"
         fault = f"whether the {what} is not recorded: {named(names)}"
-        yield place_mark.not_assessed(case, Place(WORKMANSHIP, case.boat.workmanship.at), fault, field)
+        yield place_mark.not_assessed(case, Place(WORKMANSHIP, case.boat.workmanship.at), fault, f"workmanship: {field}")
 
 
 def _told_mark(device: Device, is_fuse: bool, is_main: bool) -> Told:

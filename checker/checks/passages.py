@@ -47,7 +47,7 @@ def passage_guard(case: Case) -> Iterator[Outcome]:
         yield passage_guard.found(case, Place(WORKMANSHIP, usual.at), told)
     if unknown:
         fault = f"what guards conductors at bulkheads is not recorded at {len(unknown)} places: {named(unknown)}"
-        yield passage_guard.not_assessed(case, Place(WORKMANSHIP, usual.at), fault, "passages")
+        yield passage_guard.not_assessed(case, Place(WORKMANSHIP, usual.at), fault, "workmanship: passages")
 
 
 def _passages(case: Case) -> Iterator[tuple[Place, str, bool]]:
@@ -106,7 +106,7 @@ def ac_apart(case: Case) -> Iterator[Outcome]:
         yield ac_apart.not_assessed(case, Place("facts", boat.at_facts), fault, "ac_aboard")
     elif unknown:
         fault = f"what AC lies in {len(unknown)} ways is not recorded: {named(unknown)}"
-        yield ac_apart.not_assessed(case, Place(WORKMANSHIP, boat.workmanship.at), fault, "ac")
+        yield ac_apart.not_assessed(case, Place(WORKMANSHIP, boat.workmanship.at), fault, "workmanship: ac")
 
 
 def _beside_ac(case: Case, way: Way, bare: list[Conductor]) -> Outcome:

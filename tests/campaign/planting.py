@@ -206,6 +206,9 @@ def load_planters() -> None:
 
 # --- planting and judging
 
+HULLS_AT_ONCE = 120
+"""A run holds every pass of its boats, so that a long campaign is checked in several."""
+
 
 @dataclass(frozen=True)
 class Harvest:
@@ -281,7 +284,8 @@ def harvest(design: Design, plants: Sequence[Plant], *, workers: int = 1) -> lis
     A fault of the fleet is checked in a run of its own.
     """
     on_hulls = [plant for plant in plants if not plant.files]
-    found = iter(_harvest_of_hulls(design, on_hulls, workers) if on_hulls else ())
+    batches = [on_hulls[first : first + HULLS_AT_ONCE] for first in range(0, len(on_hulls), HULLS_AT_ONCE)]
+    found = iter([crop for batch in batches for crop in _harvest_of_hulls(design, batch, workers)])
     return [_harvest_of_yard(design, plant) if plant.files else next(found) for plant in plants]
 
 

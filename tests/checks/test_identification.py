@@ -182,7 +182,7 @@ def test_labels_at_both_ends_are_sound() -> None:
 def test_labels_that_are_not_recorded_are_told_once() -> None:
     yard = SOUND.without("labels:")
     assert not_assessed(yard) == [("label-ends", "workmanship", NEITHER, "workmanship:")]
-    assert missing_of(yard, "label-ends") == "labels"
+    assert missing_of(yard, "label-ends") == "workmanship: labels"
 
 
 # --- legend-name
@@ -317,7 +317,7 @@ def test_boat_of_which_nothing_is_recorded_has_no_findings_here() -> None:
     assert told == {
         ("conductor-colour", "colours", "colour (of "),
         ("colour-change", "colours", "colour (of "),
-        ("label-ends", "workmanship", "labels"),
-        ("place-mark", "workmanship", "fuse_marks"),
+        ("label-ends", "workmanship", "workmanship: labels"),
+        ("place-mark", "workmanship", "workmanship: fuse_marks"),
         ("place-mark", "workmanship", "switch_mark"),
     }

@@ -364,7 +364,7 @@ def test_bare_edges_everywhere_are_told_once() -> None:
 def test_passages_that_are_not_recorded_are_told_once() -> None:
     yard = SOUND.without("passages:")
     assert not_assessed(yard) == [("passage-guard", "workmanship", NEITHER, "workmanship:")]
-    assert missing_of(yard, "passage-guard") == "passages"
+    assert missing_of(yard, "passage-guard") == "workmanship: passages"
 
 
 # --- ac-apart
@@ -394,7 +394,7 @@ def test_sheath_round_either_is_sound() -> None:
 def test_ac_that_is_not_recorded_is_told_once() -> None:
     yard = SOUND.without("ac:")
     assert not_assessed(yard) == [("ac-apart", "workmanship", NEITHER, "workmanship:")]
-    assert missing_of(yard, "ac-apart") == "ac"
+    assert missing_of(yard, "ac-apart") == "workmanship: ac"
     unknown = yard.without("ac_aboard:")
     assert missing_of(unknown, "ac-apart") == "ac_aboard"
     assert not_assessed(yard.edit("ac_aboard: true", "ac_aboard: false")) == []

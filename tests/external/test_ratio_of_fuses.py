@@ -27,4 +27,5 @@ def test_the_ratio_of_each_pair_is_the_printed_one(
 
 def test_the_least_ratio_is_the_printed_one_and_the_report_says_what_it_rests_on() -> None:
     assert least_selectivity_ratio() == 1.6
-    assert "1.6·In,lower (IEC 60269-2, gG)" in selectivity.card.citation
+    assert "In,upper ≥ 1.6·In,lower" in selectivity.card.formula
+    assert "IEC 60269-2, gG" in selectivity.card.citation

@@ -347,10 +347,11 @@ def test_the_order_in_which_parts_are_given_changes_nothing(pieces: list[Piece])
 
 
 @pytest.mark.parametrize("set_id", ["cfr33-183-i", "voluntary-dc"])
-def test_the_sound_boat_passes_every_check_that_looks_at_it(set_id: str) -> None:
+def test_nothing_is_found_on_the_sound_boat(set_id: str) -> None:
+    # It is made of figures alone: how it is made (ends, covers, labels) is not recorded.
     told = Counter(o.verdict for o in outcomes_of(a_boat(*sound_pieces()), limit_set=set_id))
-    assert told == {Verdict.PASSED: sum(told.values())}
-    assert sum(told.values()) > 50
+    assert set(told) == {Verdict.PASSED, Verdict.NOT_ASSESSED}
+    assert told[Verdict.PASSED] > 100
 
 
 def test_twice_the_parts_side_by_side_give_each_the_same_verdicts() -> None:
