@@ -7,6 +7,7 @@ the minimal boat if it can be planted there.
 
 from __future__ import annotations
 
+import re
 from collections.abc import Iterator
 from itertools import islice
 from pathlib import Path
@@ -19,6 +20,7 @@ from checker.output.lines import finding_lines
 from checker.pipeline import all_cards
 from checker.result.gather import fingerprint
 from tests.campaign.planting import DESIGNS, FAULTS, harvest, load_planters
+from tests.metric_yard import METRIC
 from tests.small_yard import SOUND, Yard, check_yard
 
 CHECKS = Path(__file__).resolve().parents[1] / "checker" / "checks"
@@ -27,7 +29,12 @@ HEAD = "# An example finding of each check, made by tests/make_checks_page.py. T
 
 def example_lines(card: Card, outcome: Outcome) -> list[str]:
     """Return the lines of a finding, without its fingerprint, which says nothing to a reader of the page."""
-    return [line for line in finding_lines([outcome], card, "", {}) if not line.startswith("  fingerprint:")]
+    lines = finding_lines([outcome], card, "", {})
+    return [_SEED.sub("hulls/a-boat.yaml", line) for line in lines if not line.startswith("  fingerprint:")]
+
+
+_SEED = re.compile(r"hulls/seed-[0-9]+\.yaml")
+"""The file of a planted boat: its number says nothing, and moves with every new planter."""
 
 
 def found_examples() -> dict[str, list[str]]:
@@ -93,8 +100,44 @@ def _of_files() -> Iterator[Outcome]:
         waived("2026-11-30", good),
         waived("2027-11-30", "000000000000"),
     ]
-    for yard in yards:
+    for yard in (*yards, *_others()):
         yield from _findings(yard)
+
+
+OPTION = """\
+option: {name}
+name: an option
+excludes: [{other}]
+changes: {{devices: {{SPARE-{number}: {{part: bus-100, zone: CABIN}}}}}}
+"""
+STATES = "states:\n  house: {kind: normal, switches: {SW-H: closed, SW-S: closed}}\n"
+STATES += "  left: {kind: normal, switches: {SW-H: open, SW-S: open}}\n"
+ISOLATOR = "isolator: {kind: diode, posts: [in, out], passes: [[in, out]], drop: 0.7 V, resistance: 2 mohm}"
+LEAD = "C1: {from: CHARGER.out, to: F-CHARGER.load"
+BEHIND = "C1: {from: CHARGER.out, to: ISO.in, size: 10 AWG, length: 0.3 m, colour: red}\n      C1B: {from: ISO.out"
+
+
+def _others() -> list[Yard]:
+    """Return yards for checks that no planter of the campaign speaks to: other limit sets, options, states."""
+    excluded = SOUND.edit("options: []", "options: [OPT-A, OPT-B]")
+    for number, (name, other) in enumerate((("OPT-A", "OPT-B"), ("OPT-B", "OPT-A"))):
+        text = OPTION.format(name=name, other=other, number=number)
+        excluded = excluded.with_file(f"classes/skiff/options/{number}.yaml", text)
+    end = "circuits:\n  SPARE:\n    name: Spare\n    service: general\n    current: 1 A\n    conductors:\n"
+    end += "      X1: {from: PANEL, to: STUD, size: 6 AWG, length: 6 in, colour: red}\n"
+    return [
+        excluded,
+        SOUND.also(STATES),
+        SOUND.also(f"devices:\n  STUD: {{part: bus-100, zone: CABIN}}\n{end}"),
+        SOUND.also_parts(ISOLATOR).also("devices:\n  ISO: {part: isolator, zone: LOCKER}\n").edit(
+            LEAD, f"{BEHIND}, to: F-CHARGER.load"
+        ),
+        METRIC.edit("to: PANEL, size: 6 AWG, length: 1.5 m", "to: PANEL, size: 6 AWG, length: 1.5 m, supports: 0.6 m"),
+        METRIC.edit("{B: {return: case, max: 60 A, voltage: 14.4 V, limited: true}}",
+                    "{B: {return: case, max: 60 A, voltage: 14.4 V}}\n    internal_fuse: false").edit(
+            "from: ALT.B, to: F-ALT.load, size: 6 AWG, length: ", "from: ALT.B, to: F-ALT.load, size: 6 AWG, length: 1"
+        ),
+    ]  # fmt: skip
 
 
 def _findings(yard: Yard) -> list[Outcome]:

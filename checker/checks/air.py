@@ -6,9 +6,10 @@ from dataclasses import dataclass, field
 
 from checker.boat.hull import Boat, Zone
 from checker.boat.landing import Isolation
-from checker.checks.words import kept_length, short_length
+from checker.checks.words import short_length
 from checker.finding import Measure
 from checker.limits.rules import IgnitionRule
+from checker.units import inch_from_metre
 
 OPEN_SPACE = "open-space"
 
@@ -70,7 +71,7 @@ def judge_claim(boat: Boat, zone: Zone, claim: Isolation, rule: IgnitionRule) ->
     if claim.by == "above":
         return _flag(claim.has_deck_between, "deck_between", "neither a deck nor an enclosure lies between")
     return _both(
-        _least("distance", claim.distance_m, rule.open_space_m, "is the distance"),
+        _least("distance", claim.distance_m, rule.open_space_m, "the distance is"),
         _flag(claim.is_open_to_air, "open_to_air", "the space between is not open to the atmosphere"),
     )
 
@@ -82,7 +83,7 @@ def _bulkhead(claim: Isolation, rule: IgnitionRule) -> ClaimVerdict:
         least_m = min(least_m, claim.height_m / rule.bulkhead_tight_parts)
     elif claim.tight_to_m is not None and not is_tight:
         return _both(ClaimVerdict(missing=("height",)), _gap(claim, rule))
-    return _both(_least("tight_to", claim.tight_to_m, least_m, "is how high it holds water"), _gap(claim, rule))
+    return _both(_least("tight_to", claim.tight_to_m, least_m, "the bulkhead holds water up to"), _gap(claim, rule))
 
 
 def _gap(claim: Isolation, rule: IgnitionRule) -> ClaimVerdict:
@@ -90,8 +91,13 @@ def _gap(claim: Isolation, rule: IgnitionRule) -> ClaimVerdict:
         return ClaimVerdict(missing=("gap",))
     if Measure("", claim.gap_m, rule.bulkhead_gap_m, "m").holds:
         return ClaimVerdict()
-    most = short_length(rule.bulkhead_gap_m)
-    return ClaimVerdict((f"its gaps are {short_length(claim.gap_m)} wide, at most {most}",))
+    most = gap_words(rule.bulkhead_gap_m)
+    return ClaimVerdict((f"its gaps are {gap_words(claim.gap_m)} wide, at most {most} is allowed",))
+
+
+def gap_words(gap_m: float) -> str:
+    """Print the width of a gap in both units: "6.35 mm (1/4 in)" would be lost in metres."""
+    return f"{gap_m * 1000:.2f} mm ({inch_from_metre(gap_m):.2f} in)"
 
 
 def _least(name: str, value_m: float | None, least_m: float, what: str) -> ClaimVerdict:
@@ -99,7 +105,7 @@ def _least(name: str, value_m: float | None, least_m: float, what: str) -> Claim
         return ClaimVerdict(missing=(name,))
     if Measure("", value_m, least_m, "m", at_least=True).holds:
         return ClaimVerdict()
-    return ClaimVerdict((f"{short_length(value_m)} {what}, at least {short_length(least_m)}",))
+    return ClaimVerdict((f"{what} {short_length(value_m)}, at least {short_length(least_m)} is asked",))
 
 
 def _flag(value: bool | None, name: str, fault: str) -> ClaimVerdict:
@@ -117,7 +123,7 @@ def claim_remedy(claim: Isolation, rule: IgnitionRule) -> str:
     part = f"1/{rule.bulkhead_tight_parts:g} of its height"
     mended = {
         "bulkhead": f"close every opening, seal the bulkhead up to {short_length(rule.bulkhead_tight_m)} or {part}, "
-        f"whichever is less, and leave gaps of at most {kept_length(rule.bulkhead_gap_m)} above",
+        f"whichever is less, and leave gaps of at most {gap_words(rule.bulkhead_gap_m)} above",
         "below": "seal the space with no opening, so that neither fuel nor vapour comes to the electrical parts",
         "above": "put a deck or an enclosure between, with no opening in it",
     }.get(claim.by, f"keep {short_length(rule.open_space_m)} of space between that is open to the atmosphere")

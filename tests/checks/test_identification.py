@@ -313,11 +313,11 @@ def test_size_without_a_unit_is_refused() -> None:
 def test_boat_of_which_nothing_is_recorded_has_no_findings_here() -> None:
     boat = a_boat(*sound_pieces(), a_conductor("W9", "BUS-P", "BUS-P", length="0.1 m"), a_bond("B", "BUS-N", "BUS-N"))
     mine = ("conductor-colour", "negative-colour", "colour-change", "label-ends", "place-mark")
-    told = {(o.check, o.part, o.missing[:11]) for o in outcomes_of(boat) if o.check in mine}
+    told = {(o.check, o.part, o.missing.partition(" (")[0]) for o in outcomes_of(boat) if o.check in mine}
     assert told == {
-        ("conductor-colour", "colours", "colour (of "),
-        ("colour-change", "colours", "colour (of "),
+        ("conductor-colour", "colours", "colour"),
+        ("colour-change", "colours", "colour"),
         ("label-ends", "workmanship", "workmanship: labels"),
         ("place-mark", "workmanship", "workmanship: fuse_marks"),
-        ("place-mark", "workmanship", "switch_mark"),
+        ("place-mark", "workmanship", "workmanship: switch_marks"),
     }
