@@ -9,7 +9,6 @@ from __future__ import annotations
 
 import re
 from collections.abc import Iterator
-from itertools import islice
 from pathlib import Path
 
 import yaml
@@ -19,7 +18,8 @@ from checker.output.explain import examples, markdown_page
 from checker.output.lines import finding_lines
 from checker.pipeline import all_cards
 from checker.result.gather import fingerprint
-from tests.campaign.planting import DESIGNS, FAULTS, harvest, load_planters
+from tests.campaign.planting import DESIGNS
+from tests.campaign.tally import first_crops
 from tests.metric_yard import METRIC
 from tests.small_yard import SOUND, Yard, check_yard
 
@@ -49,12 +49,9 @@ def found_examples() -> dict[str, list[str]]:
 
 def _outcomes() -> Iterator[Outcome]:
     """Yield findings: planted ones first, those that only follow from one last."""
-    load_planters()
     following: list[Outcome] = []
     for make in DESIGNS:
-        design = make()
-        plants = [p for _, planters in sorted(FAULTS.items()) for f in planters for p in islice(f(design), 1)]
-        for crop in harvest(design, plants):
+        for crop in (one.harvest for one in first_crops(make)):
             wanted = {tuple(one) for one in crop.plant.finds}
             for outcome, _ in crop.findings:
                 if (outcome.check, outcome.part) in wanted:

@@ -172,7 +172,8 @@ def place_mark(case: Case) -> Iterator[Outcome]:
     for field, names in sorted(unknown.items()):
         what = "place is marked beside each switch" if field == "switch_marks" else "rating is marked at each holder"
         fault = f"whether the {what} is not recorded: {named(names)}"
-        yield place_mark.not_assessed(case, Place(WORKMANSHIP, case.boat.workmanship.at), fault, f"workmanship: {field}")
+        here = Place(WORKMANSHIP, case.boat.workmanship.at)
+        yield place_mark.not_assessed(case, here, fault, f"workmanship: {field}")
 
 
 def _told_mark(device: Device, is_fuse: bool, is_main: bool) -> Told:

@@ -123,3 +123,9 @@ def unsaid_of(case: Case, rule: Check, some: list[Landed], what: str, field: str
     if some:
         fault = f"{count_of(len(some), 'end')}: {what} is not recorded, first {some[0].conductor.id} at {some[0].post}"
         yield rule.not_assessed(case, at_workmanship(case), fault, f"workmanship: {field}")
+
+
+def by_workmanship(case: Case, rule: Check, ends: int) -> Iterator[Outcome]:
+    """Tell once for the class how many ends pass because its workmanship says how they are made."""
+    if ends:
+        yield rule.passed(case, at_workmanship(case), f"{count_of(ends, 'end')} as the class's workmanship says")

@@ -39,7 +39,7 @@ def passage_guard(case: Case) -> Iterator[Outcome]:
         elif passage == BARE:
             yield passage_guard.found(case, place, _told_bare("conductors pass a bulkhead here", place.part))
         else:
-            note = "nothing is passed through" if passage == NO_PASSAGE else passage
+            note = "nothing is passed through" if passage == NO_PASSAGE else ""
             yield passage_guard.passed(case, place, note)
     if usually_bare:
         where = f"at {len(usually_bare)} places ({named(usually_bare)}) conductors pass a bulkhead"
@@ -100,7 +100,7 @@ def ac_apart(case: Case) -> Iterator[Outcome]:
         elif way.ac == BARE:
             yield _beside_ac(case, way, [wire for wire in wires if not wire.cable.is_sheathed])
         else:
-            yield ac_apart.passed(case, Place(way.id, way.at_ac), "no AC" if way.ac == "none" else f"AC {way.ac}")
+            yield ac_apart.passed(case, Place(way.id, way.at_ac))
     if unknown and boat.has_ac is None:
         fault = "whether AC is aboard is not recorded"
         yield ac_apart.not_assessed(case, Place("facts", boat.at_facts), fault, "ac_aboard")

@@ -9,7 +9,7 @@ from checker.boat.hull import Conductor, Device
 from checker.boat.landing import End
 from checker.boat.parts import Battery, Bus, Metal
 from checker.checks.check import Case, Place, Told, at_conductor, check
-from checker.checks.landed import BOLTED, Landed, at_part, by_conductor, kind_of, unsaid_of
+from checker.checks.landed import BOLTED, Landed, at_part, by_conductor, by_workmanship, kind_of, unsaid_of
 from checker.checks.roles import continuous_a
 from checker.checks.words import ampere
 from checker.finding import Basis, Level, Outcome, Span
@@ -45,6 +45,7 @@ def ring_hole(case: Case) -> Iterator[Outcome]:
     unknown_hole: list[Landed] = []
     unknown_end: list[Landed] = []
     threads: dict[str, Landed] = {}
+    by_rule = 0
     for ends in by_conductor(case).values():
         rings = [one for one in ends if one.kind in (*BOLTED, "") and one.end.terminal in (*RINGS, "")]
         if not rings:
@@ -62,8 +63,9 @@ def ring_hole(case: Case) -> Iterator[Outcome]:
         unknown_end += [one for one in unsaid if not one.end.terminal]
         unknown_hole += [one for one in unsaid if one.end.terminal]
         if not (bad or unknown_thread or unsaid):
-            note = "" if all(one.end.hole for one in rings) else "as the class's workmanship says"
-            yield ring_hole.passed(case, at_conductor(rings[0].conductor, rings[0].conductor.at), note)
+            by_rule += sum(not one.end.hole for one in rings)
+            yield ring_hole.passed(case, at_conductor(rings[0].conductor, rings[0].conductor.at))
+    yield from by_workmanship(case, ring_hole, by_rule)
     for one in threads.values():
         fault = f"{one.conductor.id} ends in a ring for {one.end.hole}, the thread of the posts is not recorded"
         field = "screw_thread" if one.on_screw else "stud"
@@ -108,6 +110,7 @@ def barrel_size(case: Case) -> Iterator[Outcome]:
     """
     unsaid: list[Landed] = []
     other_unit: list[Landed] = []
+    by_rule = 0
     for ends in by_conductor(case).values():
         own = [one for one in ends if one.end.terminal not in NO_BARREL]
         told = [(one, _barrel_fault(one.conductor, one.end)) for one in own]
@@ -119,8 +122,9 @@ def barrel_size(case: Case) -> Iterator[Outcome]:
         other_unit += metric
         unsaid += silent
         if own and not metric and not silent and all(fault is None for _, fault in told):
-            note = "as the class's workmanship says" if all(one.end.barrel_as_conductor for one in own) else ""
-            yield barrel_size.passed(case, at_conductor(own[0].conductor, own[0].conductor.at), note)
+            by_rule += sum(one.end.barrel_as_conductor for one in own)
+            yield barrel_size.passed(case, at_conductor(own[0].conductor, own[0].conductor.at))
+    yield from by_workmanship(case, barrel_size, by_rule)
     for one in other_unit:
         text = one.end.barrel.text if one.end.barrel else ""
         fault = f"the barrel at {one.post} is made for {text}, the conductor is {one.conductor.size.text}"

@@ -14,6 +14,7 @@ import random
 import sys
 from collections.abc import Callable, Iterable, Iterator, Sequence
 from dataclasses import dataclass
+from functools import cache
 from pathlib import Path
 from typing import Any
 
@@ -131,6 +132,14 @@ def reap(design: Design, sown: Sequence[Sown], workers: int) -> list[Crop]:
     """Plant everything and return what came of it."""
     crops = harvest(design, [one.plant for one in sown], workers=workers)
     return [Crop(one, crop) for one, crop in zip(sown, crops, strict=True)]
+
+
+@cache
+def first_crops(make: Callable[[], Design], *, sound: bool = False) -> tuple[Crop, ...]:
+    """Return what came of the first place of every planter of faults, or of sound arrangements; reaped once."""
+    load_planters()
+    design = make()
+    return tuple(reap(design, sow(TRAPS if sound else FAULTS, design, 1, None, ()), workers=1))
 
 
 # --- several faults on one boat
