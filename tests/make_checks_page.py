@@ -30,11 +30,13 @@ HEAD = "# An example finding of each check, made by tests/make_checks_page.py. T
 def example_lines(card: Card, outcome: Outcome) -> list[str]:
     """Return the lines of a finding, without its fingerprint, which says nothing to a reader of the page."""
     lines = finding_lines([outcome], card, "", {})
-    return [_SEED.sub("hulls/a-boat.yaml", line) for line in lines if not line.startswith("  fingerprint:")]
+    return [_shown(line) for line in lines if not line.startswith("  fingerprint:")]
 
 
-_SEED = re.compile(r"hulls/seed-[0-9]+\.yaml")
-"""The file of a planted boat: its number says nothing, and moves with every new planter."""
+def _shown(line: str) -> str:
+    """Name the planted files as a yard would: their numbers say nothing, and move with every new planter."""
+    line = re.sub(r"hulls/seed-[0-9]+\.yaml", "hulls/a-boat.yaml", line)
+    return re.sub(r"parts/planted\.yaml:[0-9]+:[0-9]+", "parts/a-part.yaml:2:3", line)
 
 
 def found_examples() -> dict[str, list[str]]:

@@ -112,7 +112,7 @@ def test_every_block_of_the_format_stands_in_the_example(name: str, text: str) -
 
 
 def test_the_format_shows_each_kind_of_block() -> None:
-    assert len(QUOTED) == 7
+    assert len(QUOTED) == 9
 
 
 def test_what_is_not_recorded_is_not_assessed(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:

@@ -10,6 +10,7 @@ python -m tests.campaign.tally CON-04 PRO            only these faults or groups
 from __future__ import annotations
 
 import argparse
+import os
 import random
 import sys
 from collections.abc import Callable, Iterable, Iterator, Sequence
@@ -134,27 +135,31 @@ def reap(design: Design, sown: Sequence[Sown], workers: int) -> list[Crop]:
     return [Crop(one, crop) for one, crop in zip(sown, crops, strict=True)]
 
 
-@cache
 def first_crops(make: Callable[[], Design], *, sound: bool = False) -> tuple[Crop, ...]:
     """Return what came of the first place of every planter of faults, or of sound arrangements; reaped once."""
+    return _first_crops(make, sound)
+
+
+@cache
+def _first_crops(make: Callable[[], Design], sound: bool) -> tuple[Crop, ...]:
     load_planters()
     design = make()
-    return tuple(reap(design, sow(TRAPS if sound else FAULTS, design, 1, None, ()), workers=1))
+    return tuple(reap(design, sow(TRAPS if sound else FAULTS, design, 1, None, ()), workers=os.cpu_count() or 1))
 
 
 # --- several faults on one boat
 
 
-def touched(change: Row, path: tuple[str, ...] = ()) -> set[tuple[str, ...]]:
-    """Return the entries that a change touches: section and id, of a circuit's conductors each one."""
+def touched(change: Row) -> set[tuple[str, ...]]:
+    """Return the entries that a change touches: section and id, and of a trunk circuit each conductor."""
     found: set[tuple[str, ...]] = set()
-    for key, value in change.items():
-        here = (*path, key)
-        deep = here[:1] == ("circuits",) and (len(here) == 2 or here[2:] == ("conductors",))
-        if isinstance(value, dict) and (len(here) == 1 or deep):
-            found |= touched(value, here)
-        else:
-            found.add(here)
+    for section, rows in change.items():
+        for name, row in rows.items() if isinstance(rows, dict) else ():
+            inner = set(row) if isinstance(row, dict) else set()
+            if section == "circuits" and inner == {"conductors"}:
+                found |= {(section, name, "conductors", wire) for wire in row["conductors"]}
+            else:
+                found.add((section, name))
     return found
 
 
