@@ -125,7 +125,10 @@ def test_what_is_not_recorded_is_not_assessed(tmp_path: Path, capsys: pytest.Cap
     assert main(["check", str(tmp_path), "--only", "TND-031", *TODAY]) == 0
     printed = capsys.readouterr().out
     found = re.findall(r"^not assessed: (\S+).*\[(.*)\]\n(?:  .*\n)*?  fill in: (.*)$", printed, flags=re.MULTILINE)
-    assert sorted((check, field) for _, check, field in found) == [("shield-loop", "shields"), ("shunt-bypass", "shields")]
+    assert sorted((check, field) for _, check, field in found) == [
+        ("shield-loop", "shields"),
+        ("shunt-bypass", "shields"),
+    ]
 
 
 def test_ci_runs_the_tests_by_the_command_of_the_readme() -> None:

@@ -28,12 +28,24 @@ def claimed(claim: str) -> Yard:
 @pytest.mark.parametrize(
     ("claim", "told"),
     [
-        ("{by: bulkhead, height: 4 ft, tight_to: 11.9 in, gap: 6 mm}", "holds water up to 0.302 m (11.9 in), at least 0.305 m"),
-        ("{by: bulkhead, height: 30 in, tight_to: 9.9 in, gap: 6 mm}", "holds water up to 0.251 m (9.9 in), at least 0.254 m"),
-        ("{by: bulkhead, height: 4 ft, tight_to: 12 in, gap: 6.4 mm}", "its gaps are 6.40 mm (0.25 in) wide, at most 6.35 mm"),
+        (
+            "{by: bulkhead, height: 4 ft, tight_to: 11.9 in, gap: 6 mm}",
+            "holds water up to 0.302 m (11.9 in), at least 0.305 m",
+        ),
+        (
+            "{by: bulkhead, height: 30 in, tight_to: 9.9 in, gap: 6 mm}",
+            "holds water up to 0.251 m (9.9 in), at least 0.254 m",
+        ),
+        (
+            "{by: bulkhead, height: 4 ft, tight_to: 12 in, gap: 6.4 mm}",
+            "its gaps are 6.40 mm (0.25 in) wide, at most 6.35 mm",
+        ),
         ("{by: below, sealed: false}", "fuel and vapour are not kept"),
         ("{by: above, deck_between: false}", "neither a deck nor an enclosure"),
-        ("{by: open-space, distance: 1.9 ft, open_to_air: true}", "the distance is 0.579 m (22.8 in), at least 0.610 m"),
+        (
+            "{by: open-space, distance: 1.9 ft, open_to_air: true}",
+            "the distance is 0.579 m (22.8 in), at least 0.610 m",
+        ),
         ("{by: open-space, distance: 2 ft, open_to_air: false}", "not open to the atmosphere"),
     ],
 )
