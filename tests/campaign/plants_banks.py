@@ -201,7 +201,7 @@ def landing_between_batteries(design: Design) -> Iterator[Plant]:
 @fault("BNK-06")
 def thin_link(design: Design) -> Iterator[Plant]:
     """A link or string cable is too thin for what the rest of the bank gives with one string out."""
-    follows = (*THINNER, "even-shares", "ampacity")
+    follows = (*THINNER, "even-shares", "ampacity", "stack-order")  # its thin ring lies below thick ones
     if design.is_small:
         change = row_of(2, size="16 AWG", current="5 A")
         yield Plant(change, finds=[("bank-links", "LP1"), ("bank-links", "LN1")], line="16 AWG", follows=follows)
@@ -222,7 +222,11 @@ def lithium_strings_without_devices(design: Design) -> Iterator[Plant]:
         return
     part, parts = design.part_like("bat-house-6v", {"chemistry": "lithium-iron-phosphate"})
     yield Plant(at("devices", {name: {"part": part} for name in house_batteries(design)}), finds=finds, parts=parts)
-    yield Plant(three_strings()[0], finds=finds, follows=("even-shares", "solved-drop", "interrupting-capacity"))
+    yield Plant(
+        three_strings()[0],
+        finds=finds,
+        follows=("even-shares", "solved-drop", "interrupting-capacity", "monitor-settings"),
+    )
 
 
 # --- switches

@@ -43,6 +43,7 @@ CUT_OFF = (
     "solved-drop", "solved-rating", "solved-ampacity", "shunt-rating",
     "protection-distance", "size-step", "double-feed", "device-rating", "device-bypass", "unprotected-conductor",
     "conductor-withstand",
+    "sense-place",  # the regulator still senses where the alternator was
 )  # fmt: skip
 """What else a charge source behind the battery switch breaks."""
 

@@ -31,6 +31,7 @@ THINNER = (
     "conductor-withstand", "far-end-clearing",  # less copper: less withstood, more resistance
     "lost-return",  # bears less of a diverted current
     "rating-order", "selectivity",
+    "stack-order",  # its ring is now thinner than those that lie above it
 )  # fmt: skip
 """What else a thinner conductor breaks."""
 
@@ -81,7 +82,8 @@ def engine_space_forgotten(design: Design) -> Iterator[Plant]:
         if crosses_engine_space(design, row):
             between_a = AMPACITY_A[row["size"]] * (1 + ENGINE_FACTOR) / 2
             change = at(*path, {"current": f"{between_a:.1f} A"})
-            yield Plant(change, finds=[("ampacity", name)], line=row["size"], follows=DROPS)
+            # Its fuse stands in the heat as well.
+            yield Plant(change, finds=[("ampacity", name)], line=row["size"], follows=(*DROPS, "hot-device"))
 
 
 @fault("CON-03")

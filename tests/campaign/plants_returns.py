@@ -51,7 +51,13 @@ def two_mains_on_one_thin_return(design: Design) -> Iterator[Plant]:
             )
             continue
         finds = [("return-protection", carrier), ("solved-ampacity", carrier)]
-        follows = (*THINNER, *DROPS, "minimum-voltage", "solved-rating")  # the bus carries the sum as well
+        follows = (
+            *THINNER,
+            *DROPS,
+            "minimum-voltage",
+            "solved-rating",
+            "terminal-range",
+        )  # bus and post have the sum too
         yield Plant(change, finds=finds, follows=follows)
 
 

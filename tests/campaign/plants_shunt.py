@@ -108,7 +108,9 @@ def bond_past_the_shunt(design: Design) -> Iterator[Plant]:
     for post in BANK_SIDE[design.name]:
         strap = {"from": start, "to": post, "size": "8 AWG", "length": "1 m", "colour": "green"}
         finds = [("shunt-bypass", "STRAP")]
-        yield Plant(at("bonds", "STRAP", strap), finds=finds, follows=(*PAST, "solved-ampacity", "shunt-rating"))
+        # The bonding meets DC negative twice and carries a share of what the shunt carries.
+        follows = (*PAST, "solved-ampacity", "shunt-rating", "bond-joints", "bond-current")
+        yield Plant(at("bonds", "STRAP", strap), finds=finds, follows=follows)
 
 
 @fault("SHU-06")

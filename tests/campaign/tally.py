@@ -41,6 +41,8 @@ from tests.campaign.planting import (
 CATALOGUE = Path(__file__).with_name("fault_catalogue.yaml")
 EVERY_PLACE = 1_000_000
 FAULTS_ON_ONE_BOAT = 3
+DRAWS = 50
+"""How often faults are drawn for one boat before it is given up."""
 SOUND = "sound arrangements and twins"
 """The group of what must stay silent: the catalogue's, and twins of faults that are just not at fault."""
 
@@ -164,44 +166,63 @@ def touched(change: Row) -> set[tuple[str, ...]]:
 
 
 def together(crops: Sequence[Crop], boats: int, seed: int) -> list[Sown]:
-    """Draw boats that carry several faults in different entries, each of which was found alone.
+    """Draw boats that carry several faults of different groups in different entries, each of which was found alone.
 
     What one fault lets follow may follow here too, and what is found of each alone may be told
     in other words; so a boat is as planted if every planted fault is found, and nothing else is
-    but what was found of one of them, or may follow.
+    but what was found of one of them, or may follow. One fault can hide another all the same: a
+    main fuse left out, the sum of two fuses.
     """
     drawn = random.Random(seed)
     sound = [crop for crop in crops if crop.harvest.is_as_planted and crop.sown.plant.change and crop.sown.plant.finds]
-    alone = [crop for crop in sound if not _is_alone(crop)]
+    fit = [crop for crop in sound if not _is_alone(crop)]
     found: list[Sown] = []
-    while alone and len(found) < boats:
-        some = drawn.sample(alone, min(FAULTS_ON_ONE_BOAT, len(alone)))
-        plants = [crop.sown.plant for crop in some]
-        entries = [touched(plant.change) for plant in plants]
-        if (
-            any(a & b for i, a in enumerate(entries) for b in entries[:i])
-            or len({tuple(p.options) for p in plants}) > 1
-        ):
-            continue
-        follows = {check for crop in some for check in crop.sown.plant.follows}
-        follows |= {outcome.check for crop in some for outcome, _ in crop.harvest.findings}
-        whole = Plant(
-            merged(*(plant.change for plant in plants)),
-            finds=[one for plant in plants for one in plant.finds],
-            follows=sorted(follows),
-            parts={name: row for plant in plants for name, row in plant.parts.items()},
-            options=plants[0].options,
-        )
-        ids = tuple(sorted({name for crop in some for name in crop.sown.ids}))
-        found.append(Sown(ids, " + ".join(crop.sown.planter for crop in some), some[0].sown.design, whole))
+    for _ in range(boats * DRAWS if len(fit) >= FAULTS_ON_ONE_BOAT else 0):
+        some = drawn.sample(fit, FAULTS_ON_ONE_BOAT)
+        if len(found) == boats:
+            break
+        if not any(_meet(a.sown, b.sown) for i, a in enumerate(some) for b in some[:i]):
+            found.append(_on_one_boat(some))
     return found
 
 
-def _is_alone(crop: Crop) -> bool:
-    """Tell whether a fault leaves nothing to say about the rest of its boat: shorted or disagreeing batteries."""
-    return bool(
-        {outcome.check for outcome, _ in crop.harvest.findings} & {"dead-short", "battery-loop", "working-point"}
+def _on_one_boat(some: Sequence[Crop]) -> Sown:
+    plants = [crop.sown.plant for crop in some]
+    follows = {check for crop in some for check in crop.sown.plant.follows}
+    follows |= {outcome.check for crop in some for outcome, _ in crop.harvest.findings}
+    whole = Plant(
+        merged(*(plant.change for plant in plants)),
+        finds=[one for plant in plants for one in plant.finds],
+        follows=sorted(follows),
+        parts={name: row for plant in plants for name, row in plant.parts.items()},
+        options=plants[0].options,
     )
+    ids = tuple(sorted({name for crop in some for name in crop.sown.ids}))
+    return Sown(ids, " + ".join(crop.sown.planter for crop in some), some[0].sown.design, whole)
+
+
+def _meet(one: Sown, other: Sown) -> bool:
+    """Tell whether two faults are of one group, touch one entry, or one touches what the other is found at."""
+    if {name[:3] for name in one.ids} & {name[:3] for name in other.ids}:
+        return True
+    if list(one.plant.options) != list(other.plant.options) or set(one.plant.parts) & set(other.plant.parts):
+        return True
+    entries, others = touched(one.plant.change), touched(other.plant.change)
+    names, other_names = ({name for entry in some for name in entry[1:]} for some in (entries, others))
+    is_at_names = any(_owner(part) in other_names for _, part in one.plant.finds)
+    is_at_others = any(_owner(part) in names for _, part in other.plant.finds)
+    return bool(names & other_names - {"conductors"}) or is_at_names or is_at_others
+
+
+def _owner(part: str) -> str:
+    """Return the entry that a part of a finding belongs to: P11 for "P11.out", P3 for "P3 under F-PANEL"."""
+    return part.split(" ", maxsplit=1)[0].split(".", maxsplit=1)[0]
+
+
+def _is_alone(crop: Crop) -> bool:
+    """Tell whether a fault leaves nothing to say about the rest of its boat: a faulty file, shorted batteries."""
+    checks = {outcome.check for outcome, _ in crop.harvest.findings}
+    return not crop.harvest.hull_is_studied or bool(checks & {"dead-short", "battery-loop", "working-point"})
 
 
 # --- the tally
