@@ -207,11 +207,20 @@ def _meet(one: Sown, other: Sown) -> bool:
         return True
     if list(one.plant.options) != list(other.plant.options) or set(one.plant.parts) & set(other.plant.parts):
         return True
+    if _conductors(one.plant.change) & _conductors(other.plant.change):
+        return True
     entries, others = touched(one.plant.change), touched(other.plant.change)
     names, other_names = ({name for entry in some for name in entry[1:]} for some in (entries, others))
     is_at_names = any(_owner(part) in other_names for _, part in one.plant.finds)
     is_at_others = any(_owner(part) in names for _, part in other.plant.finds)
     return bool(names & other_names - {"conductors"}) or is_at_names or is_at_others
+
+
+def _conductors(change: Row) -> set[str]:
+    """Return the conductors that a change writes, in whatever circuit: an id stands once aboard."""
+    found = {*change.get("conductors", {}), *change.get("bonds", {})}
+    rows = [row for row in change.get("circuits", {}).values() if isinstance(row, dict)]
+    return found.union(*(row.get("conductors") or {} for row in rows))
 
 
 def _owner(part: str) -> str:

@@ -19,7 +19,7 @@ load_planters()
 IS_LONG = os.environ.get("FAIRLOOM_CAMPAIGN") == "long"
 BOATS = 200
 SEED = 1
-MOST_HIDDEN = 0.03
+MOST_MINGLED = 0.03
 
 
 @pytest.mark.parametrize("make", DESIGNS, ids=lambda make: make.__name__)
@@ -37,12 +37,10 @@ def test_what_is_planted_is_found_and_nothing_else(kind: dict[str, list[Planter]
 
 @pytest.mark.skipif(not IS_LONG, reason="FAIRLOOM_CAMPAIGN=long")
 def test_several_faults_on_one_boat_are_found_and_nothing_else() -> None:
-    """One fault may hide another; more than a few in a hundred would be a check that gives up."""
+    """One fault may hide another, or two make a third; more than a few in a hundred would be a check that gives up."""
     _, several = campaign(places=3, seed=SEED, workers=2, boats=BOATS, designs=DESIGNS[1:])
-    strange = [str(crop) for crop in several if crop.harvest.extra or crop.harvest.misplaced]
-    assert not strange, "\n".join([f"{len(strange)} of {len(several)} boats", *strange])
-    hidden = [str(crop) for crop in several if crop.harvest.missing]
-    assert len(hidden) <= MOST_HIDDEN * len(several), "\n".join(hidden)
+    wrong = [str(crop) for crop in several if not crop.harvest.is_as_planted]
+    assert len(wrong) <= MOST_MINGLED * len(several), "\n".join([f"{len(wrong)} of {len(several)} boats", *wrong])
 
 
 @pytest.mark.parametrize("kind", [FAULTS, TRAPS], ids=["faults", "traps"])
