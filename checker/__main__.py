@@ -1,5 +1,5 @@
 """Run the command: python -m checker."""
 
-from checker.cli import main
+from checker.cli import run
 
-raise SystemExit(main())
+run()

@@ -3,14 +3,27 @@
 from __future__ import annotations
 
 import argparse
+import contextlib
+import gc
 import os
 import sys
 from collections.abc import Sequence
 from pathlib import Path
+from typing import NoReturn
 
 from checker import __version__
 
 CLEAN, OPEN_ERRORS, NOT_DONE = 0, 1, 2
+
+
+def run() -> NoReturn:
+    """Run the command and end the process at once: to take a fleet apart object by object costs a tenth of a run."""
+    gc.disable()
+    status = main()
+    for stream in (sys.stdout, sys.stderr):
+        with contextlib.suppress(OSError):
+            stream.flush()
+    os._exit(status)
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
@@ -92,6 +105,7 @@ def _check(options: argparse.Namespace) -> int:
         only=options.only,
         workers=options.workers or os.cpu_count() or 1,
         progress=progress if sys.stderr.isatty() else None,
+        lists_passes=bool(options.reports),
     )
     progress.clear()
     cards = {card.id: card for card in all_cards()}

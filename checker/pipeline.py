@@ -54,6 +54,7 @@ class Studied:
 
     news: tuple[Outcome, ...] = ()
     passes: tuple[Outcome, ...] = ()
+    passed: int = 0
     thin: int = 0
     sets: tuple[SetUse, ...] = ()
     ladder: tuple[Rung, ...] = ()
@@ -78,6 +79,7 @@ def check_fleet(
     only: Collection[str] = (),
     workers: int = 1,
     progress: Progress | None = None,
+    lists_passes: bool = True,
 ) -> FleetResult:
     """Check a yard's fleet: every hull, and every legal option set of every class.
 
@@ -87,6 +89,7 @@ def check_fleet(
         only: Ids of the hulls to check; empty for the whole fleet.
         workers: How many processes study boats side by side; the result does not depend on it.
         progress: Called with the number of boats studied and their total.
+        lists_passes: Whether the result holds each pass, as reports need, or only their number.
 
     Raises:
         FleetNotFoundError: If the folder holds no yard.
@@ -99,7 +102,8 @@ def check_fleet(
         subjects = _chosen(assembly, files, only)
         entered, table_faults = read_entered(files.limits, files.faulty)
         rules = _house(files, assembly, entered)
-        bench = _Bench(assembly, catalogue, rules.house, _adopted(files), _limit_sets(entered, rules))
+        sets = _limit_sets(entered, rules)
+        bench = _Bench(assembly, catalogue, rules.house, _adopted(files), sets, lists_passes=lists_passes)
         keys = list(dict.fromkeys(subject.key for subject in subjects))
         if part_faults:
             keys = []
@@ -173,7 +177,10 @@ class _Bench:
         house: House,
         adopted: tuple[str, ...],
         sets: Mapping[str, LimitSet],
+        *,
+        lists_passes: bool,
     ) -> None:
+        self._lists_passes = lists_passes
         self._content = assembly.content
         self._class_of = {subject.key: subject.class_id for subject in assembly.subjects}
         self._catalogue = catalogue
@@ -190,11 +197,18 @@ class _Bench:
         limits = tuple(self._sets[use.id] for use in sets)
         studies = study_boat(boat)
         outcomes = run_checks(studies, limits, self._house)
-        passes = pass_order(outcomes)
-        thin = sum(outcome.is_thin for outcome in passes)
+        passed = [outcome for outcome in outcomes if outcome.verdict is Verdict.PASSED]
         ladder = studies.ladder
-        tight = tightest(ladder, outcomes)
-        return Studied(news_order(outcomes), passes, thin, sets, ladder, tight, lengths_of(boat))
+        return Studied(
+            news=news_order(outcomes),
+            passes=pass_order(passed) if self._lists_passes else (),
+            passed=len(passed),
+            thin=sum(outcome.is_thin for outcome in passed),
+            sets=sets,
+            ladder=ladder,
+            tightest=tightest(ladder, outcomes),
+            lengths=lengths_of(boat),
+        )
 
 
 def study_boat(boat: Boat) -> Studies:
@@ -352,6 +366,7 @@ class _Gatherer:
                     news=news_order([*waived.outcomes, *own]),
                     own=news_order(own),
                     passes=study.passes,
+                    passed=study.passed,
                     thin=study.thin,
                     ladder=study.ladder,
                     tightest=study.tightest,

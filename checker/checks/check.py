@@ -105,10 +105,15 @@ class Case:
     memo: dict[str, Any] = field(default_factory=dict, compare=False, repr=False)
     """What several checks of one case reckon once: keyed by the name of the reckoning."""
 
-    @property
+    @cached_property
     def boat(self) -> Boat:
         """Return the boat."""
         return self.studies.boat
+
+    @cached_property
+    def thin_fraction(self) -> float:
+        """Return the share of a limit below which headroom is thin."""
+        return thin_margin_fraction(self.house.common)
 
     @cached_property
     def bearings(self) -> Bearings:
@@ -184,40 +189,43 @@ class Check:
     ) -> Outcome:
         """Compare a value with its limit; `otherwise` tells the finding if the limit is not kept."""
         if measure.holds:
-            thin = is_thin(measure, thin_margin_fraction(case.house.common))
-            return self._outcome(case, place, Verdict.PASSED, measure=measure, note=note, is_thin=thin)
+            return self._passed(case, place, measure, note, is_thin=is_thin(measure, case.thin_fraction))
         told = otherwise()
         return self.found(case, place, told, measure)
 
     def found(self, case: Case, place: Place, told: Told, measure: Measure | None = None) -> Outcome:
         """Return a finding."""
-        return self._outcome(
+        return self._news(
             case, place, Verdict.FINDING, measure=measure, fault=told.fault, remedy=told.remedy,
             path=told.path, inputs=told.inputs, note=told.note, also_at=told.also_at,
+            house=case.house.told(self.card.id, self._set_of(case), self.needs) if case.house.changes else (),
         )  # fmt: skip
 
     def passed(self, case: Case, place: Place, note: str = "") -> Outcome:
         """Return a pass that has no figure, or that an exemption gives; the note says which."""
-        return self._outcome(case, place, Verdict.PASSED, note=note)
+        return self._passed(case, place, None, note, is_thin=False)
 
     def not_assessed(self, case: Case, place: Place, fault: str, missing: str) -> Outcome:
         """Return that a place could not be judged, and the field to fill in."""
-        return self._outcome(case, place, Verdict.NOT_ASSESSED, fault=fault, missing=missing)
+        return self._news(case, place, Verdict.NOT_ASSESSED, fault=fault, missing=missing)
 
-    def _outcome(
-        self, case: Case, place: Place, verdict: Verdict, *, measure: Measure | None = None, fault: str = "",
-        remedy: str = "", path: tuple[str, ...] = (), inputs: tuple[tuple[str, str], ...] = (),
-        missing: str = "", note: str = "", also_at: tuple[Span, ...] = (), is_thin: bool = False,
-    ) -> Outcome:  # fmt: skip
-        limit_set = case.limits.id if self.is_per_set else ""
-        is_finding = verdict is Verdict.FINDING
-        house = case.house.told(self.card.id, limit_set, self.needs) if is_finding and case.house.changes else ()
-        rests_on = case.limits.cited(self.needs) if limit_set and self.needs and verdict is not Verdict.PASSED else ""
+    def _set_of(self, case: Case) -> str:
+        return case.limits.id if self.is_per_set else ""
+
+    def _passed(self, case: Case, place: Place, measure: Measure | None, note: str, *, is_thin: bool) -> Outcome:
+        # By position, since nearly all outcomes of a fleet are made here and names cost a third more.
+        return Outcome(
+            Verdict.PASSED, self.card.id, self.card.level, place.part, place.at,
+            case.limits.id if self.is_per_set else "", place.circuit, measure, "", "", place.state, (), "", note,
+            (), (), is_thin,
+        )  # fmt: skip
+
+    def _news(self, case: Case, place: Place, verdict: Verdict, **facts: Any) -> Outcome:
+        limit_set = self._set_of(case)
         return Outcome(
             verdict=verdict, check=self.card.id, level=case.house.levels.get(self.card.id, self.card.level),
-            part=place.part, at=place.at, limit_set=limit_set, circuit=place.circuit, measure=measure,
-            fault=fault, remedy=remedy, state=place.state, path=path, missing=missing, note=note, inputs=inputs,
-            also_at=also_at, is_thin=is_thin, house=house, rests_on=rests_on,
+            part=place.part, at=place.at, limit_set=limit_set, circuit=place.circuit, state=place.state,
+            rests_on=case.limits.cited(self.needs) if limit_set and self.needs else "", **facts,
         )  # fmt: skip
 
 
@@ -279,7 +287,7 @@ def at_conductor(conductor: Conductor, at: Span | None = None, state: str = "") 
 
 def is_thin(measure: Measure, thin_fraction: float) -> bool:
     """Tell whether a limit is kept with little to spare."""
-    if measure.is_stepped or not measure.holds:
+    if measure.is_stepped:
         return False
     headroom = measure.headroom_fraction
-    return headroom is not None and headroom < thin_fraction
+    return headroom is not None and 0 <= headroom < thin_fraction

@@ -8,9 +8,9 @@ allows.
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass, replace
 from enum import Enum
 from functools import cached_property
+from typing import NamedTuple
 
 from checker.boat.hull import Conductor
 from checker.checks.bearing import SIZING
@@ -50,8 +50,7 @@ class Kind(Enum):
         return self.value[0]
 
 
-@dataclass(frozen=True, slots=True)
-class Feeding:
+class Feeding(NamedTuple):
     """Hold the verdict on one conductor under one limit set, in the state where it is worst."""
 
     kind: Kind
@@ -129,13 +128,12 @@ class _State:
         exposure = self._study.exposures[edge.index]
         found = Feeding(Kind.PROTECTED, conductor, exposure.worst_a, self._allowed[edge.part], self._state)
         if edge.part in self._exempt:
-            return replace(found, kind=Kind.EXEMPT, note=self._exempt[edge.part])
+            return found._replace(kind=Kind.EXEMPT, note=self._exempt[edge.part])
         if exposure.worst_a <= found.allowed_a * (1 + 1e-9):
-            return replace(found, kind=Kind.NO_FIGURE) if found.allowed_a == UNKNOWN_ALLOWED_A else found
+            return found._replace(kind=Kind.NO_FIGURE) if found.allowed_a == UNKNOWN_ALLOWED_A else found
         if conductor.role == BANK and role_holds(self._case, conductor):
-            return replace(
-                found, kind=Kind.EXEMPT, note="part of its bank: its length counts into what leaves the bank"
-            )
+            note = "part of its bank: its length counts into what leaves the bank"
+            return found._replace(kind=Kind.EXEMPT, note=note)
         return self._beyond(edge, found)
 
     def _beyond(self, edge: Edge, found: Feeding) -> Feeding:
@@ -147,22 +145,22 @@ class _State:
         exposure = self._study.exposures[edge.index]
         node = edge.a if exposure.at_a >= exposure.at_b else edge.b
         terms = tuple(self._study.terms(edge, node))
-        found = replace(found, run=run, limit_m=limit_m, terms=terms)
+        found = found._replace(run=run, limit_m=limit_m, terms=terms)
         kind = Kind.FAR if run.device else Kind.OPEN
         if not math.isinf(found.reaching_a):
             kind = self._finite_kind(edge, node, terms, found.allowed_a)
         is_onward = not run.device and edge.part in self._onward
         if is_onward and (kind is not Kind.RATING or edge.part in self._near_onward):
             note = "its length is judged at the device it leads to"
-            return replace(found, kind=Kind.SHORT, terms=(), limit_m=0.0, note=note)
-        return replace(found, kind=kind)
+            return found._replace(kind=Kind.SHORT, terms=(), limit_m=0.0, note=note)
+        return found._replace(kind=kind)
 
     def _near(self, run: Run, limit_m: float, found: Feeding) -> Feeding:
         rule = self._case.limits.distance
         reason = any(self._case.boat.conductors[name].place_reason for name in run.conductors)
-        near = replace(found, kind=Kind.SHORT, run=run, limit_m=limit_m)
+        near = found._replace(kind=Kind.SHORT, run=run, limit_m=limit_m)
         if rule.needs_reason and run.length_m > rule.open_m * (1 + 1e-9) and not reason:
-            return replace(near, kind=Kind.NO_REASON)
+            return near._replace(kind=Kind.NO_REASON)
         return near
 
     def _limit_m(self, run: Run) -> float:

@@ -9,11 +9,11 @@ from checker.boat.parts import Bus, Diode, Load, Overcurrent, Switch
 from checker.checks.bearing import SIZING
 from checker.checks.check import Case, Place, Told, at_conductor, check
 from checker.checks.drops import drop_limit, nominal_v
+from checker.checks.heaviest import NEVER, Largest, heaviest
 from checker.checks.remedy import gauges, smallest_gauge, together
 from checker.checks.roles import EXEMPTIONS, exempt_as
 from checker.checks.words import BATTERY_FIGURES, ampere, percent, plain
 from checker.finding import Basis, Level, Measure, Outcome
-from checker.limits.limit_set import surge_s
 from checker.network.conditions import Draw, Feed
 from checker.network.flow import Flow, NoOperatingPoint
 from checker.network.graph import EdgeKind
@@ -27,10 +27,6 @@ SERIES_FRACTION = 0.99
 
 def _solved(case: Case) -> tuple[Solved, ...]:
     return case.studies.conditions.solved
-
-
-def _is_surge(case: Case, solved: Solved) -> bool:
-    return not solved.lasts_beyond(surge_s(case.house.common))
 
 
 def _unknown(case: Case) -> str:
@@ -98,32 +94,18 @@ def solved_ampacity(case: Case) -> Iterator[Outcome]:
     """
     if _unknown(case):
         return  # told once, by the working point
-    worst = _worst_currents(case)
+    lasting, _ = heaviest(case)
+    edges = case.studies.network.edges_of
     roles = case.limits.exemptions.ampacity_exempt_roles
     for conductor in case.boat.conductors.values():
         bearing = case.bearings.of(conductor)
         if bearing is None or exempt_as(case, conductor, roles, "ampacity_exempt_roles"):
             continue
-        current_a, condition = worst.get(conductor.id, (0.0, ""))
+        found = (lasting.edges.get(edge.index, NEVER) for edge in edges[conductor.id])
+        current_a, condition = max(found, key=lambda largest: largest[0], default=NEVER)
+        if current_a <= 0:
+            current_a, condition = 0.0, ""
         yield _judge_solved(case, conductor, current_a, condition, bearing.ampacity_a, bearing.words)
-
-
-def _worst_currents(case: Case) -> dict[str, tuple[float, str]]:
-    """Return for each part the largest current over the lasting conditions, and the condition."""
-    if "worst currents" not in case.studies.network.memo:
-        worst: dict[str, tuple[float, str]] = {}
-        edges = case.studies.network.edges
-        for solved in _solved(case):
-            if _is_surge(case, solved):
-                continue
-            for flow in solved.flows():
-                for index, current_a in flow.currents_a.items():
-                    part = edges[index].part
-                    if abs(current_a) > worst.get(part, (0.0, ""))[0]:
-                        worst[part] = (abs(current_a), solved.operation.condition.id)
-        case.studies.network.memo["worst currents"] = worst
-    found: dict[str, tuple[float, str]] = case.studies.network.memo["worst currents"]
-    return found
 
 
 def _judge_solved(
@@ -361,15 +343,16 @@ def solved_rating(case: Case) -> Iterator[Outcome]:
     """
     if _unknown(case):
         return
-    worst: dict[tuple[str, bool], tuple[float, str]] = {}
-    for solved in _solved(case):
-        for name, current_a in _part_currents(case, solved):
-            key = (name, _is_surge(case, solved))
-            if current_a > worst.get(key, (-1.0, ""))[0]:
-                worst[key] = (current_a, solved.operation.condition.id)
-    for (name, is_surge), (current_a, condition) in sorted(worst.items()):
+    worst: dict[tuple[str, bool], Largest] = {}
+    for found, brief in zip(heaviest(case), (False, True), strict=True):
+        for edge in case.studies.network.edges:
+            if edge.kind in (EdgeKind.CONTACT, EdgeKind.DEVICE, EdgeKind.DIODE) and edge.index in found.edges:
+                key = (edge.part, brief)
+                worst[key] = max(worst.get(key, NEVER), found.edges[edge.index], key=lambda largest: largest[0])
+        worst |= {(name, brief): largest for name, largest in found.buses.items()}
+    for (name, brief), (current_a, condition) in sorted(worst.items()):
         device = case.boat.devices[name]
-        limit_a = _rating_a(device.part, is_surge)
+        limit_a = _rating_a(device.part, brief)
         if limit_a is None:
             continue
         told = Told(
@@ -377,29 +360,18 @@ def solved_rating(case: Case) -> Iterator[Outcome]:
             remedy="a larger part, a second feeder, or less in this condition",
             inputs=(("condition", condition), ("current", ampere(current_a)), ("rating", ampere(limit_a))),
         )
-        part = f"{name} for seconds" if is_surge else name
+        part = f"{name} for seconds" if brief else name
         place = Place(part, device.at_rating, device.circuit, f"condition {condition}")
         measure = Measure("solved current", current_a, limit_a, "A")
         yield solved_rating.judge(case, place, measure, lambda told=told: told)  # type: ignore[misc]
 
 
-def _part_currents(case: Case, solved: Solved) -> Iterator[tuple[str, float]]:
-    for flow in solved.flows():
-        edges = case.studies.network.edges
-        for index, current_a in flow.currents_a.items():
-            if edges[index].kind in (EdgeKind.CONTACT, EdgeKind.DEVICE, EdgeKind.DIODE):
-                yield edges[index].part, abs(current_a)
-        for device in case.boat.devices.values():
-            if isinstance(device.part, Bus):
-                yield device.id, flow.through_place(case.studies.network.index[device.id])
-
-
-def _rating_a(part: object, is_surge: bool) -> float | None:
+def _rating_a(part: object, brief: bool) -> float | None:
     if isinstance(part, Switch):
-        return part.intermittent_a if is_surge else part.continuous_a
+        return part.intermittent_a if brief else part.continuous_a
     if isinstance(part, Diode):
-        return None if is_surge else part.continuous_a
-    if is_surge or not isinstance(part, (Bus, Overcurrent)):
+        return None if brief else part.continuous_a
+    if brief or not isinstance(part, (Bus, Overcurrent)):
         return None
     return part.rating_a
 
@@ -413,16 +385,18 @@ def _rating_a(part: object, is_surge: bool) -> float | None:
 )
 def polarised_device(case: Case) -> Iterator[Outcome]:
     """Does every polarised device carry current from its line post to its load post in every condition?"""
+    polarised = {d.id for d in case.boat.devices.values() if isinstance(d.part, Overcurrent) and d.part.polarised}
     backward: dict[str, tuple[float, str]] = {}
-    if not _unknown(case):
+    if polarised and not _unknown(case):
+        edges = [e for e in case.studies.network.edges if e.kind is EdgeKind.DEVICE and e.part in polarised]
         for solved in _solved(case):
             for flow in solved.flows():
-                for index, current_a in flow.currents_a.items():
-                    edge = case.studies.network.edges[index]
-                    if edge.kind is EdgeKind.DEVICE and current_a < -1e-6:
+                for edge in edges:
+                    current_a = flow.currents_a.get(edge.index, 0.0)
+                    if current_a < -1e-6:
                         backward.setdefault(edge.part, (current_a, solved.operation.condition.id))
     for device in case.boat.devices.values():
-        if not isinstance(device.part, Overcurrent) or not device.part.polarised:
+        if device.id not in polarised or not isinstance(device.part, Overcurrent):
             continue
         place = Place(device.id, device.at_rating, device.circuit)
         if device.id not in backward:

@@ -9,6 +9,7 @@ from checker.boat.hull import Device
 from checker.boat.landing import Stack
 from checker.boat.parts import Bus, Metal
 from checker.checks.check import Case, Place, Told, check
+from checker.checks.heaviest import NEVER, heaviest
 from checker.checks.landed import BOLTED, Landed, at_part, at_workmanship, by_post, count_of, landed
 from checker.checks.roles import continuous_a
 from checker.checks.words import ampere
@@ -267,12 +268,11 @@ def torque_value(case: Case) -> Iterator[Outcome]:
 
 
 def _solved_currents(case: Case) -> dict[str, float]:
-    """Return the largest current of each conductor over all solved conditions."""
-    most: dict[int, float] = {}
-    for solved in case.studies.conditions.solved:
-        for flow in solved.flows():
-            for index, current_a in flow.currents_a.items():
-                most[index] = max(most.get(index, 0.0), abs(current_a))
+    """Return the largest current of each conductor over all solved conditions, A."""
     edges = case.studies.network.edges_of
-    return {name: max((most.get(edge.index, 0.0) for edge in edges[name]), default=0.0)
-            for name in case.boat.conductors}  # fmt: skip
+    return {
+        name: max(
+            (kind.edges.get(edge.index, NEVER)[0] for kind in heaviest(case) for edge in edges[name]), default=0.0
+        )
+        for name in case.boat.conductors
+    }

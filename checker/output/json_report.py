@@ -6,6 +6,7 @@ Each outcome stands on one line, so that the document diffs like the text report
 from __future__ import annotations
 
 import json
+from collections import Counter
 from collections.abc import Mapping
 from dataclasses import asdict
 from typing import Any
@@ -123,6 +124,7 @@ def _rung(rung: Rung, nearest: Outcome | None) -> dict[str, Any]:
 def _passes(study: Study) -> list[dict[str, Any]]:
     """Return the passes by check, limit set and quantity; a place is [value, limit, headroom], or a note."""
     groups: dict[tuple[str, str, str, str, bool], dict[str, Any]] = {}
+    looks: Counter[tuple[object, ...]] = Counter()
     told: Any
     for outcome in study.passes:
         measure = outcome.measure
@@ -131,14 +133,9 @@ def _passes(study: Study) -> list[dict[str, Any]]:
         else:
             key = (outcome.check, outcome.limit_set, measure.quantity, measure.unit or "fraction", measure.at_least)
             told = [_number(x) for x in (measure.value, measure.limit, measure.headroom_fraction)]
-        places = groups.setdefault(key, {})
         # A part that one check looks at more than once has each look under a name of its own.
-        times = (
-            sum(name == outcome.part or name.startswith(f"{outcome.part} #") for name in places)
-            if (outcome.part in places)
-            else 0
-        )
-        places[f"{outcome.part} #{times + 1}" if times else outcome.part] = told
+        times = looks[key, outcome.part] = looks[key, outcome.part] + 1
+        groups.setdefault(key, {})[outcome.part if times == 1 else f"{outcome.part} #{times}"] = told
     return [
         {
             "check": check,

@@ -229,7 +229,7 @@ def fleet_totals(result: FleetResult) -> Iterator[str]:
     yield f"open warnings and notes: {findings - result.open_errors}"
     yield f"accepted findings: {sum(s.count(Verdict.ACCEPTED) for s in result.subjects)}"
     yield f"places not assessed: {sum(s.count(Verdict.NOT_ASSESSED) for s in result.subjects)}"
-    yield f"places passed: {sum(len(s.passes) for s in result.subjects)}"
+    yield f"places passed: {sum(s.passed for s in result.subjects)}"
     yield f"of these with thin margin: {sum(s.thin for s in result.subjects)}"
     uses = sorted({use for s in result.subjects for use in s.sets}, key=lambda use: (use.id, use.why))
     yield from set_lines(uses)

@@ -66,11 +66,11 @@ def _headroom(outcome: Outcome) -> float:
 
 def pass_order(outcomes: Iterable[Outcome]) -> tuple[Outcome, ...]:
     """Return what passed, by circuit, part and check."""
-    return tuple(sorted((o for o in outcomes if o.verdict is Verdict.PASSED), key=_pass_key))
-
-
-def _pass_key(outcome: Outcome) -> tuple[object, ...]:
-    return (natural(outcome.circuit or outcome.part), natural(outcome.part), outcome.check, outcome.limit_set)
+    passed = [o for o in outcomes if o.verdict is Verdict.PASSED]
+    # Each place is compared once with each other one, not each of the many looks at it.
+    places = sorted({(o.circuit or o.part, o.part) for o in passed}, key=lambda row: (natural(row[0]), natural(row[1])))
+    rank = {place: number for number, place in enumerate(places)}
+    return tuple(sorted(passed, key=lambda o: (rank[o.circuit or o.part, o.part], o.check, o.limit_set)))
 
 
 def _news_key(outcome: Outcome) -> tuple[object, ...]:

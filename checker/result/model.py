@@ -73,7 +73,8 @@ class SubjectResult:
     """Hold the result of one hull or option set.
 
     `news` are the study's with waivers applied and what is found of this subject alone, `own`,
-    in report order; `passes` and `thin` are the study's, shared by all alike subjects.
+    in report order; `passes`, `passed` and `thin` are the study's, shared by all alike subjects.
+    `passes` is empty where nobody asked for the list, `passed` counts them all the same.
     `alike` are the other subjects with the same content, `house` the yard's own rules that bear
     on it.
     """
@@ -93,6 +94,7 @@ class SubjectResult:
     news: tuple[Outcome, ...]
     own: tuple[Outcome, ...]
     passes: tuple[Outcome, ...]
+    passed: int
     thin: int
     ladder: tuple[Rung, ...]
     tightest: Mapping[str, Outcome]
@@ -111,7 +113,7 @@ class SubjectResult:
 
     def count(self, verdict: Verdict) -> int:
         """Count the outcomes with a verdict."""
-        return len(self.passes) if verdict is Verdict.PASSED else sum(o.verdict is verdict for o in self.news)
+        return self.passed if verdict is Verdict.PASSED else sum(o.verdict is verdict for o in self.news)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
