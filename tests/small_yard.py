@@ -358,6 +358,10 @@ class Yard:
             yard = yard.edit(f"{lines[0]}\n", "")
         return yard
 
+    def also_in_yard(self, text: str) -> Yard:
+        """Return the yard with more sections in its own file."""
+        return Yard({**self.files, "yard.yaml": self.files["yard.yaml"] + text})
+
     def also(self, text: str) -> Yard:
         """Return the yard with more sections for the class, in a file of their own."""
         return self.with_file(f"classes/skiff/more-{len(self.files)}.yaml", text)

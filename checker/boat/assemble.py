@@ -99,7 +99,7 @@ def assemble(files: YardFiles) -> Assembly:
         if shared_fault or own_fault or any(file.startswith(f"classes/{class_id}/") for file in faulty):
             assembly.unstudied.append(f"class {shown(class_id)}")
             continue
-        design = _design(class_id, documents, options, assembly.faults)
+        design = _design(class_id, documents, options, files.yard, assembly.faults)
         assembly.classes[class_id] = design
         _add_designs(assembly, design)
     for class_id in sorted(set(files.options) - set(files.classes)):
@@ -123,9 +123,10 @@ def _hull_name(document: Document) -> str:
 
 
 def _design(
-    class_id: str, documents: Sequence[Document], options: Sequence[Document], faults: list[Fault]
-) -> ClassDesign:
-    base = _merge_sections(documents, faults)
+    class_id: str, documents: Sequence[Document], options: Sequence[Document], yard: Document | None,
+    faults: list[Fault],
+) -> ClassDesign:  # fmt: skip
+    base = _with_usual(_merge_sections(documents, faults), yard)
     read = _read_options(options, base, faults)
     head = base.data.get("class", {})
     revisions = {
@@ -134,6 +135,19 @@ def _design(
         if str(number).isdigit()
     }
     return ClassDesign(class_id, base, read, int(head.get("revision", 0)), revisions)
+
+
+USUAL = "workmanship"
+
+
+def _with_usual(base: Patched, yard: Document | None) -> Patched:
+    """Put the yard's own workmanship under that of a class, where the class writes nothing else."""
+    usual = yard.data.get(USUAL) if yard is not None else None
+    own = base.data.get(USUAL, {})
+    if yard is None or not usual or not isinstance(own, dict):
+        return base
+    places = {path: spans for path, spans in yard.places.items() if path[:1] == (USUAL,)}
+    return Patched({**base.data, USUAL: {**usual, **own}}, (*base.layers, places))
 
 
 def _merge_sections(documents: Sequence[Document], faults: list[Fault]) -> Patched:

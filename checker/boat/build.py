@@ -159,6 +159,8 @@ def _add_device(shop: _Workshop, row: Entry) -> None:
             row.unknown(f"post on {row.id}", own, row.key_at("mount", own), part.posts)
     if row.has("regulates") and row.text("regulates") not in shop.top.fields("devices"):
         row.unknown("device", row.text("regulates"), row.at("regulates"), shop.top.fields("devices"))
+    if row.has("trips_with") and row.text("trips_with") not in shop.top.fields("devices"):
+        row.unknown("device", row.text("trips_with"), row.at("trips_with"), shop.top.fields("devices"))
     if row.has("measures") and row.text("measures") not in _banks(shop):
         row.unknown("bank", row.text("measures"), row.at("measures"), _banks(shop))
     shop.devices[row.id] = Device(
@@ -172,6 +174,7 @@ def _add_device(shop: _Workshop, row: Entry) -> None:
         is_covered=row.flag("cover") if row.has("cover") else part.fittings.is_covered,
         is_marked=row.flag("marked") if row.has("marked") else _usual_mark(shop, part),
         regulates=row.text("regulates"),
+        trips_with=row.text("trips_with"),
         returns=str(row.fields("positions").get("returns", "")),
         set_capacity_ah=row.quantity_at(("set", "capacity"), row.fields("set").get("capacity"), Dimension.CAPACITY),
         set_ratio=str(row.fields("set").get("ratio", "")),

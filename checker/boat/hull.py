@@ -72,7 +72,8 @@ class Device:
     `is_covered` and `is_marked` are the device's own facts, else its part's or the class's
     workmanship; None where nobody recorded it. `returns` is where the circuits of a panel bus
     return to. `served` are the circuits of a position, in the order of their ids. `set_capacity_ah`
-    and `set_ratio` are what a monitor is set to; fuel facts are those of batteries.
+    and `set_ratio` are what a monitor is set to; fuel facts are those of batteries. `trips_with` is
+    the other pole of the same breaker.
     """
 
     id: str
@@ -86,6 +87,7 @@ class Device:
     is_covered: bool | None = None
     is_marked: bool | None = None
     regulates: str = ""
+    trips_with: str = ""
     returns: str = ""
     served: tuple[str, ...] = ()
     set_capacity_ah: float | None = None

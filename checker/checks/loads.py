@@ -65,8 +65,8 @@ def switched_return(case: Case) -> Iterator[Outcome]:
     """Does every overcurrent device and hand switch in a return take the feed away as well?
 
     A return is what stands at the potential of the reference with everything closed. A pole that
-    opens it is sound where another pole of the same switch opens the feed of what it serves, or
-    where another return lies beside it.
+    opens it is sound where another pole of the same switch or breaker (`trips_with`) opens the
+    feed of what it serves, or where another return lies beside it.
     """
     told: dict[str, Outcome] = {}
     returns: set[str] = set()

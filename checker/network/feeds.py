@@ -204,7 +204,15 @@ def opened_returns(boat: Boat, network: Network, potentials: Potentials) -> tupl
         is_return = potentials.is_return(edge.a) and edge.kind in _OPENS
         if is_return and edge.part not in names and _is_opened_by_hand(boat, edge.part):
             names.append(edge.part)
-    return tuple(OpenedReturn(name, _stays_live(network, potentials, live, name)) for name in sorted(names))
+    return tuple(
+        OpenedReturn(name, _stays_live(network, potentials, live, opened_with(boat, name))) for name in sorted(names)
+    )
+
+
+def opened_with(boat: Boat, name: str) -> frozenset[str]:
+    """Return the devices that open when one does: the poles of one breaker, whichever of them names the other."""
+    poles = {frozenset((d.id, d.trips_with)) for d in boat.devices.values() if d.trips_with}
+    return frozenset((name,)).union(*(pair for pair in poles if name in pair))
 
 
 def _is_opened_by_hand(boat: Boat, name: str) -> bool:
@@ -212,9 +220,11 @@ def _is_opened_by_hand(boat: Boat, name: str) -> bool:
     return isinstance(part, Overcurrent) or (isinstance(part, Switch) and part.by_hand)
 
 
-def _stays_live(network: Network, potentials: Potentials, live: Sequence[Edge], name: str) -> tuple[str, ...]:
-    """Return the loads, sources and batteries whose return a part takes away, and not their feed with it."""
-    own = {edge.index for edge in live if edge.part == name and edge.kind in _OPENS}
+def _stays_live(
+    network: Network, potentials: Potentials, live: Sequence[Edge], opened: frozenset[str]
+) -> tuple[str, ...]:
+    """Return the loads, sources and batteries whose return some parts take away, and not their feed with it."""
+    own = {edge.index for edge in live if edge.part in opened and edge.kind in _OPENS}
     net = groups(len(network.posts), ((e.a, e.b) for e in live if e.index not in own))
     tops = {net[p] for b in network.batteries for p in (b.pos, b.neg) if not potentials.is_return(p)}
     grounds = {net[p] for b in network.batteries for p in (b.pos, b.neg) if potentials.is_return(p)}

@@ -28,7 +28,9 @@ def verdict_words(subject: SubjectResult) -> str:
     loosened = loosened_words(subject.house)
     under = f"; {loosened}" if loosened else ""
     if subject.open_errors:
-        return f"FAILS with {count(subject.open_errors, 'open error')}{under}"
+        unknown = subject.count(Verdict.NOT_ASSESSED)
+        also = f", {count(unknown, 'place not assessed')}" if unknown else ""
+        return f"FAILS with {count(subject.open_errors, 'open error')}{also}{under}"
     extras = [
         count(n, word)
         for n, word in (

@@ -185,6 +185,16 @@ def test_labels_that_are_not_recorded_are_told_once() -> None:
     assert missing_of(yard, "label-ends") == "workmanship: labels"
 
 
+def test_the_yard_may_say_once_how_every_class_is_made_and_a_class_differs() -> None:
+    """What the yard's own file says counts where the class says nothing, and is pointed at."""
+    usual = SOUND.without("labels:").also_in_yard("workmanship: {labels: both}\n")
+    assert found(usual) == not_assessed(usual) == []
+    other = SOUND.also_in_yard("workmanship: {passages: bare}\n")
+    assert found(other) == []
+    (row,) = found(other.without("passages:"))
+    assert (row[0], row[3]) == ("passage-guard", "workmanship:")
+
+
 # --- legend-name
 
 

@@ -98,6 +98,23 @@ def test_a_switch_with_a_pole_in_feed_and_return_is_sound() -> None:
     )
 
 
+def breaker_of_two_poles(**feed: Any) -> list[Piece]:
+    """Return the boat with the lamp fed over the breaker F and returned over the breaker X."""
+    pieces = returned_over(a_breaker("X", 5.0), "line", "load")
+    wire = a_conductor("lamp-in", "F-LAMP.load", "F.line", size="14 AWG")
+    out = a_conductor("lamp-out", "F.load", "LAMP.pos", size="14 AWG")
+    pieces = [piece for piece in pieces if getattr(piece, "end", "") != "LAMP.pos"]
+    return [*pieces, replace(a_breaker("F", 5.0), **feed), wire, out]
+
+
+def test_a_breaker_of_two_poles_opens_feed_and_return_together() -> None:
+    """PRO-08: whichever of the poles names the other; without the word they are two breakers."""
+    assert found_in(a_boat(*breaker_of_two_poles()), switched_return) == FOUND
+    assert found_in(a_boat(*breaker_of_two_poles(trips_with="X")), switched_return) == []
+    pieces = [replace(p, trips_with="F") if getattr(p, "id", "") == "X" else p for p in breaker_of_two_poles()]
+    assert found_in(a_boat(*pieces), switched_return) == []
+
+
 def test_a_second_pole_in_the_feed_of_something_else_makes_it_no_better() -> None:
     """PRO-08."""
     poles = a_switch("X", {"closed": [("in", "out"), ("back", "home")], "open": []})

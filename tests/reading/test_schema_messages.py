@@ -102,7 +102,7 @@ def test_an_unknown_field_is_told_at_its_name_with_the_nearest_known_one() -> No
 
 def test_an_unknown_field_without_a_near_one_is_told_with_all_known_ones() -> None:
     assert told("yard", YARD + "colour: red\n") == [
-        "3:1 unknown-field: the file has no field “colour” (known here: house, limit_sets, name)"
+        "3:1 unknown-field: the file has no field “colour” (known here: house, limit_sets, name, workmanship)"
     ]
 
 
