@@ -6,7 +6,7 @@ import contextlib
 import datetime
 import gc
 from collections.abc import Callable, Collection, Iterator, Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from pathlib import Path
 
 from checker import __version__
@@ -31,7 +31,6 @@ from checker.limits.limit_set import (
     read_limit_set,
 )
 from checker.network.flow import Copper
-from checker.network.ladder import Rung
 from checker.network.studies import Coppers, Studies
 from checker.reading.cards import FILE_CARDS
 from checker.reading.document import Fault
@@ -40,27 +39,14 @@ from checker.reading.yard_files import YardFiles, read_yard
 from checker.result.cards import CLASS_REVISION, NOT_STUDIED, RESULT_CARDS
 from checker.result.gather import news_order, pass_order, tightest
 from checker.result.model import EnteredTable, FleetResult, SetUse, Study, SubjectResult
-from checker.result.sisters import Lengths, far_lengths, lengths_of
+from checker.result.sisters import far_lengths, lengths_of
+from checker.result.store import Store, study_name
+from checker.result.studied import Studied
 from checker.result.waiver_file import read_waivers
 from checker.result.waivers import Waiver, apply_waivers, unmatched
 
 Progress = Callable[[int, int], None]
 StudyKey = str
-
-
-@dataclass(frozen=True, slots=True)
-class Studied:
-    """Hold what was found on one distinct boat, or why it could not be built."""
-
-    news: tuple[Outcome, ...] = ()
-    passes: tuple[Outcome, ...] = ()
-    passed: int = 0
-    thin: int = 0
-    sets: tuple[SetUse, ...] = ()
-    ladder: tuple[Rung, ...] = ()
-    tightest: Mapping[str, Outcome] = field(default_factory=dict)
-    lengths: Lengths = field(default_factory=Lengths)
-    faults: tuple[Fault, ...] = ()
 
 
 FEWEST_FOR_WORKERS = 8
@@ -80,6 +66,7 @@ def check_fleet(
     workers: int = 1,
     progress: Progress | None = None,
     lists_passes: bool = True,
+    store: Store | None = None,
 ) -> FleetResult:
     """Check a yard's fleet: every hull, and every legal option set of every class.
 
@@ -90,26 +77,79 @@ def check_fleet(
         workers: How many processes study boats side by side; the result does not depend on it.
         progress: Called with the number of boats studied and their total.
         lists_passes: Whether the result holds each pass, as reports need, or only their number.
+        store: Studies of earlier runs; the result does not depend on them.
 
     Raises:
         FleetNotFoundError: If the folder holds no yard.
         UsageError: If `only` names a hull that is not in the fleet.
     """
     with _collector_off():
-        files = read_yard(folder)
-        assembly = assemble(files)
-        catalogue, part_faults = _catalogue(files)
-        subjects = _chosen(assembly, files, only)
-        entered, table_faults = read_entered(files.limits, files.faulty)
-        rules = _house(files, assembly, entered)
-        sets = _limit_sets(entered, rules)
-        bench = _Bench(assembly, catalogue, rules.house, _adopted(files), sets, lists_passes=lists_passes)
-        keys = list(dict.fromkeys(subject.key for subject in subjects))
-        if part_faults:
-            keys = []
-        studied = dict(zip(keys, _study_all(bench, keys, workers, progress), strict=True))
-        faults = [*files.faults, *assembly.faults, *part_faults, *table_faults, *rules.faults]
-        return _Gatherer(files, assembly, subjects, studied, faults, today, only, rules.house).result()
+        # What is kept has its passes, whatever this run needs: the next one may report.
+        fleet = _read_fleet(folder, lists_passes=lists_passes or store is not None)
+        subjects = _chosen(fleet.assembly, fleet.files, only)
+        keys = fleet.keys(subjects)
+        studied = dict(zip(keys, _study_all(fleet, keys, workers, progress, store, lists_passes), strict=True))
+        if store is not None and not only:
+            store.tidy()
+        return _Gatherer(
+            fleet.files, fleet.assembly, subjects, studied, fleet.faults, today, only, fleet.rules.house
+        ).result()
+
+
+def study_part(
+    folder: Path, store: Store, *, part: int, of: int, workers: int = 1, progress: Progress | None = None
+) -> int:
+    """Study each `of`-th distinct boat from the `part`-th on, and keep the studies; return how many boats that are.
+
+    A run over the whole fleet with the studies of all parts tells what a run without any tells.
+
+    Raises:
+        FleetNotFoundError: If the folder holds no yard.
+    """
+    with _collector_off():
+        fleet = _read_fleet(folder, lists_passes=True)
+        keys = fleet.keys(fleet.assembly.subjects)[part - 1 :: of]
+        _study_all(fleet, keys, workers, progress, store, lists_passes=False)
+        return len(keys)
+
+
+@dataclass(frozen=True, slots=True)
+class _Fleet:
+    """Hold a fleet that was read and assembled, and what studies its boats."""
+
+    files: YardFiles
+    assembly: Assembly
+    rules: HouseRules
+    bench: _Bench
+    faults: list[Fault]
+    has_sound_parts: bool
+
+    def keys(self, subjects: Sequence[Subject]) -> list[StudyKey]:
+        """Return the distinct boats of some subjects; none can be built while a part is faulty."""
+        return list(dict.fromkeys(subject.key for subject in subjects)) if self.has_sound_parts else []
+
+    def study_name(self, key: StudyKey) -> str:
+        """Return a name made of everything that the study of a boat rests on, positions of its data included.
+
+        Files of other classes matter as far as the house rules do, which may name their circuits.
+        """
+        files, class_id = self.files, self.bench.class_of(key)
+        shared = [files.yard, *files.parts, *files.limits, *files.classes[class_id], *files.options.get(class_id, [])]
+        names = sorted({document.file for document in shared if document} | {self.assembly.written_in.get(key, "")})
+        sums = [f"{name} {files.sums[name]}" for name in names if name]
+        return study_name([key, class_id], [repr(self.rules.house)], sums)
+
+
+def _read_fleet(folder: Path, *, lists_passes: bool) -> _Fleet:
+    files = read_yard(folder)
+    assembly = assemble(files)
+    catalogue, part_faults = _catalogue(files)
+    entered, table_faults = read_entered(files.limits, files.faulty)
+    rules = _house(files, assembly, entered)
+    sets = _limit_sets(entered, rules)
+    bench = _Bench(assembly, catalogue, rules.house, _adopted(files), sets, lists_passes=lists_passes)
+    faults = [*files.faults, *assembly.faults, *part_faults, *table_faults, *rules.faults]
+    return _Fleet(files, assembly, rules, bench, faults, not part_faults)
 
 
 @contextlib.contextmanager
@@ -187,6 +227,10 @@ class _Bench:
         self._house = house
         self._adopted = adopted
         self._sets = sets
+
+    def class_of(self, key: StudyKey) -> str:
+        """Return the class of a boat."""
+        return self._class_of[key]
 
     def study(self, key: StudyKey) -> Studied:
         """Build one boat, study it, and hold it against every limit set that it is judged by."""
@@ -268,13 +312,24 @@ def _entered_tables(limits: LimitSet) -> tuple[EnteredTable, ...]:
     return tuple(found)
 
 
-def _study_all(bench: _Bench, keys: list[StudyKey], workers: int, progress: Progress | None) -> list[Studied]:
-    found: list[Studied] = []
-    for studied in _studies(bench, keys, workers):
-        found.append(studied)
+def _study_all(
+    fleet: _Fleet, keys: list[StudyKey], workers: int, progress: Progress | None, store: Store | None,
+    lists_passes: bool,
+) -> list[Studied]:  # fmt: skip
+    """Study boats, but for those whose study was kept; return the studies in the order of the keys."""
+    found: dict[StudyKey, Studied] = {}
+    names = {key: fleet.study_name(key) for key in keys} if store is not None else {}
+    for key, name in names.items():
+        if store is not None and (kept := store.take(name, lists_passes=lists_passes)):
+            found[key] = kept
+    missing = [key for key in keys if key not in found]
+    for key, studied in zip(missing, _studies(fleet.bench, missing, workers), strict=True):
+        found[key] = studied
+        if store is not None and not studied.faults:
+            store.keep(names[key], studied)
         if progress is not None:
             progress(len(found), len(keys))
-    return found
+    return [found[key] for key in keys]
 
 
 def _studies(bench: _Bench, keys: list[StudyKey], workers: int) -> Iterator[Studied]:

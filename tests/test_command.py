@@ -78,7 +78,7 @@ def test_faults_of_files_end_with_1_and_never_with_0(tmp_path: Path) -> None:
          "fairloom: --today: “2026-02-30” is no date; write e.g. 2028-05-29\n"),
         (["check", "fleet_example", "--today", ""], "fairloom: --today: “” is no date; write e.g. 2028-05-29\n"),
         (["check", "fleet_example", "--only", "TND-031", "--reports", "reports", *DAY],
-         "fairloom: --reports writes the reports of the whole fleet: leave out --only\n"),
+         "fairloom: reports are those of the whole fleet: leave out --only\n"),
         (["explain", "shunt-bypas"], "fairloom: there is no check shunt-bypas; did you mean shunt-bypass?\n"),
         (["explain", "xyz"], "fairloom: there is no check xyz\n"),
     ],
@@ -390,3 +390,79 @@ def test_a_very_long_text_does_not_make_a_very_long_report(tmp_path: Path) -> No
     done = run("check", write(tmp_path, files), *DAY)
     assert done.returncode == 1
     assert max(map(len, done.stdout.splitlines())) < 1000
+
+
+# --- reports that are committed, and studies that are kept
+
+
+def test_committed_reports_that_are_what_the_data_give_end_with_0(tmp_path: Path) -> None:
+    yard = write(tmp_path, DORY)
+    run("check", yard, "--reports", tmp_path / "reports", *DAY)
+    done = run("check", yard, "--match-reports", tmp_path / "reports", *DAY)
+    assert (done.returncode, done.stderr) == (0, "")
+    assert done.stdout == f"the reports in {tmp_path / 'reports'} are what the data give\n"
+
+
+def test_committed_reports_that_differ_end_with_1_and_tell_each_file_by_its_first_difference(tmp_path: Path) -> None:
+    yard = write(tmp_path, DORY)
+    reports = tmp_path / "reports"
+    run("check", yard, "--reports", reports, *DAY)
+    hull = reports / "hulls" / "DORY-1.txt"
+    right = hull.read_text("utf-8")
+    status = next(line for line in right.splitlines() if line.startswith("status: "))
+    hull.write_text(right.replace(status, "status: \x1b[2Jsold"), "utf-8")
+    (reports / "fleet.txt").unlink()
+    (reports / "hulls" / "DORY-0.txt").write_text("hull: DORY-0\n")
+    (reports / "hulls" / "notes.txt").write_text("of somebody else\n")
+    number = right.splitlines().index(status) + 1
+    done = run("check", yard, "--match-reports", reports, *DAY)
+    assert (done.returncode, done.stderr) == (1, "")
+    assert done.stdout.splitlines()[:-1] == [
+        "fleet.txt: is not there",
+        "hulls/DORY-0.txt: its hull is no more",
+        f"hulls/DORY-1.txt:{number}",
+        "  is:  status: \\u001b[2Jsold",
+        f"  due: {status}",
+    ]
+    assert "write them again with --reports" in done.stdout.splitlines()[-1]
+
+
+def test_parts_fill_the_cache_and_the_whole_run_takes_from_it(tmp_path: Path) -> None:
+    yard, kept = write(tmp_path, many_boats(3)), tmp_path / "kept"
+    first = run("check", yard, "--part", "1/2", "--cache", kept, *DAY)
+    run("check", yard, "--part", "2/2", "--cache", kept, *DAY)
+    assert (first.returncode, first.stderr) == (0, "")
+    assert first.stdout.startswith("part 1 of 2: ")
+    plain, warm = run("check", yard, *DAY), run("check", yard, "--cache", kept, *DAY)
+    assert (warm.returncode, warm.stdout, warm.stderr) == (plain.returncode, plain.stdout, plain.stderr)
+    again = run("check", yard, "--part", "1/2", "--cache", kept, *DAY)
+    assert re.match(r"part 1 of 2: ([0-9]+) boats, \1 of them known;", again.stdout)
+
+
+@pytest.mark.parametrize("part", ["0/2", "3/2", "1", "a/b", "1/0", "-1/2", "1/2/3"])
+def test_a_part_that_is_none_is_refused(part: str) -> None:
+    done = run("check", "fleet_example", f"--part={part}", "--cache", "x")
+    assert (done.returncode, done.stdout) == (2, "")
+    assert "write e.g. 2/4" in done.stderr or "write a whole number" in done.stderr
+
+
+@pytest.mark.parametrize(
+    ("words", "message"),
+    [
+        (["--part", "1/2"], "fairloom: --part studies into --cache FOLDER and tells no verdict"),
+        (["--reports", "a", "--match-reports", "b"], "fairloom: --reports writes and --match-reports compares"),
+        (["--only", "TND-031", "--match-reports", "b"], "fairloom: reports are those of the whole fleet"),
+    ],
+)
+def test_options_that_exclude_each_other_are_told(words: list[str], message: str) -> None:
+    done = run("check", "fleet_example", *words, *DAY)
+    assert (done.returncode, done.stdout) == (2, "")
+    assert done.stderr.startswith(message)
+
+
+def test_a_cache_that_cannot_be_written_is_told_and_changes_nothing(tmp_path: Path) -> None:
+    yard = write(tmp_path, DORY)
+    (tmp_path / "file").write_text("no folder")
+    done = run("check", yard, "--cache", tmp_path / "file", *DAY)
+    assert done.stdout == run("check", yard, *DAY).stdout
+    assert done.stderr == "fairloom: studies cannot be kept: File exists\n"

@@ -77,10 +77,14 @@ class ClassDesign:
 
 @dataclass(slots=True)
 class Assembly:
-    """Hold all subjects in report order, their data by key, and what is wrong in the files."""
+    """Hold all subjects in report order, their data by key, and what is wrong in the files.
+
+    `written_in` names the hull's file that gives a key's data their positions, where one does.
+    """
 
     subjects: list[Subject] = field(default_factory=list)
     content: dict[str, Patched] = field(default_factory=dict)
+    written_in: dict[str, str] = field(default_factory=dict)
     classes: dict[str, ClassDesign] = field(default_factory=dict)
     faults: list[Fault] = field(default_factory=list)
     unstudied: list[str] = field(default_factory=list)
@@ -277,7 +281,9 @@ def _add_hull(assembly: Assembly, document: Document, class_ids: set[str]) -> No
     patches = {change.id: change.fields("set") for change in row.entries("changes")}
     key = _key(design.id, options, list(patches.values()))
     applied = _apply_changes(row, document, design.with_options(options))
-    assembly.content.setdefault(key, applied)
+    if key not in assembly.content:
+        assembly.content[key] = applied
+        assembly.written_in[key] = document.file
     assembly.subjects.append(
         Subject(
             id=name,

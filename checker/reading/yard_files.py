@@ -6,6 +6,7 @@ paths, never of the directory, so that reports do not depend on the machine.
 
 from __future__ import annotations
 
+import hashlib
 import os
 import re
 from collections.abc import Iterator
@@ -37,7 +38,7 @@ class YardFiles:
     """Hold every document of a yard by kind, in the order of their paths.
 
     A document with faults stays here, so that others can still be read; `faulty` names the
-    files that cannot be trusted.
+    files that cannot be trusted. `sums` has the SHA-256 of each file's bytes by its path.
     """
 
     yard: Document | None = None
@@ -49,6 +50,7 @@ class YardFiles:
     limits: list[Document] = field(default_factory=list)
     faults: list[Fault] = field(default_factory=list)
     bytes_read: int = 0
+    sums: dict[str, str] = field(default_factory=dict)
 
     @property
     def faulty(self) -> frozenset[str]:
@@ -77,6 +79,7 @@ def read_yard(folder: Path) -> YardFiles:
             _file_in(files, kind, owner, Document(name))
             continue
         files.bytes_read += len(content)
+        files.sums[name] = hashlib.sha256(content).hexdigest()
         document = compose(content, name)
         faults = document.faults or schema_faults(document, kind)
         files.faults += faults

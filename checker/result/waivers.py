@@ -76,27 +76,33 @@ def apply_waivers(outcomes: Sequence[Outcome], waivers: Iterable[Waiver], today:
         if objection is not None:
             extra.append(objection)
             continue
-        index = found[0]
-        left[index] = left[index]._replace(verdict=Verdict.ACCEPTED)
-        accepted[fingerprint(left[index])] = Acceptance(
+        for index in found:
+            if fingerprint(left[index]) == waiver.fingerprint:
+                left[index] = left[index]._replace(verdict=Verdict.ACCEPTED)
+        accepted[waiver.fingerprint] = Acceptance(
             waiver.id, waiver.reason, waiver.approved_by, waiver.expires.isoformat(), waiver.evidence, waiver.at
         )
     return Waived(tuple(left), tuple(extra), accepted, frozenset(matched))
 
 
 def _objection(waiver: Waiver, found: list[Outcome], today: datetime.date) -> Outcome | None:
-    """Return why a waiver that names findings accepts none of them, or None."""
-    if len(found) > 1:
-        sets = ", ".join(sorted(outcome.limit_set for outcome in found))
-        fault = f"it matches {len(found)} findings ({sets})"
+    """Return why a waiver that names findings accepts none of them, or None.
+
+    Of several findings of one check at one part, in several switch states, the fingerprint tells which is meant;
+    under several limit sets they are several judgements, and one look does not accept them all.
+    """
+    sets = sorted({outcome.limit_set for outcome in found})
+    if len(sets) > 1:
+        fault = f"it matches {len(found)} findings ({', '.join(sets)})"
         return _about(WAIVER_TOO_WIDE, waiver, waiver.at, fault, "name the limit set it is meant for")
     if today > waiver.expires:
         fault = f"it ran out on {waiver.expires.isoformat()}"
         return _about(WAIVER_EXPIRED, waiver, waiver.at_expires, fault, "mend the finding, or judge it anew")
-    present = fingerprint(found[0])
-    if present != waiver.fingerprint:
-        fault = f"it accepts fingerprint {waiver.fingerprint}, but the finding now has {present}: its inputs changed"
-        remedy = f"judge the finding again; if it is acceptable write `fingerprint: {present}`"
+    present = list(dict.fromkeys(fingerprint(outcome) for outcome in found))
+    if waiver.fingerprint not in present:
+        now = " or ".join(present)
+        fault = f"it accepts fingerprint {waiver.fingerprint}, but the finding now has {now}: its inputs changed"
+        remedy = f"judge the finding again; if it is acceptable write `fingerprint: {now}`"
         return _about(WAIVER_INPUTS_CHANGED, waiver, waiver.at_fingerprint, fault, remedy)
     return None
 
