@@ -41,7 +41,7 @@ from checker.result.gather import news_order, pass_order, tightest
 from checker.result.model import EnteredTable, FleetResult, SetUse, Study, SubjectResult
 from checker.result.sisters import far_lengths, lengths_of
 from checker.result.store import Store, study_name
-from checker.result.studied import Studied
+from checker.result.studied import Studied, Written, read_study, written
 from checker.result.waiver_file import read_waivers
 from checker.result.waivers import Waiver, apply_waivers, unmatched
 
@@ -199,10 +199,10 @@ def _chosen(assembly: Assembly, files: YardFiles, only: Collection[str]) -> list
     if not only:
         return assembly.subjects
     hulls = {subject.id for subject in assembly.subjects if subject.is_hull}
-    written = {str(d.data["hull"]) for d in files.hulls if isinstance(d.data, dict) and "hull" in d.data}
+    in_files = {str(d.data["hull"]) for d in files.hulls if isinstance(d.data, dict) and "hull" in d.data}
     for name in only:
-        if name not in hulls | written:
-            meant = nearest(name, hulls | written)
+        if name not in hulls | in_files:
+            meant = nearest(name, hulls | in_files)
             raise UsageError(f"there is no hull {name}" + (f"; did you mean {meant}?" if meant else ""))
     return [subject for subject in assembly.subjects if subject.is_hull and subject.id in only]
 
@@ -253,6 +253,11 @@ class _Bench:
             tightest=tightest(ladder, outcomes),
             lengths=lengths_of(boat),
         )
+
+    def study_to_keep(self, key: StudyKey) -> Studied | Written:
+        """Study one boat and write the study down; one that could not be built is not to be kept."""
+        studied = self.study(key)
+        return studied if studied.faults else written(studied)
 
 
 def study_boat(boat: Boat) -> Studies:
@@ -323,18 +328,23 @@ def _study_all(
         if store is not None and (kept := store.take(name, lists_passes=lists_passes)):
             found[key] = kept
     missing = [key for key in keys if key not in found]
-    for key, studied in zip(missing, _studies(fleet.bench, missing, workers), strict=True):
-        found[key] = studied
-        if store is not None and not studied.faults:
-            store.keep(names[key], studied)
+    for key, one in zip(missing, _studies(fleet.bench, missing, workers, keeps=store is not None), strict=True):
+        if isinstance(one, Written):
+            found[key] = read_study(one, lists_passes=lists_passes)
+            if store is not None:
+                store.keep(names[key], one)
+        else:
+            found[key] = one
         if progress is not None:
             progress(len(found), len(keys))
     return [found[key] for key in keys]
 
 
-def _studies(bench: _Bench, keys: list[StudyKey], workers: int) -> Iterator[Studied]:
+def _studies(bench: _Bench, keys: list[StudyKey], workers: int, *, keeps: bool) -> Iterator[Studied | Written]:
+    """Study boats; where studies are kept, as bytes: to write them is left to the workers too."""
+    work = bench.study_to_keep if keeps else bench.study
     if workers <= 1 or len(keys) < FEWEST_FOR_WORKERS:
-        yield from map(bench.study, keys)
+        yield from map(work, keys)
         return
     import multiprocessing
     from concurrent.futures import ProcessPoolExecutor
@@ -342,23 +352,23 @@ def _studies(bench: _Bench, keys: list[StudyKey], workers: int) -> Iterator[Stud
     # A forked worker has the assembled fleet already; elsewhere it is sent once to each.
     method = "fork" if "fork" in multiprocessing.get_all_start_methods() else None
     context = multiprocessing.get_context(method)
-    with ProcessPoolExecutor(workers, context, _enter_worker, (bench,)) as pool:
+    with ProcessPoolExecutor(workers, context, _enter_worker, (work,)) as pool:
         yield from pool.map(_study_in_worker, keys, chunksize=max(1, len(keys) // (workers * 4)))
 
 
-_bench_of_worker: _Bench | None = None
+_work_of_worker: Callable[[StudyKey], Studied | Written] | None = None
 """Set once in each worker process, which has no other way to keep what its parent gave it."""
 
 
-def _enter_worker(bench: _Bench) -> None:
-    global _bench_of_worker
+def _enter_worker(work: Callable[[StudyKey], Studied | Written]) -> None:
+    global _work_of_worker
     gc.disable()
-    _bench_of_worker = bench
+    _work_of_worker = work
 
 
-def _study_in_worker(key: StudyKey) -> Studied:
-    assert _bench_of_worker is not None
-    return _bench_of_worker.study(key)
+def _study_in_worker(key: StudyKey) -> Studied | Written:
+    assert _work_of_worker is not None
+    return _work_of_worker(key)
 
 
 class _Gatherer:

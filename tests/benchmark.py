@@ -7,7 +7,8 @@ each time also stands as a multiple of a fixed loop that is timed in the same pr
 whole check as a multiple of merely parsing the same bytes.
 
 `--study` measures one large hull instead: where the processor time of its study goes, and what
-ngspice takes for the currents alone, called once for each switch state and condition.
+ngspice takes for the currents alone, called once for each switch state and condition. `--kept`
+measures what a cache saves.
 """
 
 from __future__ import annotations
@@ -221,6 +222,17 @@ def measure_parsing(folder: Path, _: int) -> Timed:
     return {"events": events, "load": load, "loop": loop, "bytes": float(sum(map(len, texts)))}
 
 
+def measure_reading(folder: Path, _: int) -> Timed:
+    """Start, read and assemble a fleet, and study nothing: what no cache can save."""
+    from checker.boat.assemble import assemble
+    from checker.reading.yard_files import read_yard
+
+    gc.disable()
+    loop, _ = timed(reference_loop)
+    seconds, _ = timed(lambda: assemble(read_yard(folder)))
+    return {"read and assemble": seconds, "loop": loop}
+
+
 def measure_study(folder: Path, _: int) -> Timed:
     """Study one hull; return the processor seconds of each part, and those of ngspice for the currents alone."""
     from checker import pipeline
@@ -307,7 +319,7 @@ def _currents_alone(studies: Any) -> Timed:
     return found
 
 
-MEASUREMENTS = {"check": measure_check, "parsing": measure_parsing, "study": measure_study}
+MEASUREMENTS = {"check": measure_check, "parsing": measure_parsing, "reading": measure_reading, "study": measure_study}
 
 
 def medians(what: str, folder: Path, workers: int, runs: int) -> Timed:
@@ -357,6 +369,28 @@ def print_fleet(folder: Path, workers: list[int], runs: int) -> None:
             print(f"  {key}: {check[key]:.0f}")
 
 
+def print_kept(folder: Path, runs: int) -> None:
+    """Print what a run costs with nothing kept, with all studies kept, and after one line of one hull has changed."""
+    reading = medians("reading", folder, 1, runs)
+    print(f"  {'reading and assembling alone':34}{reading['read and assemble']:8.3f} s")
+    with tempfile.TemporaryDirectory() as kept:
+        words = [sys.executable, "-m", "checker", "check", str(folder), "--today", TODAY.isoformat()]
+        words_kept = [*words, "--cache", kept]
+
+        def shown(name: str, command: list[str]) -> None:
+            seconds, _ = timed(lambda: subprocess.run(command, cwd=ROOT, capture_output=True, check=False))
+            print(f"  {name:34}{seconds:8.3f} s  {seconds / reading['read and assemble']:5.1f} times the reading")
+
+        shown("no cache", words)
+        shown("cold: the cache is empty", words_kept)
+        shown("warm: nothing has changed", words_kept)
+        hull = sorted((folder / "hulls").glob("*.yaml"))[-1]
+        text = hull.read_text("utf-8")
+        hull.write_text(text.replace("tail: ", "tail: 1", 1), "utf-8")
+        shown("warm: one line of one hull changed", words_kept)
+        hull.write_text(text, "utf-8")
+
+
 def print_study(folder: Path, runs: int) -> None:
     """Print where the processor time of one large hull goes."""
     times = medians("study", folder, 1, runs)
@@ -391,6 +425,7 @@ def main() -> None:
     parser.add_argument("--workers", type=int, nargs="+", default=[1, 2], metavar="W", help="(default 1 2)")
     parser.add_argument("--folder", type=Path, help="write the fleet here and keep it")
     parser.add_argument("--study", action="store_true", help="measure the study of one large hull instead")
+    parser.add_argument("--kept", action="store_true", help="measure runs with and without kept studies instead")
     parser.add_argument("--measure", choices=sorted(MEASUREMENTS), help=argparse.SUPPRESS)
     options = parser.parse_args()
     sys.path.insert(0, str(ROOT))
@@ -406,6 +441,9 @@ def main() -> None:
             return
         write_fleet(folder, hulls=options.hulls, distinct=options.distinct, seed=options.seed)
         print(f"{options.hulls} hulls, {options.distinct} contents, seed {options.seed}; medians of {options.runs}")
+        if options.kept:
+            print_kept(folder, options.runs)
+            return
         print_fleet(folder, options.workers, options.runs)
     print_shell()
 

@@ -18,7 +18,7 @@ from functools import cache
 from pathlib import Path
 
 from checker import __version__
-from checker.result.studied import Studied, Written, read_study, written
+from checker.result.studied import Studied, Written, read_study
 
 SUFFIX = ".study"
 FORMAT = "fairloom study 1"
@@ -79,9 +79,8 @@ class Store:
         self.taken += 1
         return studied
 
-    def keep(self, name: str, studied: Studied) -> None:
+    def keep(self, name: str, one: Written) -> None:
         """Keep a study; it must list its passes."""
-        one = written(studied)
         head = {"format": FORMAT, "study": name, "most": [len(one.most), _sum(one.most)],
                 "passes": [len(one.passes), _sum(one.passes)]}  # fmt: skip
         file = self._file(name)

@@ -6,14 +6,16 @@ import datetime
 
 import pytest
 
-from checker.finding import Level, Verdict
+from checker.finding import Level, Outcome, Span, Verdict
 from checker.result.gather import fingerprint
+from checker.result.waivers import Waiver, apply_waivers
 from tests.small_yard import (
     BOTH,
     HULL_YAML,
     LAW,
     NEITHER,
     SOUND,
+    TODAY,
     Yard,
     check_yard,
     finding,
@@ -207,3 +209,35 @@ def test_waiver_of_one_hull_does_not_accept_the_finding_of_an_alike_hull() -> No
     assert the_hull(result, "SKIFF-1").open_errors == 0
     still_open = [o for o in the_hull(result, "SKIFF-2").outcomes if o.verdict is Verdict.FINDING]
     assert tell(yard, still_open) == [THE_FINDING]
+
+
+def in_states(**inputs: str) -> list[Outcome]:
+    """Return findings of one check at one part in several switch states, each with other inputs."""
+    base = Outcome(Verdict.FINDING, "maker-device", Level.ERROR, "P1", Span("a.yaml", 1, 1))
+    return [base._replace(state=state, inputs=(("amps", amps),)) for state, amps in inputs.items()]
+
+
+def the_waiver(mark: str) -> Waiver:
+    at = Span("waivers.yaml", 2, 3)
+    return Waiver(
+        id="W-1", check="maker-device", hull="SKIFF-1", class_id="", part="P1", limit_set="", fingerprint=mark,
+        reason="r", approved_by="a", evidence="", expires=TODAY, at=at, at_fingerprint=at, at_expires=at,
+    )  # fmt: skip
+
+
+def test_the_fingerprint_tells_which_of_two_findings_of_one_part_is_accepted() -> None:
+    """FLT-05: they are two faults; one look accepts one of them."""
+    first, second = in_states(moored="5 A", under_way="9 A")
+    waived = apply_waivers([first, second], [the_waiver(fingerprint(second))], TODAY)
+    assert [o.verdict for o in waived.outcomes] == [Verdict.FINDING, Verdict.ACCEPTED]
+    assert (waived.extra, waived.matched) == ((), {"W-1"})
+
+
+def test_a_fingerprint_of_neither_accepts_neither() -> None:
+    """FLT-06."""
+    first, second = in_states(moored="5 A", under_way="9 A")
+    waived = apply_waivers([first, second], [the_waiver("0" * 12)], TODAY)
+    assert [o.verdict for o in waived.outcomes] == [Verdict.FINDING, Verdict.FINDING]
+    (told,) = waived.extra
+    assert told.check == "waiver-inputs-changed"
+    assert f"{fingerprint(first)} or {fingerprint(second)}" in told.remedy
