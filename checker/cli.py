@@ -55,11 +55,27 @@ def _parser() -> argparse.ArgumentParser:
     check.add_argument("--today", metavar="DATE", help="judge waivers as on this day (default: the system's date)")
     check.add_argument("--workers", type=_positive, default=None, metavar="N",
                        help="processes to study boats with (default: one for each core)")  # fmt: skip
+    for option, told in _FURTHER.items():
+        check.add_argument(f"--{option}", metavar="FILE", help=told)
+    check.add_argument("--annotations", action="store_true",
+                       help="also print the findings as the commands with which a CI job marks lines")  # fmt: skip
+    check.add_argument("--yard-path", metavar="PATH",
+                       help="the yard's folder from the root of its repository, for the paths in the "
+                            "reports above (default: found by .git)")  # fmt: skip
     check.set_defaults(run=_check)
     explain = commands.add_parser("explain", help="say what a check does", description=_explain.__doc__)
     explain.add_argument("check", nargs="?", metavar="CHECK", help="the id of a check (default: list all)")
     explain.set_defaults(run=_explain)
     return parser
+
+
+_FURTHER = {
+    "sarif": "also write SARIF 2.1.0, with what was accepted as suppressed; - is standard output, here and below",
+    "sarif-upload": "also write SARIF 2.1.0 for code scanning: the open findings alone",
+    "junit": "also write JUnit XML",
+    "code-quality": "also write GitLab's code-quality JSON",
+    "summary": "also append a page of Markdown, e.g. to the file of the CI job's summary",
+}
 
 
 def _positive(text: str) -> int:
@@ -75,11 +91,13 @@ def _check(options: argparse.Namespace) -> int:
 
     from checker.errors import UsageError
     from checker.output.files import write_reports
+    from checker.output.further import write_further
     from checker.output.screen import screen_report
     from checker.pipeline import all_cards, check_fleet
 
     if options.reports and options.only:
         raise UsageError("--reports writes the reports of the whole fleet: leave out --only")
+    asked, prefix = _asked(options)
     try:
         # The only place that reads the clock.
         today = datetime.date.fromisoformat(options.today) if options.today is not None else datetime.date.today()
@@ -95,12 +113,35 @@ def _check(options: argparse.Namespace) -> int:
     )
     progress.clear()
     cards = {card.id: card for card in all_cards()}
-    colour = sys.stdout.isatty() and "NO_COLOR" not in os.environ
-    sys.stdout.write(screen_report(result, cards, colour=colour))
+    # Before anything is printed, so that a reader of the screen who leaves early loses no report.
+    printed, failed = write_further(asked, result, cards, prefix)
+    if not printed:
+        colour = sys.stdout.isatty() and "NO_COLOR" not in os.environ
+        printed = screen_report(result, cards, colour=colour)
+    if options.annotations:
+        from checker.output.annotations import annotation_commands, without_commands
+
+        printed = annotation_commands(result, cards, prefix) + without_commands(printed)
+    sys.stdout.write(printed)
     if options.reports:
         written = write_reports(result, cards, Path(options.reports))
         print(f"{written} reports written to {options.reports}", file=sys.stderr)
+    if failed:
+        raise UsageError("; ".join(failed))
     return CLEAN if result.is_clean else OPEN_ERRORS
+
+
+def _asked(options: argparse.Namespace) -> tuple[dict[str, str], str]:
+    """Return the file of each further report that is asked for, and where in its repository the yard lies."""
+    from checker.errors import UsageError
+    from checker.output.further import FORMATS, STANDARD_OUTPUT, folder_in_repository, given_prefix
+
+    asked = {name: file for name in FORMATS if (file := getattr(options, name)) is not None}
+    if [*asked.values()].count(STANDARD_OUTPUT) + options.annotations > 1:
+        raise UsageError("standard output has room for one report: give the others files")
+    if options.yard_path is not None:
+        return asked, given_prefix(options.yard_path)
+    return asked, folder_in_repository(Path(options.folder)) if asked or options.annotations else ""
 
 
 class _Progress:

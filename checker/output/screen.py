@@ -16,7 +16,9 @@ _RED, _YELLOW, _GREEN, _BOLD, _PLAIN = "\x1b[31m", "\x1b[33m", "\x1b[32m", "\x1b
 
 def screen_report(result: FleetResult, cards: Mapping[str, Card], *, colour: bool) -> str:
     """Return what `fairloom check` prints: findings, what was accepted, totals, a line a hull, the verdict."""
-    return "\n".join(_painted(line, colour) for line in _lines(result, cards)) + "\n"
+    text = "\n".join(_painted(line, colour) for line in _lines(result, cards)) + "\n"
+    # A CI service takes this sign for the start of a command wherever it stands in a line.
+    return text.replace("##[", "##\\u005b")
 
 
 def _lines(result: FleetResult, cards: Mapping[str, Card]) -> Iterator[str]:
