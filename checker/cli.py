@@ -63,6 +63,12 @@ def _parser() -> argparse.ArgumentParser:
                        help="the yard's folder from the root of its repository, for the paths in the "
                             "reports above (default: found by .git)")  # fmt: skip
     check.set_defaults(run=_check)
+    lists = commands.add_parser("lists", help="write a hull's wire, device, landing, label and parts lists",
+                                description=_lists.__doc__)  # fmt: skip
+    lists.add_argument("folder", nargs="?", default=".", metavar="FOLDER", help="the yard's repository (default: here)")
+    lists.add_argument("--hull", required=True, metavar="HULL", help="the hull to list")
+    lists.add_argument("--to", required=True, metavar="FOLDER", help="the folder to write the lists to")
+    lists.set_defaults(run=_lists)
     explain = commands.add_parser("explain", help="say what a check does", description=_explain.__doc__)
     explain.add_argument("check", nargs="?", metavar="CHECK", help="the id of a check (default: list all)")
     explain.set_defaults(run=_explain)
@@ -160,6 +166,16 @@ class _Progress:
     def clear(self) -> None:
         if self._shown:
             print("\r\x1b[K", end="", file=sys.stderr, flush=True)
+
+
+def _lists(options: argparse.Namespace) -> int:
+    """Write the lists of one hull as CSV: wires, devices, landings, labels, parts. Nothing is checked."""
+    from checker.one_hull import hull_aboard
+    from checker.output.lists import write_lists
+
+    names = write_lists(hull_aboard(Path(options.folder), options.hull), Path(options.to))
+    print(f"{len(names)} lists written to {options.to}: {', '.join(names)}", file=sys.stderr)
+    return CLEAN
 
 
 def _explain(options: argparse.Namespace) -> int:
