@@ -61,6 +61,7 @@ class Repository:
         self.git("add", "--all")
 
     def git(self, *words: str) -> None:
+        """Run git in the repository."""
         command = ["git", "-c", "safe.directory=*", *AUTHOR, *words]
         subprocess.run(command, cwd=self.folder, env=self.environment, check=True, capture_output=True)
 

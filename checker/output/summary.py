@@ -82,7 +82,7 @@ def _finding_row(alert: Alert, prefix: str) -> str:
     fault = "; ".join([alert.sentence, *measured])
     remedies = dict.fromkeys(outcome.remedy for outcome in alert.outcomes if outcome.remedy)
     at = at_from_root(alert.at, prefix)
-    return _row(alert.level.value, f"{fault} ({alert.first.check})", alert.on, at, "; ".join(remedies))
+    return _row(alert.level.value, _fault(alert, fault), alert.on, at, "; ".join(remedies))
 
 
 def _add_accepted(page: _Page, found: Sequence[Alert]) -> None:
@@ -101,7 +101,7 @@ def _accepted_row(alert: Alert) -> str:
             (a.approved_by for a in told), (a.expires for a in told), (f"{a.reason} ({a.waiver})" for a in told),
         )
     ]  # fmt: skip
-    return _row(f"{alert.sentence} ({alert.first.check})", alert.on, *columns)
+    return _row(_fault(alert, alert.sentence), alert.on, *columns)
 
 
 def _add_not_assessed(page: _Page, found: Sequence[Alert], prefix: str) -> None:
@@ -114,12 +114,18 @@ def _add_not_assessed(page: _Page, found: Sequence[Alert], prefix: str) -> None:
 def _not_assessed_row(alert: Alert, prefix: str) -> str:
     missing = dict.fromkeys(outcome.missing for outcome in alert.outcomes if outcome.missing)
     at = at_from_root(alert.at, prefix)
-    return _row(f"{alert.sentence} ({alert.first.check})", alert.on, at, "; ".join(missing))
+    return _row(_fault(alert, alert.sentence), alert.on, at, "; ".join(missing))
 
 
 def _row(*cells: str) -> str:
     return f"| {' | '.join(plain(_cut(cell)) for cell in cells)} |"
 
 
-def _cut(text: str) -> str:
-    return text if len(text) <= LONGEST_CELL else f"{text[: LONGEST_CELL - 1]}…"
+def _fault(alert: Alert, words: str) -> str:
+    """Return the fault with its check, which stays where a long fault is cut."""
+    check = f" ({alert.first.check})"
+    return _cut(words, LONGEST_CELL - len(check)) + check
+
+
+def _cut(text: str, most: int = LONGEST_CELL) -> str:
+    return text if len(text) <= most else f"{text[: most - 1]}…"
