@@ -27,7 +27,9 @@ def main(arguments: Sequence[str] | None = None) -> int:
         sys.stdout.flush()
         return status
     except CheckerError as error:
-        print(f"fairloom: {error}", file=sys.stderr)
+        from checker.reading.words import no_command
+
+        print(no_command(f"fairloom: {error}"), file=sys.stderr)
         return NOT_DONE
     except BrokenPipeError:
         # Whoever read the output has gone; point the rest nowhere, so that closing is quiet too.
@@ -174,7 +176,7 @@ def _lists(options: argparse.Namespace) -> int:
     from checker.output.lists import write_lists
 
     names = write_lists(hull_aboard(Path(options.folder), options.hull), Path(options.to))
-    print(f"{len(names)} lists written to {options.to}: {', '.join(names)}", file=sys.stderr)
+    print(f"{len(names)} lists written to {options.to}, unchecked: {', '.join(names)}", file=sys.stderr)
     return CLEAN
 
 

@@ -52,9 +52,9 @@ def _not_there(hull: str, files: YardFiles, assembly: Assembly, faults: Iterable
 
 def _faulty(hull: str, faults: Iterable[Fault]) -> UsageError:
     told = sorted({f"{fault.at}: {fault.message}{f'; {fault.remedy}' if fault.remedy else ''}" for fault in faults})
-    lines = [f"  {flat(line)}" for line in told[:MOST_FAULTS]]
+    lines = [f"  - {flat(line)}" for line in told[:MOST_FAULTS]]
     if len(told) > MOST_FAULTS:
-        lines.append(f"  and {len(told) - MOST_FAULTS} more: see `fairloom check`")
+        lines.append(f"  - and {len(told) - MOST_FAULTS} more: see `fairloom check`")
     return UsageError("\n".join([f"hull {flat(hull)} cannot be assembled; mend first:", *lines]))
 
 

@@ -150,5 +150,6 @@ def path_from_root(file: str, prefix: str) -> str:
 
 
 def at_from_root(span: Span, prefix: str) -> str:
-    """Print a place with its path from the root of the repository."""
-    return flat(f"{path_from_root(span.file, prefix)}:{span.line}:{span.column}")
+    """Print a place with its path from the root of the repository, so that it can start a line of any output."""
+    place = flat(f"{path_from_root(span.file, prefix)}:{span.line}:{span.column}")
+    return f"./{place}" if place.startswith((":", "#")) else place

@@ -123,6 +123,13 @@ def test_strict_readers_find_no_element_or_attribute_that_they_refuse(report: st
                                                         ["failure", "system-out"], ["skipped", "system-out"])  # fmt: skip
 
 
+def test_no_line_of_a_text_is_a_command_of_a_ci_job(tmp_path: Path) -> None:
+    text = junit_report(checked(tmp_path, {**DORY, "::error::pwned.yml": "", "##[error]pwned.yaml": ""}), CARDS, "")
+    found = [r.text for case in cases(text).values() for r in case.result if isinstance(r, Failure)]
+    assert any(line.startswith("./::error::pwned.yml:1:1: error: ") for told in found for line in told.splitlines())
+    assert [told for told in found for line in told.splitlines() if line.lstrip().startswith(("::", "##["))] == []
+
+
 def test_signs_with_a_meaning_in_xml_stay_text(tmp_path: Path) -> None:
     nasty = "9 A ]]> <x a='b'> & &amp; <![CDATA[ <!-- end"
     files = edited(DESIGN, "C1: {name: Bow lamp", f'C1: {{legend: "{nasty}", name: Bow lamp')

@@ -13,6 +13,7 @@ from checker.one_hull import hull_aboard
 from checker.output.csv_table import Table, csv_text, number
 from checker.output.lists import LISTS, list_files
 from tests.dory_yard import DORY, edited, write
+from tests.output.workflow_commands import commands
 from tests.small_yard import HULL, SOUND, Yard
 
 Row = dict[str, str]
@@ -226,7 +227,7 @@ def test_the_command_writes_five_lists_and_says_so(tmp_path: Path, capsys: pytes
     assert len(LISTS) == 5
     printed = capsys.readouterr()
     assert printed.out == ""
-    assert printed.err.startswith(f"5 lists written to {out}: {HULL}-wires.csv, ")
+    assert printed.err.startswith(f"5 lists written to {out}, unchecked: {HULL}-wires.csv, ")
 
 
 def test_a_hull_that_is_not_there_is_told_with_the_nearest(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
@@ -250,7 +251,21 @@ def test_a_hull_that_cannot_be_assembled_is_told_with_the_lines_at_fault(
     assert main(["lists", str(write(tmp_path, files)), "--hull", "DORY-1", "--to", str(tmp_path / "o")]) == 2
     first, second, *_ = capsys.readouterr().err.splitlines()
     assert first == "fairloom: hull DORY-1 cannot be assembled; mend first:"
-    assert second.startswith(f"  {told}")
+    assert second.startswith(f"  - {told}")
+
+
+def test_a_fault_told_on_standard_error_is_no_command_of_a_ci_job(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    files = {
+        **DORY,
+        "hulls/dory-1.yaml": DORY["hulls/dory-1.yaml"] + "'##[error]pwned': 1\n",
+        "::error::pwned.yaml": "",
+    }
+    assert main(["lists", str(write(tmp_path, files)), "--hull", "DORY-1", "--to", str(tmp_path / "o")]) == 2
+    told = capsys.readouterr().err
+    assert "pwned" in told
+    assert list(commands(told)) == []
 
 
 def test_faults_of_another_class_do_not_keep_a_hull_from_its_lists(tmp_path: Path) -> None:
