@@ -6,6 +6,7 @@ assessed skips it; warnings and notes do not fail a run, so they stand in the ca
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from typing import TYPE_CHECKING
 
@@ -41,7 +42,7 @@ def junit_report(result: FleetResult, cards: Mapping[str, Card], prefix: str) ->
             cases.setdefault(_case_of(outcome), []).append(outcome)
         name = f"{'hull' if subject.is_hull else 'option set'} {subject.id}"
         _add_suite(top, name, cases, cards, prefix, subject.accepted)
-    _count([top, *top])
+    _count(top)
     ElementTree.indent(top)
     return f'<?xml version="1.0" encoding="UTF-8"?>\n{ElementTree.tostring(top, encoding="unicode")}\n'
 
@@ -115,9 +116,17 @@ def _lines(outcome: Outcome, card: Card, prefix: str) -> Iterator[str]:
         yield f"  remedy: {flat(outcome.remedy)}"
 
 
-def _count(elements: Iterable[Element]) -> None:
-    """Write into the suites how many cases they hold, and how these came out."""
-    for element in elements:
-        for name, path in (("tests", "testcase"), ("failures", "testcase/failure"), ("skipped", "testcase/skipped")):
-            element.set(name, str(len(element.findall(f".//{path}"))))
-        element.set("errors", "0")
+def _count(top: Element) -> None:
+    """Write into the suites, and above them, how many cases they hold and how these came out."""
+    totals: Counter[str] = Counter()
+    for suite in top:
+        tags = Counter(case[0].tag for case in suite if len(case))
+        counts = {"tests": len(suite), "failures": tags["failure"], "skipped": tags["skipped"], "errors": 0}
+        totals.update(counts)
+        _set(suite, counts)
+    _set(top, {name: totals[name] for name in ("tests", "failures", "skipped", "errors")})
+
+
+def _set(element: Element, counts: Mapping[str, int]) -> None:
+    for name, number in counts.items():
+        element.set(name, str(number))
