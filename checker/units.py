@@ -82,6 +82,11 @@ def inch_from_metre(length_m: float) -> float:
     return length_m / METRE_PER_INCH
 
 
+def foot_pound_from_newton_metre(torque_nm: float) -> float:
+    """Convert newton metres to foot-pounds."""
+    return torque_nm / NEWTON_METRE_PER_FOOT_POUND
+
+
 def foot_from_metre(length_m: float) -> float:
     """Convert metres to feet."""
     return length_m / METRE_PER_FOOT

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+import subprocess
 from collections.abc import Iterator
 from pathlib import Path
 from typing import Any
@@ -11,6 +12,7 @@ import pytest
 import yaml
 
 from checker.cli import main
+from tests.test_workflows import tool
 
 ROOT = Path(__file__).resolve().parents[1]
 README = (ROOT / "README.md").read_text(encoding="utf-8")
@@ -145,5 +147,58 @@ def test_each_of_the_two_first_commands_makes_its_own_environment() -> None:
 def test_every_option_of_the_command_is_told(capsys: pytest.CaptureFixture[str]) -> None:
     with pytest.raises(SystemExit):
         main(["check", "--help"])
-    options = set(re.findall(r"--[a-z]+", capsys.readouterr().out)) - {"--help"}
-    assert options == set(re.findall(r"`… (--[a-z]+)", README))
+    options = set(re.findall(r"--[a-z-]+", capsys.readouterr().out)) - {"--help"}
+    assert options == set(re.findall(r"`… (--[a-z-]+)", README))
+
+
+SAMPLES = dict(re.findall(r"`([\w./-]+\.ya?ml)`[^`\n]*:\n\n```yaml\n(.*?)^```", README, flags=re.DOTALL | re.MULTILINE))
+
+
+@pytest.mark.parametrize(
+    ("name", "kind"),
+    [(".github/workflows/wiring.yml", "vendor.github-workflows"), (".gitlab-ci.yml", "vendor.gitlab-ci")],
+)
+def test_the_samples_for_ci_fit_the_published_schemas(tmp_path: Path, name: str, kind: str) -> None:
+    (tmp_path / "sample.yml").write_text(SAMPLES[name], encoding="utf-8")
+    command = [tool("check-jsonschema"), "--builtin-schema", kind, str(tmp_path / "sample.yml")]
+    run = subprocess.run(command, capture_output=True, text=True, check=False)
+    assert run.returncode == 0, run.stdout + run.stderr
+
+
+def test_the_sample_workflow_is_safe_and_asks_for_nothing_that_a_fork_has_not(tmp_path: Path) -> None:
+    sample = tmp_path / "wiring.yml"
+    sample.write_text(SAMPLES[".github/workflows/wiring.yml"], encoding="utf-8")
+    run = subprocess.run(
+        [tool("zizmor"), "--offline", "--quiet", str(sample)], capture_output=True, text=True, check=False
+    )
+    assert run.returncode == 0, run.stdout + run.stderr
+    workflow = plain(sample.read_text(encoding="utf-8"))
+    assert (workflow["on"], workflow["permissions"]) == ("pull_request", {"contents": "read"})
+    used = re.findall(r"uses: *(.*)", sample.read_text(encoding="utf-8"))
+    assert [line for line in used if not re.fullmatch(r"[\w./-]+@[0-9a-f]{40} # v[0-9.]+", line)] == []
+    given = workflow["jobs"]["check"]["steps"][-1]["with"]
+    action = plain((ROOT / ".github/actions/check/action.yml").read_text(encoding="utf-8"))
+    assert set(given) <= set(action["inputs"])
+
+
+def test_the_sample_for_the_git_hook_names_the_hook_that_there_is() -> None:
+    (repository,) = plain(SAMPLES[".pre-commit-config.yaml"])["repos"]
+    (hook,) = plain((ROOT / ".pre-commit-hooks.yaml").read_text(encoding="utf-8"))
+    assert [row["id"] for row in repository["hooks"]] == [hook["id"]]
+
+
+def test_the_commands_of_the_sample_for_gitlab_run_as_they_are(tmp_path: Path, yard: Path) -> None:
+    (job,) = plain(SAMPLES[".gitlab-ci.yml"]).values()
+    words = job["script"][-1].split()
+    assert words[:3] == ["fairloom", "check", "."]
+    files = [*job["artifacts"]["paths"], *job["artifacts"]["reports"].values()]
+    here = [str(tmp_path / word) if word in files else word for word in words[3:]]
+    assert main(["check", str(yard), *here, *TODAY]) == 0
+    assert [name for name in files if not (tmp_path / name).is_file()] == []
+
+
+def test_the_lists_of_the_readme_are_those_that_are_written(tmp_path: Path) -> None:
+    (command,) = [command for command in SHELL if " lists " in command]
+    words = command.split()[1:]
+    assert main([words[0], str(ROOT / words[1]), *words[2:-1], str(tmp_path)]) == 0
+    assert {path.name for path in tmp_path.iterdir()} == set(re.findall(r"`(TND-035-\w+\.csv)`", README))

@@ -35,7 +35,9 @@ def loaded(*words: str) -> tuple[int, set[str]]:
     return run.returncode, set(run.stderr.splitlines()[-1].split())
 
 
-@pytest.mark.parametrize("words", [["--version"], ["--help"], ["check", "--help"], ["explain", "--help"]])
+@pytest.mark.parametrize(
+    "words", [["--version"], ["--help"], ["check", "--help"], ["explain", "--help"], ["lists", "--help"]]
+)
 def test_a_question_about_the_command_loads_nothing_slow(words: list[str]) -> None:
     status, modules = loaded(*words)
     assert status == 0
@@ -53,3 +55,16 @@ def test_checking_one_hull_loads_no_graph_library_and_starts_no_processes() -> N
     status, modules = loaded("check", "fleet_example", "--only", "TND-031", "--today", "2026-12-01")
     assert status == 0
     assert [name for name in ("numpy", "networkx", "multiprocessing") if name in modules] == []
+
+
+def test_listing_one_hull_loads_no_graph_library_and_no_other_format(tmp_path: Path) -> None:
+    status, modules = loaded("lists", "fleet_example", "--hull", "TND-031", "--to", str(tmp_path))
+    assert status == 0
+    assert [name for name in ("numpy", "networkx", "multiprocessing", "xml.etree") if name in modules] == []
+
+
+def test_a_check_without_further_reports_loads_no_format_of_theirs() -> None:
+    _, modules = loaded("check", "fleet_example", "--only", "TND-031", "--today", "2026-12-01")
+    formats = ("sarif", "junit", "code_quality", "summary", "annotations", "alerts")
+    assert [name for name in formats if f"checker.output.{name}" in modules] == []
+    assert "xml.etree" not in modules

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator
 from dataclasses import dataclass
 
-from checker.boat.hull import Conductor, Device
+from checker.boat.hull import Boat, Conductor, Device
 from checker.boat.landing import End
 from checker.boat.parts import Bus, Fitted, Fittings, Metal, Part
 from checker.checks.check import Case, Check, Place
@@ -46,29 +46,34 @@ class Landed:
 def landed(case: Case) -> list[Landed]:
     """Return every terminal, in the order of the conductors; what plugs on without a conductor is none."""
     if "landed" not in case.memo:
-        case.memo["landed"] = [
-            _landed(case, conductor, post, end)
-            for conductor in case.boat.conductors.values()
-            for post, end in zip((conductor.start, conductor.end), conductor.ends, strict=True)
-        ]
+        case.memo["landed"] = landed_aboard(case.boat)
     found: list[Landed] = case.memo["landed"]
     return found
 
 
-def _landed(case: Case, conductor: Conductor, post: str, end: End) -> Landed:
-    device = case.boat.device_of(post)
+def landed_aboard(boat: Boat) -> list[Landed]:
+    """Return every terminal of a boat."""
+    return [
+        _landed(boat, conductor, post, end)
+        for conductor in boat.conductors.values()
+        for post, end in zip((conductor.start, conductor.end), conductor.ends, strict=True)
+    ]
+
+
+def _landed(boat: Boat, conductor: Conductor, post: str, end: End) -> Landed:
+    device = boat.device_of(post)
     assert device is not None, post
-    on_screw = _is_under_screw(case, conductor, post, device)
+    on_screw = _is_under_screw(boat, conductor, post, device)
     return Landed(conductor, end, post, device, "screw" if on_screw else kind_of(device), on_screw)
 
 
-def _is_under_screw(case: Case, conductor: Conductor, post: str, device: Device) -> bool:
+def _is_under_screw(boat: Boat, conductor: Conductor, post: str, device: Device) -> bool:
     part = device.part
     if not isinstance(part, Bus) or not part.screws:
         return False
-    if any(conductor.id in stack.conductors for stack in case.boat.landings.get(post, ())):
+    if any(conductor.id in stack.conductors for stack in boat.landings.get(post, ())):
         return False
-    circuit = case.boat.circuits.get(conductor.circuit)
+    circuit = boat.circuits.get(conductor.circuit)
     return part.studs is None or (circuit is not None and bool(circuit.load))
 
 

@@ -90,14 +90,28 @@ def markdown_page(cards: Iterable[Card]) -> str:
     ]  # fmt: skip
     parts += [f"- [{card.id}](#{card.id}): {card.title} ({card.level.value})" for card in rows]
     for card in rows:
-        parts += ["", f"## {card.id}", "", f"**{card.title}**", ""]
-        for label, text in _facts(card):
-            paragraphs = [" ".join(p.split()) for p in text.split("\n\n")]
-            parts += [f"- {label}: {paragraphs[0]}", *(f"  {p}" for p in _spaced(paragraphs[1:]))]
-        shown = examples().get(card.id, ())
-        if shown:
-            parts += ["", "```text", *shown, "```"]
-    return "\n".join([*(line.rstrip() for line in parts), ""])
+        parts += ["", f"## {card.id}", "", *_markdown_lines(card)]
+    return _joined(parts)
+
+
+def markdown_check(card: Card) -> str:
+    """Return what `check_page` tells of one check, as Markdown."""
+    return _joined(_markdown_lines(card))
+
+
+def _markdown_lines(card: Card) -> list[str]:
+    parts = [f"**{card.title}**", ""]
+    for label, text in _facts(card):
+        paragraphs = [" ".join(p.split()) for p in text.split("\n\n")]
+        parts += [f"- {label}: {paragraphs[0]}", *(f"  {p}" for p in _spaced(paragraphs[1:]))]
+    example = examples().get(card.id, ())
+    if example:
+        parts += ["", "```text", *example, "```"]
+    return parts
+
+
+def _joined(lines: Iterable[str]) -> str:
+    return "\n".join([*(line.rstrip() for line in lines), ""])
 
 
 def _spaced(paragraphs: Sequence[str]) -> list[str]:

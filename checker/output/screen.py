@@ -7,6 +7,7 @@ from collections.abc import Iterator, Mapping
 from checker.finding import Card, Level, Verdict
 from checker.output.lines import finding_lines, house_lines, loosened_words
 from checker.output.text import CAUTION, fleet_totals, fleet_verdict, grouped, summary_lines
+from checker.reading.words import no_command
 from checker.result.model import FleetResult
 
 MOST_NOT_ASSESSED = 10
@@ -16,7 +17,7 @@ _RED, _YELLOW, _GREEN, _BOLD, _PLAIN = "\x1b[31m", "\x1b[33m", "\x1b[32m", "\x1b
 
 def screen_report(result: FleetResult, cards: Mapping[str, Card], *, colour: bool) -> str:
     """Return what `fairloom check` prints: findings, what was accepted, totals, a line a hull, the verdict."""
-    return "\n".join(_painted(line, colour) for line in _lines(result, cards)) + "\n"
+    return no_command("\n".join(_painted(line, colour) for line in _lines(result, cards)) + "\n")
 
 
 def _lines(result: FleetResult, cards: Mapping[str, Card]) -> Iterator[str]:

@@ -248,11 +248,16 @@ def summary_lines(result: FleetResult) -> Iterator[str]:
 
 @dataclass(frozen=True, slots=True)
 class Block:
-    """Hold one fault as a reader sees it: under all its limit sets, with the hulls it is on."""
+    """Hold one fault as a reader sees it: under all its limit sets, with the hulls and option sets it is on."""
 
     outcomes: tuple[Outcome, ...]
-    who: str
+    names: tuple[str, ...]
     accepted: dict[str, Acceptance]
+
+    @property
+    def who(self) -> str:
+        """Return the hulls and option sets as text."""
+        return ", ".join(self.names)
 
 
 def grouped(result: FleetResult, verdict: Verdict) -> list[Block]:
@@ -276,7 +281,7 @@ def grouped(result: FleetResult, verdict: Verdict) -> list[Block]:
     found = [
         Block(
             tuple(outcome for outcome, _, _ in rows),
-            ", ".join(rows[0][2]),
+            tuple(rows[0][2]),
             {fingerprint(outcome): acceptance for outcome, acceptance, _ in rows if acceptance},
         )
         for rows in blocks.values()

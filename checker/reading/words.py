@@ -21,6 +21,11 @@ def flat(text: str) -> str:
     return text if text.isprintable() else "".join(c if c.isprintable() else f"\\u{ord(c):04x}" for c in text)
 
 
+def no_command(text: str) -> str:
+    """Return text for a stream that a CI service reads, which takes this sign for a command anywhere in a line."""
+    return text.replace("##[", "##\\u005b")
+
+
 def shown(text: str) -> str:
     """Return text from a yard's file for a message: on one line, cut where it is long."""
     printed = flat(text)

@@ -1,0 +1,1 @@
+"""Hold the commands: each module says what its command takes, and runs it."""
