@@ -6,10 +6,11 @@ import contextlib
 import datetime
 import gc
 from collections.abc import Callable, Collection, Iterator, Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from pathlib import Path
 
 from checker import __version__
+from checker.boat.aboard import Aboard, aboard_of
 from checker.boat.assemble import Assembly, ClassDesign, Subject, assemble
 from checker.boat.build import build_boat
 from checker.boat.catalogue import Catalogue, read_catalogue
@@ -30,6 +31,7 @@ from checker.limits.limit_set import (
     load_limit_set,
     read_limit_set,
 )
+from checker.limits.marks import table_marks
 from checker.network.flow import Copper
 from checker.network.ladder import Rung
 from checker.network.studies import Coppers, Studies
@@ -59,6 +61,7 @@ class Studied:
     ladder: tuple[Rung, ...] = ()
     tightest: Mapping[str, Outcome] = field(default_factory=dict)
     lengths: Lengths = field(default_factory=Lengths)
+    aboard: Aboard = field(default_factory=Aboard)
     faults: tuple[Fault, ...] = ()
 
 
@@ -93,7 +96,19 @@ def check_fleet(
         UsageError: If `only` names a hull that is not in the fleet.
     """
     with _collector_off():
-        files = read_yard(folder)
+        return check_files(read_yard(folder), today=today, only=only, workers=workers, progress=progress)
+
+
+def check_files(
+    files: YardFiles,
+    *,
+    today: datetime.date,
+    only: Collection[str] = (),
+    workers: int = 1,
+    progress: Progress | None = None,
+) -> FleetResult:
+    """Check a fleet whose files have been read; see `check_fleet`."""
+    with _collector_off():
         assembly = assemble(files)
         catalogue, part_faults = _catalogue(files)
         subjects = _chosen(assembly, files, only)
@@ -105,7 +120,8 @@ def check_fleet(
             keys = []
         studied = dict(zip(keys, _study_all(bench, keys, workers, progress), strict=True))
         faults = [*files.faults, *assembly.faults, *part_faults, *table_faults, *rules.faults]
-        return _Gatherer(files, assembly, subjects, studied, faults, today, only, rules.house).result()
+        result = _Gatherer(files, assembly, subjects, studied, faults, today, only, rules.house).result()
+        return replace(result, marks=table_marks(entered), sizes=_sizes(files))
 
 
 @contextlib.contextmanager
@@ -151,6 +167,14 @@ def _adopted(files: YardFiles) -> tuple[str, ...]:
     return tuple(name for name in limit_set_ids() if isinstance(named, list) and name in named)
 
 
+def _sizes(files: YardFiles) -> tuple[tuple[str, str], ...]:
+    """Return how the yard lets one kind of conductor size speak for the other."""
+    data = files.yard.data if files.yard and isinstance(files.yard.data, dict) else {}
+    house = data.get("house")
+    rules = house if isinstance(house, dict) else {}
+    return tuple((name, rules[name]) for name in ("gauge_sizes", "metric_sizes") if isinstance(rules.get(name), str))
+
+
 def _chosen(assembly: Assembly, files: YardFiles, only: Collection[str]) -> list[Subject]:
     if not only:
         return assembly.subjects
@@ -194,7 +218,10 @@ class _Bench:
         thin = sum(outcome.is_thin for outcome in passes)
         ladder = studies.ladder
         tight = tightest(ladder, outcomes)
-        return Studied(news_order(outcomes), passes, thin, sets, ladder, tight, lengths_of(boat))
+        return Studied(
+            news_order(outcomes), passes, thin, sets, ladder, tight, lengths_of(boat),
+            aboard_of(boat),
+        )  # fmt: skip
 
 
 def study_boat(boat: Boat) -> Studies:
@@ -364,7 +391,16 @@ class _Gatherer:
             tool_version=__version__,
             subjects=tuple(results),
             studies=tuple(
-                Study(names[0], study.news, study.passes, study.thin, study.sets, study.ladder, study.tightest)
+                Study(
+                    name=names[0],
+                    news=study.news,
+                    passes=study.passes,
+                    thin=study.thin,
+                    sets=study.sets,
+                    ladder=study.ladder,
+                    tightest=study.tightest,
+                    aboard=study.aboard,
+                )
                 for key, names in alike.items()
                 for study in (self._studied[key],)
             ),
