@@ -7,10 +7,15 @@ import os
 import sys
 from collections.abc import Sequence
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from checker import __version__
 
+if TYPE_CHECKING:
+    import datetime
+
 CLEAN, OPEN_ERRORS, NOT_DONE = 0, 1, 2
+FAIL_ON = ("new-errors", "less-checked", "worse")
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
@@ -56,10 +61,39 @@ def _parser() -> argparse.ArgumentParser:
     check.add_argument("--workers", type=_positive, default=None, metavar="N",
                        help="processes to study boats with (default: one for each core)")  # fmt: skip
     check.set_defaults(run=_check)
+    compare = commands.add_parser("compare", help="say what a change does to which hulls", description=_compare.__doc__)
+    compare.add_argument("base", metavar="BASE", help="a git revision, the folder of a yard, or a result.json")
+    compare.add_argument(
+        "head", nargs="?", metavar="HEAD", help="the same (default: the yard as it lies in its folder)"
+    )
+    compare.add_argument(
+        "--yard", default=".", metavar="FOLDER", help="the yard's folder in the repository (default: here)"
+    )
+    compare.add_argument("--fail-on", action="append", default=[], metavar="WHAT", choices=FAIL_ON,
+                         help="end with 1 also for: less-checked (something is looked at no more), worse (anything is "
+                         "worse); may be repeated (default: new errors only)")  # fmt: skip
+    compare.add_argument("--markdown", metavar="FILE", help="also append the comparison to this file as Markdown")
+    compare.add_argument("--today", metavar="DATE", help="judge waivers as on this day (default: the system's date)")
+    compare.add_argument("--workers", type=_positive, default=None, metavar="N",
+                         help="processes to study boats with (default: one for each core)")  # fmt: skip
+    compare.set_defaults(run=_compare)
     explain = commands.add_parser("explain", help="say what a check does", description=_explain.__doc__)
     explain.add_argument("check", nargs="?", metavar="CHECK", help="the id of a check (default: list all)")
     explain.set_defaults(run=_explain)
     return parser
+
+
+def _today(options: argparse.Namespace) -> datetime.date:
+    """Return the day on which waivers are judged."""
+    import datetime
+
+    from checker.errors import UsageError
+
+    try:
+        # The only place that reads the clock.
+        return datetime.date.fromisoformat(options.today) if options.today is not None else datetime.date.today()
+    except ValueError as error:
+        raise UsageError(f"--today: “{options.today}” is no date; write e.g. 2028-05-29") from error
 
 
 def _positive(text: str) -> int:
@@ -71,8 +105,6 @@ def _positive(text: str) -> int:
 
 def _check(options: argparse.Namespace) -> int:
     """Check every hull, and every option set that may be sold, against the limit sets that apply."""
-    import datetime
-
     from checker.errors import UsageError
     from checker.output.files import write_reports
     from checker.output.screen import screen_report
@@ -80,11 +112,7 @@ def _check(options: argparse.Namespace) -> int:
 
     if options.reports and options.only:
         raise UsageError("--reports writes the reports of the whole fleet: leave out --only")
-    try:
-        # The only place that reads the clock.
-        today = datetime.date.fromisoformat(options.today) if options.today is not None else datetime.date.today()
-    except ValueError as error:
-        raise UsageError(f"--today: “{options.today}” is no date; write e.g. 2028-05-29") from error
+    today = _today(options)
     progress = _Progress()
     result = check_fleet(
         Path(options.folder),
@@ -119,6 +147,30 @@ class _Progress:
     def clear(self) -> None:
         if self._shown:
             print("\r\x1b[K", end="", file=sys.stderr, flush=True)
+
+
+def _compare(options: argparse.Namespace) -> int:
+    """Say what a change does: new errors, what is silenced or looked at less, and what changed aboard which hulls."""
+    from checker.errors import UsageError
+    from checker.output.compare_markdown import compare_markdown
+    from checker.output.compare_text import compare_text
+    from checker.sides import compare
+
+    workers = options.workers or os.cpu_count() or 1
+    comparison = compare(options.base, options.head, Path(options.yard), today=_today(options), workers=workers)
+    sys.stdout.write(compare_text(comparison, colour=sys.stdout.isatty() and "NO_COLOR" not in os.environ))
+    if options.markdown:
+        try:
+            with Path(options.markdown).open("a", encoding="utf-8", newline="\n") as file:
+                file.write(compare_markdown(comparison))
+        except OSError as error:
+            raise UsageError(f"{options.markdown} cannot be written: {error.strerror}") from error
+    is_refused = (
+        comparison.new_errors
+        or ("less-checked" in options.fail_on and comparison.lost)
+        or ("worse" in options.fail_on and comparison.is_worse)
+    )
+    return OPEN_ERRORS if is_refused else CLEAN
 
 
 def _explain(options: argparse.Namespace) -> int:
