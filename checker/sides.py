@@ -64,6 +64,8 @@ def given(name: str, yard: Path) -> Given:
     Raises:
         CheckerError: If it stands for nothing that can be compared, or for two things.
     """
+    if not name:
+        raise UsageError("a side has an empty name: give a revision, a folder or a JSON result")
     try:
         is_file, is_folder = Path(name).is_file(), Path(name).is_dir()
     except (OSError, ValueError):  # too long, or with a NUL: no path

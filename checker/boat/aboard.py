@@ -46,6 +46,15 @@ NOT_TOLD: Mapping[str, tuple[str, ...]] = {
 """Attributes that are no facts of their own, by record; those that are told otherwise are added in this module."""
 
 
+UNKNOWN_UNLESS_WRITTEN = (
+    "bilge_water", "hydrogen_vent", "fuel_parts", "covered", "marked", "in_line_with_fuel", "case_isolated",
+    "internal_fuse", "ac", "workmanship_fuse_marks", "workmanship_switch_marks",
+)  # fmt: skip
+"""Yes-or-no facts that nobody recorded where they are not written."""
+TRUE_UNLESS_WRITTEN = ("bundled", "trip_free", "by_hand", "judges_drop")
+"""Yes-or-no facts that hold where they are not written; all others do not."""
+
+
 def aboard_of(boat: Boat) -> Aboard:
     """Return the lines of a boat, in a fixed order."""
     lines = {f"{kind} {name}" if name else kind: line_of(facts) for kind, name, facts in _things(boat)}

@@ -25,7 +25,7 @@ def _add(budget: Budget, section: Section) -> None:
     if not section.items:
         budget.add(escaped(section.none), "")
         return
-    title = f"{section.title}: {len(section.items)}"
+    title = section.heading
     end = ["", "</details>", ""] if section.is_folded else [""]
     head = ["<details>", f"<summary>{title}</summary>", ""] if section.is_folded else [f"### {title}", ""]
     # The end is added with the head, so that it is there however much fits between them.

@@ -14,7 +14,9 @@ from checker.output.compare_words import (
     headroom_words,
     value_words,
 )
+from checker.result.cards import NOT_STUDIED
 from checker.result.comparison import (
+    FILES,
     Comparison,
     Difference,
     DifferenceKind,
@@ -29,6 +31,10 @@ from checker.result.comparison import (
     SilencedKind,
     Standing,
 )
+from checker.result.gather import natural
+
+MOST_IN_FULL = 3
+"""Findings of one check on the same hulls that are told in full."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -47,6 +53,12 @@ class Section:
     items: tuple[Item, ...]
     is_folded: bool = False
     none: str = ""
+    count: int | None = None
+
+    @property
+    def heading(self) -> str:
+        """Return the title with what the section counts: its items, or what it says."""
+        return f"{self.title}: {len(self.items) if self.count is None else self.count}"
 
 
 def verdict(comparison: Comparison) -> str:
@@ -75,9 +87,8 @@ def preface(comparison: Comparison) -> Iterator[str]:
     sets = [subject.standing for subject in comparison.subjects if not subject.is_hull]
     if sets:
         yield f"option sets that may be sold: {_standings(sets, 'set').replace(' sets', '').replace(' set', '')}"
-    moved = sum(error.by_limits for error in comparison.new_errors)
-    if moved:
-        yield f"{count_words(moved, 'new error')} of these: the boats did not change, what they are held against did"
+    if comparison.limits and comparison.differences == ():
+        yield "no boat changed: what they are held against did"
 
 
 def sections(comparison: Comparison) -> tuple[Section, ...]:
@@ -87,9 +98,12 @@ def sections(comparison: Comparison) -> tuple[Section, ...]:
     new = [change for change in ours if change.kind is FindingKind.NEW]
     errors = [change for change in new if change.found.level == "error"]
     others = [change for change in new if change.found.level != "error"]
+    moved = sum(error.by_limits for error in comparison.new_errors)
+    by_limits = f"; {moved} by changed limits are told below" if moved else ""
     found = [
-        Section("new errors", tuple(_finding(one, names) for one in errors), none="new errors: none"),
-        Section("new warnings and notes", tuple(_finding(one, names, short=True) for one in others)),
+        Section("new errors", tuple(_findings(errors, names)), count=len(errors),
+                none=f"new errors by changes of the boats: none{by_limits}"),
+        Section("new warnings and notes", tuple(_findings(others, names, short=True)), count=len(others)),
         Section("what says less now", tuple(_silenced(one, names) for one in comparison.silenced),
                 none="what says less now (waivers, limits, exemptions, roles, facts of zones): nothing"),
         Section("looked at no more", tuple(_lost(one, names) for one in comparison.lost),
@@ -99,7 +113,7 @@ def sections(comparison: Comparison) -> tuple[Section, ...]:
                 none="headroom lost near the limit: none"),
         Section("changed limits, apart from the boats", tuple(_limits(comparison, names))),
         *_differences(comparison, names),
-        Section("hulls already built that the change reaches", tuple(_built(comparison, names))),
+        Section("hulls already built that the change reaches", tuple(_built(comparison)), count=_reached(comparison)),
         Section("fixed", tuple(_gone(one, names) for one in ours if one.kind is FindingKind.FIXED), is_folded=True),
         Section("moved, still there", tuple(_moved(one, names) for one in ours if one.kind is FindingKind.MOVED),
                 is_folded=True),
@@ -115,7 +129,9 @@ def _subject(change: FindingChange) -> str:
 def _finding(change: FindingChange, names: Names, *, short: bool = False) -> Item:
     found = change.found
     was = f" ({change.was})" if change.was else ""
-    details = [f"on {names.on(change.on)}"]
+    is_of_many = len(change.on) > 1 and found.part in change.on
+    subject = f"{_subject(change)}: " if found.check != NOT_STUDIED.id and not is_of_many else ""
+    details = [f"on {names.on(change.on)}"] if change.on != (FILES,) else []
     if not short and found.at:
         details.append(f"at {found.at}")
     if not short and change.after is not None:
@@ -126,7 +142,26 @@ def _finding(change: FindingChange, names: Names, *, short: bool = False) -> Ite
         details.append(f"remedy: {found.remedy}")
     if not short and found.path:
         details.append(f"path: {' > '.join(found.path)}")
-    return Item(f"{found.level}: {_subject(change)}: {found.fault} [{found.check}]{was}", tuple(details))
+    return Item(f"{found.level}: {subject}{found.fault} [{found.check}]{was}", tuple(details))
+
+
+def _findings(changes: Sequence[FindingChange], names: Names, *, short: bool = False) -> Iterator[Item]:
+    """Tell findings; of many of one check on the same hulls the worst in full, the others by name."""
+    groups: dict[tuple[object, ...], list[FindingChange]] = {}
+    for change in changes:
+        groups.setdefault((change.found.check, change.found.level, change.on, bool(change.was)), []).append(change)
+    for rows in groups.values():
+        worst = sorted(rows, key=_headroom_left) if len(rows) > MOST_IN_FULL else rows
+        yield from (_finding(one, names, short=short) for one in worst[:MOST_IN_FULL])
+        more = sorted((_subject(one) for one in worst[MOST_IN_FULL:]), key=natural)
+        if more:
+            found = rows[0].found
+            yield Item(f"{found.level}: {len(more)} more like these [{found.check}]: {', '.join(more)}")
+
+
+def _headroom_left(change: FindingChange) -> float:
+    headroom = change.after.headroom if change.after else None
+    return float("inf") if headroom is None else headroom
 
 
 def _gone(change: FindingChange, names: Names) -> Item:
@@ -164,20 +199,31 @@ def _silenced(one: Silenced, names: Names) -> Item:
         text = f"{_SILENCED[one.kind]} {one.where}{change}"
     details = [f"on {names.on(one.on)}"] if one.on else []
     if one.hides:
-        more = len(one.hides) - 6
-        details.append(f"hides: {', '.join(one.hides[:6])}{f' and {more} more' if more > 0 else ''}")
+        details.append(f"hides: {_hidden(one.hides)}")
     if one.reason:
         details.append(f"reason: {one.reason}")
     return Item(text, tuple(details))
+
+
+def _hidden(hides: Sequence[tuple[str, str]]) -> str:
+    """Name what is hidden: each check once, with its parts."""
+    by_check: dict[str, list[str]] = {}
+    for check, part in hides:
+        by_check.setdefault(check, []).append(part)
+    told = [
+        f"{check} at {', '.join(parts[:8])}{f' and {len(parts) - 8} more' if len(parts) > 8 else ''}"
+        for check, parts in by_check.items()
+    ]
+    return "; ".join(told)
 
 
 def _lost(one: Lost, names: Names) -> Item:
     more = len(one.names) - 8
     listed = ", ".join(one.names[:8]) + (f" and {more} more" if more > 0 else "")
     if one.kind is LostKind.SUBJECT:
-        return Item(f"{listed} is not there any more")
+        return Item(f"not there any more: {listed}")
     if one.kind is LostKind.STUDY:
-        return Item(f"{listed} could not be studied")
+        return Item(f"could not be studied: {listed}")
     where = f"on {names.on(one.on)}"
     if one.kind is LostKind.CIRCUIT:
         return Item(f"{'circuit' if len(one.names) == 1 else 'circuits'} gone: {listed}", (where,))
@@ -189,17 +235,18 @@ def _lost(one: Lost, names: Names) -> Item:
 
 def _headroom(one: Headroom, names: Names) -> Item:
     left = f"headroom {headroom_words(one.before)} -> {headroom_words(one.after)}"
-    return Item(f"{one.part}: {figures_words(one.after)}, {left} [{one.check}]: {names.short(one.on)}")
+    return Item(f"{one.part}: {figures_words(one.after)}, {left} [{', '.join(one.checks)}]: {names.short(one.on)}")
 
 
 def _limits(comparison: Comparison, names: Names) -> Iterator[Item]:
     for move in comparison.limits:
         yield Item(_move_words(move), (f"reason: {move.reason}",) if move.reason else ())
     moved = [change for change in comparison.findings if change.by_limits]
-    for change in moved:
-        if change.kind is FindingKind.NEW:
-            yield _finding(change, names)
-    for kind, word in ((FindingKind.FIXED, "finding gone by this"), (FindingKind.MOVED, "finding with other figures")):
+    yield from _findings([change for change in moved if change.kind is FindingKind.NEW], names)
+    for kind, word in (
+        (FindingKind.ACCEPTED, "finding by this that a waiver accepts"), (FindingKind.FIXED, "finding gone by this"),
+        (FindingKind.MOVED, "finding with other figures"),
+    ):  # fmt: skip
         rows = [change for change in moved if change.kind is kind]
         if rows:
             listed = ", ".join(f"{one.found.check} at {one.found.part}" for one in rows[:6])
@@ -231,6 +278,15 @@ def _differences(comparison: Comparison, names: Names) -> Iterator[Section]:
     yield Section(title, items, none=f"{title}: nothing")
 
 
+def _about(about: str) -> str:
+    """Name a circuit or thing: the stack of a stud by its stud."""
+    kind, _, name = about.partition(" ")
+    if kind == "stack" and " " in name:
+        post, _, stud = name.partition(" ")
+        return f"stud {stud} of {post}"
+    return about
+
+
 _TOLD_OF_NEW = (
     "name",
     "service",
@@ -249,23 +305,32 @@ _TOLD_OF_NEW = (
 def difference_words(one: Difference, where: str) -> str:
     """Tell what changed aboard in one line."""
     things = f" ({', '.join(one.things[:6])}{' …' if len(one.things) > 6 else ''})" if one.things else ""
+    about = _about(one.about)
     on = f" {where}" if where else ""
     if one.kind is DifferenceKind.CHANGED:
-        told = [", ".join(map(fact_words, one.facts)), *map(figure_words, one.figures)]
-        return f"{one.about}{things}{on}: {'; '.join(told)}"
+        told = [", ".join(map(fact_words, one.facts)), *(figure_words(figure, one.about) for figure in one.figures)]
+        return f"{about}{things}{on}: {'; '.join(told)}"
     facts = {fact.key: fact for fact in one.facts}
     told = [value_words(facts[key]) for key in _TOLD_OF_NEW if key in facts]
     word = "new" if one.kind is DifferenceKind.ADDED else "gone"
-    return f"{one.about}{on}: {word}{': ' if told else ''}{', '.join(told)}"
+    return f"{about} is {word}{on}{': ' if told else ''}{', '.join(told)}"
 
 
-def _built(comparison: Comparison, names: Names) -> Iterator[Item]:
+def _reached(comparison: Comparison) -> int:
+    reached = {hull for one in comparison.retrofits for hull in one.hulls} | {row.hull for row in comparison.behind}
+    return len(reached)
+
+
+def _built(comparison: Comparison) -> Iterator[Item]:
     for one in comparison.retrofits:
         yield Item(f"{', '.join(one.hulls)} ({one.status}): change aboard, or record what was built",
                    tuple(_retrofit(one)))  # fmt: skip
+    behind: dict[tuple[int, int, bool], list[str]] = {}
     for row in comparison.behind:
-        since = "now behind" if row.is_new else "was behind before"
-        yield Item(f"{row.hull}: built to revision {row.revision}, the class is at {row.class_revision} ({since})")
+        behind.setdefault((row.revision, row.class_revision, row.is_new), []).append(row.hull)
+    for (revision, class_revision, is_new), hulls in behind.items():
+        since = "now behind" if is_new else "behind before, too"
+        yield Item(f"{', '.join(hulls)}: built to revision {revision}, the class is at {class_revision} ({since})")
     for name in comparison.same_revision:
         yield Item(f"the revision of class {name} did not rise: raise it, so that these hulls show as behind")
 

@@ -23,8 +23,11 @@ def compare_text(comparison: Comparison, *, colour: bool = False) -> str:
 def _lines(comparison: Comparison) -> Iterator[str]:
     yield f"verdict: {flat(verdict(comparison))}"
     yield from map(flat, preface(comparison))
+    was_empty = False
     for section in sections(comparison):
-        yield ""
+        if section.items or not was_empty:
+            yield ""
+        was_empty = not section.items
         yield from _section(section)
     yield ""
     yield CAUTION
@@ -34,7 +37,7 @@ def _section(section: Section) -> Iterator[str]:
     if not section.items:
         yield section.none
         return
-    yield f"{section.title}: {len(section.items)}"
+    yield section.heading
     most = len(section.items) if section.title == "new errors" else MOST_ITEMS
     for item in section.items[:most]:
         yield f"  {flat(item.text)}"

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from checker.boat.aboard import Fact
+from checker.boat.aboard import TRUE_UNLESS_WRITTEN, UNKNOWN_UNLESS_WRITTEN, Fact
 from checker.checks.words import measured, plain
 from checker.finding import Measure
 from checker.result.comparison import FactChange, FigureChange, SubjectChange
@@ -20,10 +20,10 @@ _UNITS = {
     "_s": " s",
 }  # fmt: skip
 _NAMES = {
-    "start": "from", "end": "to", "size": "", "company": "conductors in its bundle", "covered": "cover",
-    "start_barrel": "barrel at its start", "end_barrel": "barrel at its end", "smallest": "smallest size",
-    "largest": "largest size", "ac": "AC", "band_points": "opening times", "joins": "joined to",
-    "judges_drop": "drop is judged", "by_hand": "worked by hand", "short_time_s": "short time",
+    "name": "", "start": "starts at", "end": "lands on", "size": "", "company": "conductors in its bundle",
+    "covered": "cover", "start_barrel": "barrel at its start", "end_barrel": "barrel at its end",
+    "smallest": "smallest size", "largest": "largest size", "ac": "AC", "band_points": "opening times",
+    "joins": "joined to", "judges_drop": "drop is judged", "by_hand": "worked by hand", "short_time_s": "short time",
     "contact_ohm": "contact resistance", "device": "protected by", "kind": "kind",
 }  # fmt: skip
 _FIGURES = {
@@ -65,10 +65,13 @@ def _pair(fact: FactChange, unit: str) -> tuple[str, str]:
     """Return both values with as many digits as it takes to see that they differ."""
     old, new = fact.old, fact.new
     if isinstance(old, bool) or isinstance(new, bool):
-        return tuple("not written" if one is None else _value(one, "") for one in (old, new))  # type: ignore[return-value]
+        usual = None if fact.key in UNKNOWN_UNLESS_WRITTEN else fact.key in TRUE_UNLESS_WRITTEN
+        old, new = (usual if one is None else one for one in (old, new))
     if unit == " m" and fact.in_feet:
         old, new = (foot_from_metre(one) if isinstance(one, int | float) else one for one in (old, new))
         unit = " ft"
+    if isinstance(old, str) or isinstance(new, str):
+        old, new = ("none" if one is None else one for one in (old, new))
     for digits in (2, 4, 9):
         told = [_value(one, unit, digits) for one in (old, new)]
         if told[0] != told[1]:
@@ -78,7 +81,7 @@ def _pair(fact: FactChange, unit: str) -> tuple[str, str]:
 
 def _value(value: Fact | None, unit: str, digits: int = 2) -> str:
     if value is None:
-        return "not written"
+        return "not recorded"
     if isinstance(value, bool):
         return "yes" if value else "no"
     if isinstance(value, str):
@@ -91,8 +94,8 @@ def _value(value: Fact | None, unit: str, digits: int = 2) -> str:
 
 def _list_words(name: str, old: str, new: str) -> str:
     before, after = old.split(", "), new.split(", ")
-    gone = [item for item in before if item not in after and item != "not written"]
-    came = [item for item in after if item not in before and item != "not written"]
+    gone = [item for item in before if item not in after and item != "none"]
+    came = [item for item in after if item not in before and item != "none"]
     words = [f"without {', '.join(gone)}"] if gone else []
     words += [f"with {', '.join(came)}"] if came else []
     return f"{name}: {'; '.join(words) or 'in another order'}".removeprefix(": ")
@@ -108,9 +111,12 @@ def figures_words(figures: Figures) -> str:
     return f"{value} {'at least' if figures.at_least else 'of'} {limit}"
 
 
-def figure_words(figure: FigureChange) -> str:
-    """Tell a figure that changed: "total drop 2.55 % -> 3.37 % of 3.00 %"."""
+def figure_words(figure: FigureChange, about: str) -> str:
+    """Tell a figure that changed: "total drop 2.55 % -> 3.37 % of 3.00 %"; of which part where that is another."""
     name = _FIGURES.get(figure.check, figure.after.quantity)
+    head = figure.part.partition(" ")[0]
+    if " " in about and head != about.partition(" ")[2]:
+        name = f"{name} of {figure.part}"
     before, old_limit = measured(_measure(figure.before))
     value, limit = measured(_measure(figure.after))
     sense = "at least" if figure.after.at_least else "of"
@@ -143,9 +149,11 @@ class Names:
         """Tell where something is: "3 hulls: TND-031 (delivered), …; and 6 option sets"."""
         hulls, others = self.hulls(on), [name for name in on if not self.hulls([name])]
         words: list[str] = []
-        if hulls:
-            every = "all " if len(hulls) == len(self._hulls) > 1 else ""
-            words.append(f"{every}{count_words(len(hulls), 'hull')}: {_listed([_named(hull) for hull in hulls])}")
+        if len(hulls) == len(self._hulls) > 3:
+            built = sum(hull.is_built for hull in hulls)
+            words.append(f"all {len(hulls)} hulls{f', {built} of them already built' if built else ''}")
+        elif hulls:
+            words.append(f"{count_words(len(hulls), 'hull')}: {_listed([_named(hull) for hull in hulls])}")
         if others and hulls:
             words.append(f"and {count_words(len(others), 'option set')}")
         elif others:

@@ -2,6 +2,7 @@
 
 A role frees a conductor, a zone without vapour asks for no protected part, a condition that is
 not judged has no drop. None of these is wrong by itself; a reviewer should see each that comes.
+What mends a finding at its own place (a cover, a mark, a size) is no such fact.
 """
 
 from __future__ import annotations
@@ -10,7 +11,7 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 from enum import Enum
 
-from checker.boat.aboard import Fact, Facts
+from checker.boat.aboard import TRUE_UNLESS_WRITTEN, Fact, Facts
 from checker.result.compare_aboard import AboardChanges, Thing
 from checker.result.comparison import FactChange
 
@@ -25,6 +26,7 @@ class Says(Enum):
     IF_HIGHER = "it becomes higher, or is taken away"
     IF_FEWER = "it names fewer"
     IF_MORE = "it names more"
+    IF_MILDER = "it becomes what less is asked of"
     IF_ASSERTED = "it is written where nothing was, or asserts more"
 
 
@@ -44,22 +46,21 @@ SAYS_LESS: Mapping[str, Mapping[str, Says]] = {
     },
     "way": {"bundled": _FALSE, "passage": Says.IF_ASSERTED, "ac": Says.IF_ASSERTED},
     "device": {
-        "covered": _TRUE, "marked": _TRUE, "above_bilge_water": _TRUE, "fuel_shielded": _TRUE,
-        "in_line_with_fuel": _FALSE, "engine_mounted": _TRUE,
+        "above_bilge_water": _TRUE, "fuel_shielded": _TRUE, "in_line_with_fuel": _FALSE, "engine_mounted": _TRUE,
     },
     "part": {
         "ignition_protected": _TRUE, "case_isolated": _TRUE, "own_switch": _TRUE, "internal_fuse": _TRUE,
-        "trip_free": _TRUE, "resets_itself": _FALSE, "polarised": _FALSE, "covered": _TRUE, "splice": _TRUE,
+        "trip_free": _TRUE, "resets_itself": _FALSE, "polarised": _FALSE, "splice": _TRUE,
         "motor": _FALSE, "regulator": _FALSE, "stall_protection": _WRITTEN, "by_hand": _FALSE,
         "max_device_a": Says.IF_HIGHER, "min_voltage_v": _LOWER, "on_disconnect": Says.IF_ASSERTED,
         "insulation_c": Says.IF_HIGHER, "ingress": _WRITTEN,
     },
     "condition": {"judges_drop": _FALSE, "short_time_s": _WRITTEN},
-    "state": {"kind": _WRITTEN},
-    "engine": {"fuel": _WRITTEN, "mounting": _WRITTEN},
+    "state": {"kind": Says.IF_MILDER},
+    "engine": {"fuel": Says.IF_MILDER, "mounting": Says.IF_MILDER},
     "boat": {
-        "generator_fuel": _WRITTEN, "ac": _FALSE, "monitored": Says.IF_FEWER, "shields_recorded": _TRUE,
-        "bonds_recorded": _TRUE, **{f"workmanship_{key}": Says.IF_ASSERTED for key in (
+        "generator_fuel": Says.IF_MILDER, "ac": _FALSE, "monitored": Says.IF_FEWER,
+        **{f"workmanship_{key}": Says.IF_ASSERTED for key in (
             "terminal", "ring_as_stud", "barrel_as_conductor", "largest_first", "labels", "passages", "fuse_marks",
             "switch_marks", "ac",
         )},
@@ -67,11 +68,13 @@ SAYS_LESS: Mapping[str, Mapping[str, Says]] = {
 }  # fmt: skip
 """By kind of thing and fact, when it makes the checks say less."""
 
-TRUE_UNLESS_WRITTEN = ("bundled", "trip_free", "by_hand", "judges_drop")
-"""Facts that hold where nothing is written."""
 NAMED_WHEN_NEW = ("role", "place_reason", "always_on", "shares", "return_reason")
 """Claims of a thing that is new aboard: they are told as well."""
 REASONS = {"role": "role_reason"}
+
+
+WIDE = ("zone", "boat", "engine", "state", "condition")
+"""Things whose facts decide what is asked of other things."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -81,6 +84,11 @@ class Claim:
     where: Thing
     fact: FactChange
     reason: str
+
+    @property
+    def is_wide(self) -> bool:
+        """Tell whether it says less of other things than its own."""
+        return self.where.kind in WIDE
 
 
 def claims(changes: AboardChanges) -> Iterator[Claim]:
@@ -117,8 +125,16 @@ def says_less(says: Says, fact: FactChange) -> bool:
         Says.IF_HIGHER: new is None or (old is not None and _number(new) > _number(old)),
         Says.IF_FEWER: bool(_named(old) - _named(new)),
         Says.IF_MORE: bool(_named(new) - _named(old)),
+        Says.IF_MILDER: _mildness(fact.key, new) > _mildness(fact.key, old),
         Says.IF_ASSERTED: new is not None and new is not False,
     }[says]
+
+
+def _mildness(key: str, value: Fact | None) -> int:
+    """Return 0 for what most is asked of: a petrol engine that is no outboard, a normal state."""
+    if key == "kind":
+        return ("normal", "abnormal", "forbidden").index(str(value)) if value else 0
+    return int(value == "outboard") if key == "mounting" else int(value != "petrol")
 
 
 def _number(fact: Fact) -> float:

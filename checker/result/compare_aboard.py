@@ -38,6 +38,9 @@ class AboardChanges:
 
     `changed` are the facts of each thing that is on both sides, `added` and `removed` the facts of
     those that are on one. Parts that come or go with a device are not told: the device tells it.
+    `circuits` are the conductors of each circuit on both sides, `gone_names` and `new_names` what is
+    called by names on one side only, `users` what uses a part or a way that changed, `zones` where
+    devices and conductors stood, `devices` the circuits of devices that changed.
     """
 
     changed: Mapping[Thing, tuple[FactChange, ...]]
@@ -47,11 +50,25 @@ class AboardChanges:
     gone_names: frozenset[str] = frozenset()
     new_names: frozenset[str] = frozenset()
     users: Mapping[str, frozenset[str]] = field(default_factory=dict)
+    zones: Mapping[str, str] = field(default_factory=dict)
+    devices: Mapping[str, str] = field(default_factory=dict)
 
     @property
     def is_nothing(self) -> bool:
         """Tell whether the boats are alike."""
         return not (self.changed or self.added or self.removed)
+
+    @property
+    def touched(self) -> frozenset[str]:
+        """Return the names of all things that changed, came or went."""
+        return frozenset(thing.id for rows in (self.changed, self.added, self.removed) for thing in rows)
+
+    @property
+    def relanded(self) -> frozenset[str]:
+        """Return what lands elsewhere, by the names that checks call it: places there come and go with it."""
+        stacks = [f"{t.id.replace(' ', ' stud ', 1)}" for t in self.changed if t.kind == "stack"]
+        moved = [t.id for t, facts in self.changed.items() if {"start", "end"} & {fact.key for fact in facts}]
+        return frozenset((*stacks, *moved))
 
     def members(self, unit: Unit) -> frozenset[str]:
         """Return the names of what a unit is about: a circuit with its conductors, a part with its devices."""
@@ -84,7 +101,21 @@ def aboard_changes(before: Aboard, after: Aboard) -> AboardChanges:
     both = {name: (circuits[0].get(name, _NONE), circuits[1].get(name, _NONE)) for one in circuits for name in one}
     olds, news = _names(before), _names(after)
     left = _explained(changed, after)
-    return AboardChanges(left, added, removed, both, olds - news, news - olds, dict(_users(left, after)))
+    return AboardChanges(
+        changed=left,
+        added=added,
+        removed=removed,
+        circuits=both,
+        gone_names=olds - news,
+        new_names=news - olds,
+        users=dict(_users(left, after)),
+        zones=dict(_zones(before)) if any(thing.kind == "zone" for thing in left) else {},
+        devices={
+            thing.id: str(facts_of(after.lines[f"device {thing.id}"]).get("circuit", ""))
+            for thing in left
+            if thing.kind == "device"
+        },
+    )
 
 
 def _users(changed: Iterable[Thing], aboard: Aboard) -> Iterator[tuple[str, frozenset[str]]]:
@@ -98,6 +129,13 @@ def _users(changed: Iterable[Thing], aboard: Aboard) -> Iterator[tuple[str, froz
         yield f"part {part}", _named([row for row in rows if part in part_names(row[1])])
     for way in ways:
         yield f"way {way}", _named([row for row in rows if way in str(row[1].get("ways", "")).split(", ")])
+
+
+def _zones(aboard: Aboard) -> Iterator[tuple[str, str]]:
+    for key, line in aboard.lines.items():
+        if key.startswith(("device ", "conductor ")):
+            facts = facts_of(line)
+            yield key.partition(" ")[2], str(facts.get("zone") or facts.get("zones", ""))
 
 
 def _named(rows: Iterable[tuple[Thing, Facts]]) -> frozenset[str]:
@@ -199,6 +237,8 @@ def units(changes: AboardChanges) -> Iterator[Unit]:
 def _circuit_of(thing: Thing, changes: AboardChanges) -> str:
     if thing.kind == "circuit":
         return thing.id
+    if thing.kind == "device":
+        return changes.devices.get(thing.id, "")
     if thing.kind == "conductor":
         return next((name for name, (_, after) in changes.circuits.items() if thing.id in after), "")
     return ""

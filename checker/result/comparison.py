@@ -8,6 +8,9 @@ from enum import Enum
 from checker.boat.aboard import Fact
 from checker.result.side import Figures, Found
 
+FILES = "the yard's files"
+"""Stands for a subject where a finding is of no hull and no option set."""
+
 
 class Standing(Enum):
     """Say how a hull or option set stands after a change."""
@@ -91,7 +94,7 @@ class FactChange:
 class Silenced:
     """Tell what makes the checks say less: what it is, where, what it said and says, and why.
 
-    `fact` is set where it is a fact of the boat. `hides` are the checks, with the part, that say less.
+    `fact` is set where it is a fact of the boat. `hides` are checks that say less, each with the part.
     """
 
     kind: SilencedKind
@@ -101,7 +104,7 @@ class Silenced:
     reason: str
     on: tuple[str, ...]
     fact: FactChange | None = None
-    hides: tuple[str, ...] = ()
+    hides: tuple[tuple[str, str], ...] = ()
 
 
 class LostKind(Enum):
@@ -127,9 +130,9 @@ class Lost:
 
 @dataclass(frozen=True, slots=True)
 class Headroom:
-    """Tell a place that still passes and has lost headroom near its limit."""
+    """Tell a place that still passes and has lost headroom near its limit; `checks` are those with one figure."""
 
-    check: str
+    checks: tuple[str, ...]
     limit_set: str
     part: str
     before: Figures

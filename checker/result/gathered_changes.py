@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
+from dataclasses import replace
 
 from checker.result.compare_findings import LEVELS, Match
 from checker.result.compare_places import bare
@@ -22,7 +23,8 @@ def finding_changes(changes: Iterable[Change], by_limits: ByLimits) -> tuple[Fin
                 continue  # told among what is silenced
             name, found = change.subject.id, _found(match)
             is_moved = by_limits.has_finding(name, match)
-            key = (match.kind, found.check, found.about[2], found.level, match.was, match.is_worse, is_moved)
+            part = "" if found.part == name else found.about[2]  # of the hull itself, e.g. that it is behind
+            key = (match.kind, found.check, part, found.level, match.was, match.is_worse, is_moved)
             groups.setdefault(key, []).append((name, match))
     return tuple(sorted((_finding_change(key[-1] is True, rows) for key, rows in groups.items()), key=_order))
 
@@ -69,21 +71,23 @@ def headroom_changes(changes: Iterable[Change], by_limits: ByLimits) -> tuple[He
         for key, (before, after) in change.places.thinner.items():
             group = key.check, bare(key.part), after.quantity, by_limits.has_place(change.subject.id, key)
             groups.setdefault(group, []).append((change.subject.id, key, before, after))
-    found: list[Headroom] = []
+    alike: dict[tuple[object, ...], Headroom] = {}
     for (check, part, _, is_moved), rows in groups.items():
-        _, key, before, after = min(rows, key=lambda row: _headroom(row[3]))
+        _, place, before, after = min(rows, key=lambda row: _headroom(row[3]))
         names = tuple(dict.fromkeys(name for name, *_ in rows))
-        found.append(Headroom(check, key.limit_set, part, before, after, names, is_moved))
-    return tuple(sorted(found, key=lambda one: (_headroom(one.after), one.check, natural(one.part))))
+        figures = f"{after.value:.6g} {after.limit:.6g} {after.unit}"
+        one = Headroom((check,), place.limit_set, part, before, after, names, is_moved)
+        known = alike.get((part, figures, names, is_moved))
+        alike[part, figures, names, is_moved] = replace(known, checks=(*known.checks, check)) if known else one
+    return tuple(sorted(alike.values(), key=lambda one: (_headroom(one.after), natural(one.part), one.checks)))
 
 
 def lost_changes(changes: Sequence[Change], base: Side, head: Side) -> tuple[Lost, ...]:
     """Return what is looked at no more: hulls, circuits, places, and what is newly not assessed."""
-    gone = tuple(change.subject.id for change in changes if change.after is None)
+    gone = tuple(change.subject.id for change in changes if change.after is None and not change.matches)
     unstudied = tuple(name for name in head.unstudied if name not in base.unstudied)
-    found = [Lost(LostKind.STUDY, "", (name,), ()) for name in unstudied]
-    lost_names = {name.removeprefix("hull ").removeprefix("option set ") for name in unstudied}
-    found += [Lost(LostKind.SUBJECT, "", (name,), ()) for name in gone if name not in lost_names]
+    found = [Lost(LostKind.STUDY, "", unstudied, ())] if unstudied else []
+    found += [Lost(LostKind.SUBJECT, "", gone, ())] if gone else []
     groups: dict[tuple[LostKind, str, str], dict[str, list[str]]] = {}
 
     def add(kind: LostKind, check: str, why: str, name: str, subject: str) -> None:

@@ -34,7 +34,14 @@ def retrofits(changes: Sequence[Change]) -> tuple[Retrofit, ...]:
 
 
 def _named(change: Change, kind: FindingKind) -> tuple[str, ...]:
-    return tuple(dict.fromkeys(_name(match) for match in change.matches if match.kind is kind))
+    rows = (match for match in change.matches if match.kind is kind)
+    return tuple(dict.fromkeys(_name(match) for match in rows if not _is_of_hull(match, change)))
+
+
+def _is_of_hull(match: Match, change: Change) -> bool:
+    """Tell whether a finding is of the hull itself: that it is behind its class is told for all hulls together."""
+    told = match.after or match.before
+    return told is not None and told.found.part == change.subject.id
 
 
 def _name(match: Match) -> str:

@@ -54,8 +54,8 @@ def _no_such_number(word: str) -> NoReturn:
 
 
 def _side(document: Mapping[str, Any], name: str) -> Side:
-    studies = _studies(document["studies"])
-    subjects = tuple(map(_subject, document["subjects"]))
+    studies = _studies(_rows(document["studies"]))
+    subjects = tuple(map(_subject, _rows(document["subjects"])))
     if missing := [subject.study for subject in subjects if subject.study not in studies]:
         raise ValueError(f"there is no study {missing[0]}")
     return Side(
@@ -63,9 +63,9 @@ def _side(document: Mapping[str, Any], name: str) -> Side:
         tool_version=_text(document["tool"]["version"]),
         subjects=subjects,
         studies=studies,
-        file_found=tuple(map(_found, document["file_findings"])),
-        unstudied=tuple(map(_text, document["not_studied"])),
-        rules=tuple(map(_rule, document["house_rules"])),
+        file_found=tuple(map(_found, _rows(document["file_findings"]))),
+        unstudied=tuple(map(_text, _rows(document["not_studied"]))),
+        rules=tuple(map(_rule, _rows(document["house_rules"]))),
         sizes=tuple((_text(key), _text(value)) for key, value in document.get("sizes", {}).items()),
         marks=_marks(document.get("tables", {})),
     )
@@ -74,6 +74,12 @@ def _side(document: Mapping[str, Any], name: str) -> Side:
 def _text(value: object) -> str:
     if not isinstance(value, str):
         raise TypeError("no text")
+    return value
+
+
+def _rows(value: object) -> list[Any]:
+    if not isinstance(value, list):
+        raise TypeError("no list")
     return value
 
 
@@ -119,9 +125,9 @@ def _subject(row: Mapping[str, Any]) -> SideSubject:
         changes=tuple(map(_text, row["changes"])),
         accepted={
             _text(a["fingerprint"]): Waived(*(_text(a[key]) for key in ("waiver", "reason", "approved_by", "expires")))
-            for a in row["accepted"]
+            for a in _rows(row["accepted"])
         },
-        own=tuple(map(_found, row["own_findings"])),
+        own=tuple(map(_found, _rows(row["own_findings"]))),
     )
 
 
@@ -158,8 +164,8 @@ def _studies(rows: list[Mapping[str, Any]]) -> dict[str, SideStudy]:
     return {
         row["name"]: SideStudy(
             _text(row["name"]),
-            tuple(map(_found, row["found"])),
-            _places(row["passed"]),
+            tuple(map(_found, _rows(row["found"]))),
+            _places(_rows(row["passed"])),
             tuple(_text(use["id"]) for use in row["limit_sets"]),
             aboard.get(row["name"]),
         )

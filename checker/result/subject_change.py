@@ -18,7 +18,8 @@ class Change:
     """Hold how one hull or option set changed; it is new without `before`, and gone without `after`.
 
     `notes` are the notes of what now passes without figures, `unassessed` what is newly not
-    assessed, `dropped_sets` the limit sets it is judged by no more.
+    assessed, `dropped_sets` the limit sets it is judged by no more, `unasked` what a finding is gone
+    of because nothing looks there any more.
     """
 
     before: SideSubject | None
@@ -31,6 +32,7 @@ class Change:
     aboard: AboardChanges | None = None
     units: tuple[Unit, ...] = ()
     claims: tuple[Claim, ...] = ()
+    unasked: frozenset[About] = frozenset()
 
     @property
     def subject(self) -> SideSubject:
@@ -44,7 +46,7 @@ class Change:
         if match.kind is not FindingKind.FIXED or match.before is None:
             return False
         found = match.before.found
-        return found.about in self.notes or found.limit_set in self.dropped_sets
+        return found.about in self.notes or found.about in self.unasked or found.limit_set in self.dropped_sets
 
 
 def subject_change(change: Change) -> SubjectChange:
@@ -56,13 +58,17 @@ def subject_change(change: Change) -> SubjectChange:
 
 
 def _standing(change: Change) -> Standing:
-    if change.before is None or change.after is None:
-        return Standing.NEW if change.before is None else Standing.GONE
+    if change.before is None:
+        return Standing.NEW
+    if change.after is None:
+        return Standing.WORSE if change.matches else Standing.GONE  # worse: it could not be studied
     places = change.places
-    is_less = places.lost or places.exempt or places.thinner or change.unassessed or change.dropped_sets
+    is_less = places.lost or places.exempt or change.unassessed or change.dropped_sets
     if is_less or any(match.is_worse or change.is_silenced(match) for match in change.matches):
         return Standing.WORSE
-    return Standing.BETTER if change.matches else Standing.UNCHANGED
+    if change.matches:
+        return Standing.BETTER  # thinner margins beside a mended finding are told, and are no worse boat
+    return Standing.WORSE if places.thinner else Standing.UNCHANGED
 
 
 def _is_alike(change: Change) -> bool:
