@@ -6,10 +6,11 @@ import contextlib
 import datetime
 import gc
 from collections.abc import Callable, Collection, Iterator, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 
 from checker import __version__
+from checker.boat.aboard import Aboard, aboard_of
 from checker.boat.assemble import Assembly, ClassDesign, Subject, assemble
 from checker.boat.build import build_boat
 from checker.boat.catalogue import Catalogue, read_catalogue
@@ -30,6 +31,7 @@ from checker.limits.limit_set import (
     load_limit_set,
     read_limit_set,
 )
+from checker.limits.marks import Marks, table_marks
 from checker.network.flow import Copper
 from checker.network.studies import Coppers, Studies
 from checker.reading.cards import FILE_CARDS
@@ -76,7 +78,7 @@ def check_fleet(
         only: Ids of the hulls to check; empty for the whole fleet.
         workers: How many processes study boats side by side; the result does not depend on it.
         progress: Called with the number of boats studied and their total.
-        lists_passes: Whether the result holds each pass, as reports need, or only their number.
+        lists_passes: Whether the result holds each pass and what is aboard, as reports need, or only numbers.
         store: Studies of earlier runs; the result does not depend on them.
 
     Raises:
@@ -84,16 +86,35 @@ def check_fleet(
         UsageError: If `only` names a hull that is not in the fleet.
     """
     with _collector_off():
+        return check_files(
+            read_yard(folder), today=today, only=only, workers=workers, progress=progress,
+            lists_passes=lists_passes, store=store,
+        )  # fmt: skip
+
+
+def check_files(
+    files: YardFiles,
+    *,
+    today: datetime.date,
+    only: Collection[str] = (),
+    workers: int = 1,
+    progress: Progress | None = None,
+    lists_passes: bool = True,
+    store: Store | None = None,
+) -> FleetResult:
+    """Check a fleet whose files have been read; see `check_fleet`."""
+    with _collector_off():
         # What is kept has its passes, whatever this run needs: the next one may report.
-        fleet = _read_fleet(folder, lists_passes=lists_passes or store is not None)
-        subjects = _chosen(fleet.assembly, fleet.files, only)
+        fleet = _assembled(files, lists_passes=lists_passes or store is not None)
+        subjects = _chosen(fleet.assembly, files, only)
         keys = fleet.keys(subjects)
         studied = dict(zip(keys, _study_all(fleet, keys, workers, progress, store, lists_passes), strict=True))
         if store is not None and not only:
             store.tidy()
-        return _Gatherer(
-            fleet.files, fleet.assembly, subjects, studied, fleet.faults, today, only, fleet.rules.house
+        result = _Gatherer(
+            files, fleet.assembly, subjects, studied, fleet.faults, today, only, fleet.rules.house
         ).result()
+        return replace(result, marks=fleet.marks, sizes=_sizes(files))
 
 
 def study_part(
@@ -107,7 +128,7 @@ def study_part(
         FleetNotFoundError: If the folder holds no yard.
     """
     with _collector_off():
-        fleet = _read_fleet(folder, lists_passes=True)
+        fleet = _assembled(read_yard(folder), lists_passes=True)
         keys = fleet.keys(fleet.assembly.subjects)[part - 1 :: of]
         _study_all(fleet, keys, workers, progress, store, lists_passes=False)
         return len(keys)
@@ -122,6 +143,7 @@ class _Fleet:
     rules: HouseRules
     bench: _Bench
     faults: list[Fault]
+    marks: Marks
     has_sound_parts: bool
 
     def keys(self, subjects: Sequence[Subject]) -> list[StudyKey]:
@@ -140,8 +162,7 @@ class _Fleet:
         return study_name([key, class_id], [repr(self.rules.house)], sums)
 
 
-def _read_fleet(folder: Path, *, lists_passes: bool) -> _Fleet:
-    files = read_yard(folder)
+def _assembled(files: YardFiles, *, lists_passes: bool) -> _Fleet:
     assembly = assemble(files)
     catalogue, part_faults = _catalogue(files)
     entered, table_faults = read_entered(files.limits, files.faulty)
@@ -149,7 +170,7 @@ def _read_fleet(folder: Path, *, lists_passes: bool) -> _Fleet:
     sets = _limit_sets(entered, rules)
     bench = _Bench(assembly, catalogue, rules.house, _adopted(files), sets, lists_passes=lists_passes)
     faults = [*files.faults, *assembly.faults, *part_faults, *table_faults, *rules.faults]
-    return _Fleet(files, assembly, rules, bench, faults, not part_faults)
+    return _Fleet(files, assembly, rules, bench, faults, table_marks(entered), not part_faults)
 
 
 @contextlib.contextmanager
@@ -193,6 +214,14 @@ def _adopted(files: YardFiles) -> tuple[str, ...]:
     data = files.yard.data if files.yard and isinstance(files.yard.data, dict) else {}
     named = data.get("limit_sets", [])
     return tuple(name for name in limit_set_ids() if isinstance(named, list) and name in named)
+
+
+def _sizes(files: YardFiles) -> tuple[tuple[str, str], ...]:
+    """Return how the yard lets one kind of conductor size speak for the other."""
+    data = files.yard.data if files.yard and isinstance(files.yard.data, dict) else {}
+    house = data.get("house")
+    rules = house if isinstance(house, dict) else {}
+    return tuple((name, rules[name]) for name in ("gauge_sizes", "metric_sizes") if isinstance(rules.get(name), str))
 
 
 def _chosen(assembly: Assembly, files: YardFiles, only: Collection[str]) -> list[Subject]:
@@ -252,6 +281,7 @@ class _Bench:
             ladder=ladder,
             tightest=tightest(ladder, outcomes),
             lengths=lengths_of(boat),
+            aboard=aboard_of(boat) if self._lists_passes else Aboard(),
         )
 
     def study_to_keep(self, key: StudyKey) -> Studied | Written:
@@ -444,7 +474,16 @@ class _Gatherer:
             tool_version=__version__,
             subjects=tuple(results),
             studies=tuple(
-                Study(names[0], study.news, study.passes, study.thin, study.sets, study.ladder, study.tightest)
+                Study(
+                    name=names[0],
+                    news=study.news,
+                    passes=study.passes,
+                    thin=study.thin,
+                    sets=study.sets,
+                    ladder=study.ladder,
+                    tightest=study.tightest,
+                    aboard=study.aboard,
+                )
                 for key, names in alike.items()
                 for study in (self._studied[key],)
             ),

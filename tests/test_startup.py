@@ -36,7 +36,8 @@ def loaded(*words: str) -> tuple[int, set[str]]:
 
 
 @pytest.mark.parametrize(
-    "words", [["--version"], ["--help"], ["check", "--help"], ["explain", "--help"], ["lists", "--help"], ["waiver", "--help"]]
+    "words",
+    [["--version"], ["--help"], ["check", "--help"], ["explain", "--help"], ["lists", "--help"], ["waiver", "--help"]],
 )
 def test_a_question_about_the_command_loads_nothing_slow(words: list[str]) -> None:
     status, modules = loaded(*words)

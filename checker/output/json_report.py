@@ -11,9 +11,11 @@ from collections.abc import Mapping
 from dataclasses import asdict
 from typing import Any
 
+from checker.boat.aboard import facts_of
 from checker.checks.check import HouseChange
 from checker.finding import Card, Outcome, Verdict
 from checker.network.ladder import Rung
+from checker.result.aboard import Packed, packed
 from checker.result.gather import fingerprint
 from checker.result.model import FleetResult, SetUse, Study, SubjectResult
 
@@ -22,6 +24,7 @@ SCHEMA_VERSION = "1"
 
 def json_report(result: FleetResult, cards: Mapping[str, Card]) -> str:
     """Return the result as JSON text: keys in a fixed order, numbers rounded to nine digits."""
+    aboard = packed(result.studies, result.subjects)
     document: dict[str, Any] = {
         "schema_version": SCHEMA_VERSION,
         "tool": {"name": "fairloom", "version": result.tool_version},
@@ -29,9 +32,11 @@ def json_report(result: FleetResult, cards: Mapping[str, Card]) -> str:
         "clean": result.is_clean,
         "open_errors": result.open_errors,
         "house_rules": [_Line(_house(change)) for change in result.house],
+        "sizes": _Line(result.sizes),
+        "tables": {owner: _Line(marks) for owner, marks in result.marks.items()},
         "checks": [_Line(_card(card)) for card in cards.values()],
         "subjects": [_subject(subject) for subject in result.subjects],
-        "studies": [_study(study) for study in result.studies],
+        "studies": [_study(study, aboard.get(study.name)) for study in result.studies],
         "file_findings": [_Line(_outcome(outcome)) for outcome in result.file_outcomes],
         "not_studied": list(result.unstudied),
     }
@@ -96,14 +101,21 @@ def _subject(subject: SubjectResult) -> dict[str, Any]:
     }
 
 
-def _study(study: Study) -> dict[str, Any]:
+def _study(study: Study, aboard: Packed | None) -> dict[str, Any]:
     return {
         "name": study.name,
         "limit_sets": [_set_use(use) for use in study.sets],
         "found": [_Line(_outcome(outcome)) for outcome in study.news],
         "protection": [_Line(_rung(rung, study.tightest.get(rung.device))) for rung in study.ladder],
         "passed": _passes(study),
+        **({} if aboard is None else {"aboard": _aboard(aboard)}),
     }
+
+
+def _aboard(packed: Packed) -> dict[str, Any]:
+    """Return what is aboard: like another study, without some things, with these."""
+    return {"like": packed.like, "without": list(packed.without),
+            "things": {key: _Line(facts_of(line)) for key, line in packed.lines.items()}}  # fmt: skip
 
 
 def _rung(rung: Rung, nearest: Outcome | None) -> dict[str, Any]:
@@ -123,15 +135,16 @@ def _rung(rung: Rung, nearest: Outcome | None) -> dict[str, Any]:
 
 def _passes(study: Study) -> list[dict[str, Any]]:
     """Return the passes by check, limit set and quantity; a place is [value, limit, headroom], or a note."""
-    groups: dict[tuple[str, str, str, str, bool], dict[str, Any]] = {}
+    groups: dict[tuple[str, str, str, str, bool, bool], dict[str, Any]] = {}
     looks: Counter[tuple[object, ...]] = Counter()
     told: Any
     for outcome in study.passes:
         measure = outcome.measure
         if measure is None:
-            key, told = (outcome.check, outcome.limit_set, "", "", False), outcome.note or ""
+            key, told = (outcome.check, outcome.limit_set, "", "", False, False), outcome.note or ""
         else:
-            key = (outcome.check, outcome.limit_set, measure.quantity, measure.unit or "fraction", measure.at_least)
+            unit = measure.unit or "fraction"
+            key = (outcome.check, outcome.limit_set, measure.quantity, unit, measure.at_least, measure.is_stepped)
             told = [_number(x) for x in (measure.value, measure.limit, measure.headroom_fraction)]
         # A part that one check looks at more than once has each look under a name of its own.
         times = looks[key, outcome.part] = looks[key, outcome.part] + 1
@@ -141,9 +154,10 @@ def _passes(study: Study) -> list[dict[str, Any]]:
             "check": check,
             "limit_set": limit_set,
             **({"quantity": quantity, "unit": unit, "sense": "at least" if at_least else "at most"} if unit else {}),
+            **({"stepped": True} if stepped else {}),
             "places": places,
         }
-        for (check, limit_set, quantity, unit, at_least), places in sorted(groups.items())
+        for (check, limit_set, quantity, unit, at_least, stepped), places in sorted(groups.items())
     ]
 
 

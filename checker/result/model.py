@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
 
+from checker.boat.aboard import Aboard
 from checker.checks.check import HouseChange
 from checker.finding import Level, Outcome, Span, Verdict
 from checker.network.ladder import Rung
@@ -54,6 +55,7 @@ class Study:
     sets: tuple[SetUse, ...]
     ladder: tuple[Rung, ...] = ()
     tightest: Mapping[str, Outcome] = field(default_factory=dict)
+    aboard: Aboard = field(default_factory=Aboard)
 
 
 @dataclass(frozen=True, slots=True)
@@ -118,7 +120,11 @@ class SubjectResult:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class FleetResult:
-    """Hold everything a run found; every output renders this and judges nothing."""
+    """Hold everything a run found; every output renders this and judges nothing.
+
+    `marks` tell by limit set and table what the limit tables say, `sizes` how the yard lets one kind
+    of conductor size speak for the other.
+    """
 
     yard: str
     tool_version: str
@@ -127,6 +133,8 @@ class FleetResult:
     file_outcomes: tuple[Outcome, ...]
     unstudied: tuple[str, ...]
     house: tuple[HouseChange, ...] = ()
+    marks: Mapping[str, Mapping[str, str]] = field(default_factory=dict)
+    sizes: tuple[tuple[str, str], ...] = ()
 
     @property
     def open_errors(self) -> int:

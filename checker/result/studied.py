@@ -12,6 +12,7 @@ from collections.abc import Mapping
 from dataclasses import astuple, dataclass, field
 from typing import Any
 
+from checker.boat.aboard import Aboard
 from checker.finding import Level, Measure, Outcome, Span, Verdict
 from checker.network.ladder import Rung
 from checker.reading.document import Fault
@@ -34,6 +35,7 @@ class Studied:
     ladder: tuple[Rung, ...] = ()
     tightest: Mapping[str, Outcome] = field(default_factory=dict)
     lengths: Lengths = field(default_factory=Lengths)
+    aboard: Aboard = field(default_factory=Aboard)
     faults: tuple[Fault, ...] = ()
 
 
@@ -58,6 +60,8 @@ def written(studied: Studied) -> Written:
         "tightest": {device: _row(outcome) for device, outcome in studied.tightest.items()},
         "lengths_m": dict(studied.lengths.all_m),
         "own_lengths": [astuple(length) for length in studied.lengths.own],
+        "aboard": dict(studied.aboard.lines),
+        "in_feet": sorted(studied.aboard.in_feet),
     }
     return Written(_packed(most), _packed([_row(outcome) for outcome in studied.passes]))
 
@@ -86,6 +90,7 @@ def read_study(one: Written, *, lists_passes: bool) -> Studied:
                     for conductor, circuit, length_m, at in most["own_lengths"]
                 ),
             ),
+            aboard=Aboard(most["aboard"], frozenset(most["in_feet"])),
         )
     except (zlib.error, KeyError, TypeError, IndexError) as error:
         raise ValueError("no study") from error
