@@ -154,6 +154,24 @@ def test_a_sound_yard_passes(tmp_path: Path) -> None:
     assert job.run("Verdict").returncode == 0
 
 
+def test_committed_reports_that_the_data_do_not_give_fail_the_job_and_are_told(tmp_path: Path) -> None:
+    from tests.test_command import run
+    from tests.test_readme import YARD
+
+    job = Job(tmp_path, YARD, committed="their reports", today="2026-12-01")
+    run("check", job.repository, "--reports", job.repository / "their reports", "--today", "2026-12-01")
+    assert job.run("Check").returncode == 0
+    assert job.values["steps.check.outputs.status"] == "0"
+    report = next((job.repository / "their reports/hulls").iterdir())
+    report.write_text(report.read_text("utf-8").replace("status: ", "status: ::error::pwned "), "utf-8")
+    done = job.run("Check")
+    assert done.returncode == 0, done.stderr
+    assert job.values["steps.check.outputs.status"] == "1"
+    assert "| hulls/" in done.stdout
+    messages = [command.message for command in commands(done.stdout) if command.word == "error"]
+    assert messages == ["the committed reports are not what the data give: write them anew and commit them"]
+
+
 def test_a_yard_in_a_folder_has_its_paths_from_the_root_of_the_repository(tmp_path: Path) -> None:
     job = Job(tmp_path, {f"our boats/{name}": text for name, text in DORY.items()}, folder="our boats")
     done = job.run("Check")
