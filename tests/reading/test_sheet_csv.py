@@ -111,7 +111,7 @@ def test_whatever_a_spreadsheet_writes_is_read_as_the_same_cells(rows: list[list
     from checker.reading import sheet_csv
 
     found = [[cell.text for cell in row] for row in sheet_csv._rows(text, "a.csv", document)][1:]
-    others = [row for row in csv.reader(io.StringIO(text, newline=""), strict=False)][1:]
+    others = list(csv.reader(io.StringIO(text, newline=""), strict=False))[1:]
     assert [r for r in found if any(r)] == [
         [cell.strip() for cell in row] for row in others if any(cell.strip() for cell in row)
     ]
