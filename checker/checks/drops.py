@@ -108,6 +108,13 @@ def _shared_a(case: Case, conductor: Conductor, own_a: float) -> float:
     return max(own_a, meant or 0.0)
 
 
+def own_pieces(case: Case, circuit: Circuit) -> tuple[tuple[str, ...], ...]:
+    """Return the conductors along a circuit's own worst way out and worst way back; those in parallel together."""
+    if circuit.current_a is None:
+        return ()
+    return tuple(tuple(name.split("+")) for name, _ in _own_terms(case, circuit, 1.0, {}))
+
+
 def _own_terms(case: Case, circuit: Circuit, k: float, sizes: Mapping[str, Size]) -> list[tuple[str, float]]:
     """Return the parts in the drop along a circuit's own worst way out and worst way back.
 

@@ -194,7 +194,7 @@ def standby_days(case: Case) -> Iterator[Outcome]:
             continue
         first = case.boat.devices[bank.strings[0][0]]
         place = Place(bank.id, first.at)
-        current_a = _standby_a(case, bank.id)
+        current_a = standby_a(case, bank.id)
         if current_a is None:
             yield standby_days.not_assessed(case, place, "no condition with all switches off, and a standby missing",
                                             "a condition with all switches open, or standby")  # fmt: skip
@@ -210,7 +210,7 @@ def standby_days(case: Case) -> Iterator[Outcome]:
         yield standby_days.judge(case, place, measure, lambda told=told: told)  # type: ignore[misc]
 
 
-def _standby_a(case: Case, bank: str) -> float | None:
+def standby_a(case: Case, bank: str) -> float | None:
     """Return what a bank gives with everything off, or None where it is not known."""
     off = case.studies.all_off.state.closed
     for current in case.studies.bank_currents:

@@ -22,6 +22,7 @@ from checker.limits.limit_set import (
     surge_s,
     thin_margin_fraction,
 )
+from checker.limits.measuring_rule import measuring_rule
 from checker.limits.rules import row_size
 from checker.limits.table_file import HOUSE, CommonChanges, Table, TableError, common_table, read_table
 from checker.limits.terminal_rule import joint_rule
@@ -81,6 +82,15 @@ _OF_COMMON: _Ways = {
         "bond_current_a": _LOWER, "gauges_thinner": _LOWER, "stalled_hours": _LOWER, "heavy_motor_a": _LOWER,
     },
     "joints": {"same_ring_within_mm": _LOWER, "torque_above_a": _LOWER},
+    "measuring": {
+        "percent_of_predicted": _LOWER, "added_v": _LOWER, "heavy_above_a": _LOWER,
+        "heavy_percent_of_predicted": _LOWER,
+        "heavy_joint_mohm": _LOWER, "heavy_added_v": _LOWER, "least_percent_of_predicted": _HIGHER,
+        "least_predicted_v": _LOWER, "least_percent_of_current": _HIGHER, "most_percent_of_current": _LOWER,
+        "added_current_a": _LOWER, "least_circuit_a": _LOWER, "clamp_percent": _LOWER, "clamp_added_a": _LOWER,
+        "all_off_added_a": _LOWER, "leakage_ma": _LOWER, "sisters_percent": _LOWER, "sisters_least_v": _LOWER,
+        "sisters_fewest": _LOWER,
+    },
     "selectivity": {"least_ratio": _HIGHER},
     "start": {"start_s": _HIGHER},
     "surge": {"surge_s": _LOWER},
@@ -91,6 +101,7 @@ _COMMON_READERS: Mapping[str, Callable[[CommonChanges], object]] = {
     "always_on": always_on_rule,
     "grounding": grounding_rule,
     "joints": joint_rule,
+    "measuring": measuring_rule,
     "selectivity": least_selectivity_ratio,
     "start": start_s,
     "surge": surge_s,

@@ -18,7 +18,7 @@ from checker.reading.document import Document, Fault
 from checker.reading.quantity import Dimension, QuantityError, read_number, read_size
 from checker.reading.words import nearest, shown
 
-KINDS = ("yard", "parts", "class", "option", "hull", "waivers", "limits")
+KINDS = ("yard", "parts", "class", "option", "hull", "waivers", "limits", "sheet")
 """The kinds of document that a yard writes."""
 
 

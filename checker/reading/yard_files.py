@@ -17,6 +17,7 @@ from checker.errors import FleetNotFoundError
 from checker.finding import Span
 from checker.reading.document import Document, Fault, compose
 from checker.reading.schema import schema_faults
+from checker.reading.sheet_csv import read_sheet_csv
 from checker.reading.words import nearest, shown
 
 YARD_FILE = "yard.yaml"
@@ -28,8 +29,10 @@ _PLACES = (
     ("class", re.compile(r"classes/([^/]+)/[^/]+\.yaml\Z")),
     ("hull", re.compile(r"hulls/[^/]+\.yaml\Z")),
     ("limits", re.compile(r"limits/([^/]+)/[^/]+\.yaml\Z")),
+    ("sheet", re.compile(r"sheets/[^/]+\.(?:yaml|csv)\Z")),
 )
-_FOLDERS = ("parts", "classes", "hulls", "limits")
+SHEETS = "sheets"
+_FOLDERS = ("parts", "classes", "hulls", "limits", SHEETS)
 _PLAIN_ID = re.compile(r"[A-Za-z0-9][A-Za-z0-9_-]{0,39}\Z")
 
 
@@ -48,6 +51,7 @@ class YardFiles:
     hulls: list[Document] = field(default_factory=list)
     waivers: Document | None = None
     limits: list[Document] = field(default_factory=list)
+    sheets: list[Document] = field(default_factory=list)
     faults: list[Fault] = field(default_factory=list)
     bytes_read: int = 0
     sums: dict[str, str] = field(default_factory=dict)
@@ -80,7 +84,7 @@ def read_yard(folder: Path) -> YardFiles:
             continue
         files.bytes_read += len(content)
         files.sums[name] = hashlib.sha256(content).hexdigest()
-        document = compose(content, name)
+        document = read_sheet_csv(content, name) if name.endswith(".csv") else compose(content, name)
         faults = document.faults or schema_faults(document, kind)
         files.faults += faults
         _file_in(files, kind, owner, document)
@@ -93,7 +97,7 @@ def _yaml_files(folder: Path, files: YardFiles) -> Iterator[tuple[str, Path]]:
     for sub in _FOLDERS:
         if (folder / sub).is_dir():
             inside = list((folder / sub).rglob("*"))
-            found += [path for path in inside if _is_yaml(path)]
+            found += [path for path in inside if _is_yaml(path) or (sub == SHEETS and path.suffix == ".csv")]
             for link in (path for path in inside if path.is_symlink() and path.is_dir()):
                 at = Span(_name_of(folder, link), 1, 1)
                 files.faults.append(Fault("unreadable-file", at, "a linked folder is not read", "copy the files in"))
@@ -138,7 +142,7 @@ def _misplaced(name: str) -> Fault:
         if meant
         else (
             "a yard keeps yard.yaml, waivers.yaml, parts/*.yaml, classes/ID/*.yaml, classes/ID/options/*.yaml, "
-            "hulls/*.yaml, limits/SET/*.yaml"
+            "hulls/*.yaml, limits/SET/*.yaml, sheets/*.yaml, sheets/*.csv"
         )
     )
     return Fault("unreadable-file", Span(name, 1, 1), "no kind of document is kept at this place", remedy)
@@ -175,5 +179,7 @@ def _file_in(files: YardFiles, kind: str, owner: str, document: Document) -> Non
             files.options.setdefault(owner, []).append(document)
         case "limits":
             files.limits.append(document)
+        case "sheet":
+            files.sheets.append(document)
         case _:
             files.hulls.append(document)
