@@ -9,17 +9,17 @@ from collections.abc import Callable, Collection, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from pathlib import Path
 
-from checker import __version__
 from checker.boat.aboard import Aboard, aboard_of
-from checker.boat.assemble import Assembly, ClassDesign, Subject, assemble
+from checker.boat.assemble import Assembly, Subject, assemble
 from checker.boat.build import build_boat
 from checker.boat.catalogue import Catalogue, read_catalogue
 from checker.boat.hull import Boat
+from checker.boat.parts import Overcurrent
 from checker.checks.catalogue import CHECKS
-from checker.checks.check import Case, Check, House, HouseChange
+from checker.checks.check import Case, Check, House
 from checker.checks.house import HouseRules, read_house
 from checker.errors import UsageError
-from checker.finding import NOWHERE, Card, Level, Outcome, Verdict
+from checker.finding import Card, Outcome, Verdict
 from checker.limits.entered import Entered, read_entered
 from checker.limits.formulas import resistivity_ohm_mm2_per_m, study_figures
 from checker.limits.limit_set import (
@@ -38,14 +38,17 @@ from checker.reading.cards import FILE_CARDS
 from checker.reading.document import Fault
 from checker.reading.words import nearest
 from checker.reading.yard_files import YardFiles, read_yard
-from checker.result.cards import CLASS_REVISION, NOT_STUDIED, RESULT_CARDS
+from checker.result.cards import RESULT_CARDS
+from checker.result.fleet import Gatherer
 from checker.result.gather import news_order, pass_order, tightest
-from checker.result.model import EnteredTable, FleetResult, SetUse, Study, SubjectResult
-from checker.result.sisters import far_lengths, lengths_of
+from checker.result.measured import MEASURED_CARDS
+from checker.result.model import EnteredTable, FleetResult, SetUse
+from checker.result.sheet import plan
+from checker.result.sheet_file import Sheet, read_sheets
+from checker.result.signing import content_mark, tables_mark
+from checker.result.sisters import lengths_of
 from checker.result.store import Store, study_name
 from checker.result.studied import Studied, Written, read_study, written
-from checker.result.waiver_file import read_waivers
-from checker.result.waivers import Waiver, apply_waivers, unmatched
 
 Progress = Callable[[int, int], None]
 StudyKey = str
@@ -57,7 +60,7 @@ FEWEST_FOR_WORKERS = 8
 
 def all_cards() -> tuple[Card, ...]:
     """Return the cards of everything that can be found, in report order."""
-    return (*FILE_CARDS, *(check.card for check in CHECKS), *RESULT_CARDS)
+    return (*FILE_CARDS, *(check.card for check in CHECKS), *RESULT_CARDS, *MEASURED_CARDS)
 
 
 def check_fleet(
@@ -68,6 +71,7 @@ def check_fleet(
     workers: int = 1,
     progress: Progress | None = None,
     lists_passes: bool = True,
+    plans_tests: bool = False,
     store: Store | None = None,
 ) -> FleetResult:
     """Check a yard's fleet: every hull, and every legal option set of every class.
@@ -79,6 +83,7 @@ def check_fleet(
         workers: How many processes study boats side by side; the result does not depend on it.
         progress: Called with the number of boats studied and their total.
         lists_passes: Whether the result holds each pass and what is aboard, as reports need, or only numbers.
+        plans_tests: Whether the test of every hull is planned, or only of those that have a sheet or a signature.
         store: Studies of earlier runs; the result does not depend on them.
 
     Raises:
@@ -88,7 +93,7 @@ def check_fleet(
     with _collector_off():
         return check_files(
             read_yard(folder), today=today, only=only, workers=workers, progress=progress,
-            lists_passes=lists_passes, store=store,
+            lists_passes=lists_passes, plans_tests=plans_tests, store=store,
         )  # fmt: skip
 
 
@@ -100,20 +105,25 @@ def check_files(
     workers: int = 1,
     progress: Progress | None = None,
     lists_passes: bool = True,
+    plans_tests: bool = False,
     store: Store | None = None,
 ) -> FleetResult:
     """Check a fleet whose files have been read; see `check_fleet`."""
     with _collector_off():
         # What is kept has its passes, whatever this run needs: the next one may report.
-        fleet = _assembled(files, lists_passes=lists_passes or store is not None)
+        fleet = _assembled(files, lists_passes=lists_passes or store is not None, plans_tests=plans_tests)
         subjects = _chosen(fleet.assembly, files, only)
         keys = fleet.keys(subjects)
         studied = dict(zip(keys, _study_all(fleet, keys, workers, progress, store, lists_passes), strict=True))
         if store is not None and not only:
             store.tidy()
-        result = _Gatherer(
-            files, fleet.assembly, subjects, studied, fleet.faults, today, only, fleet.rules.house
-        ).result()
+        tables = {
+            key: tables_mark(fleet.marks, study.sets, fleet.rules.house.changes) for key, study in studied.items()
+        }
+        result = Gatherer(
+            files, fleet.assembly, subjects, studied, fleet.faults, today, only, fleet.rules.house,
+            fleet.sheets, tables, all_cards(), fleet.bench.as_fitted,
+        ).result()  # fmt: skip
         return replace(result, marks=fleet.marks, sizes=_sizes(files))
 
 
@@ -144,6 +154,7 @@ class _Fleet:
     bench: _Bench
     faults: list[Fault]
     marks: Marks
+    sheets: dict[str, Sheet]
     has_sound_parts: bool
 
     def keys(self, subjects: Sequence[Subject]) -> list[StudyKey]:
@@ -159,18 +170,23 @@ class _Fleet:
         shared = [files.yard, *files.parts, *files.limits, *files.classes[class_id], *files.options.get(class_id, [])]
         names = sorted({document.file for document in shared if document} | {self.assembly.written_in.get(key, "")})
         sums = [f"{name} {files.sums[name]}" for name in names if name]
-        return study_name([key, class_id], [repr(self.rules.house)], sums)
+        planned = str(self.bench.is_planned(key))
+        return study_name([key, class_id, planned], [repr(self.rules.house)], sums)
 
 
-def _assembled(files: YardFiles, *, lists_passes: bool) -> _Fleet:
+def _assembled(files: YardFiles, *, lists_passes: bool, plans_tests: bool = False) -> _Fleet:
     assembly = assemble(files)
     catalogue, part_faults = _catalogue(files)
     entered, table_faults = read_entered(files.limits, files.faulty)
     rules = _house(files, assembly, entered)
     sets = _limit_sets(entered, rules)
-    bench = _Bench(assembly, catalogue, rules.house, _adopted(files), sets, lists_passes=lists_passes)
-    faults = [*files.faults, *assembly.faults, *part_faults, *table_faults, *rules.faults]
-    return _Fleet(files, assembly, rules, bench, faults, table_marks(entered), not part_faults)
+    hulls = [subject for subject in assembly.subjects if subject.is_hull]
+    written = {str(d.data.get("hull")) for d in files.hulls if isinstance(d.data, dict)}
+    sheets, sheet_faults = read_sheets([d for d in files.sheets if d.file not in files.faulty], written)
+    planned = frozenset(s.key for s in hulls if plans_tests or s.id in sheets or s.signed is not None)
+    bench = _Bench(assembly, catalogue, rules.house, _adopted(files), sets, lists_passes=lists_passes, planned=planned)
+    faults = [*files.faults, *assembly.faults, *part_faults, *table_faults, *rules.faults, *sheet_faults]
+    return _Fleet(files, assembly, rules, bench, faults, table_marks(entered), sheets, not part_faults)
 
 
 @contextlib.contextmanager
@@ -248,8 +264,10 @@ class _Bench:
         sets: Mapping[str, LimitSet],
         *,
         lists_passes: bool,
+        planned: frozenset[StudyKey],
     ) -> None:
         self._lists_passes = lists_passes
+        self._planned = planned
         self._content = assembly.content
         self._class_of = {subject.key: subject.class_id for subject in assembly.subjects}
         self._catalogue = catalogue
@@ -260,6 +278,10 @@ class _Bench:
     def class_of(self, key: StudyKey) -> str:
         """Return the class of a boat."""
         return self._class_of[key]
+
+    def is_planned(self, key: StudyKey) -> bool:
+        """Tell whether the test of a boat is planned with its study."""
+        return key in self._planned
 
     def study(self, key: StudyKey) -> Studied:
         """Build one boat, study it, and hold it against every limit set that it is judged by."""
@@ -272,6 +294,8 @@ class _Bench:
         outcomes = run_checks(studies, limits, self._house)
         passed = [outcome for outcome in outcomes if outcome.verdict is Verdict.PASSED]
         ladder = studies.ladder
+        is_planned = self.is_planned(key)
+        aboard = aboard_of(boat) if self._lists_passes or is_planned else Aboard()
         return Studied(
             news=news_order(outcomes),
             passes=pass_order(passed) if self._lists_passes else (),
@@ -281,13 +305,34 @@ class _Bench:
             ladder=ladder,
             tightest=tightest(ladder, outcomes),
             lengths=lengths_of(boat),
-            aboard=aboard_of(boat) if self._lists_passes else Aboard(),
+            aboard=aboard,
+            steps=plan(Case(studies, limits[0], limits, self._house)) if is_planned and limits else (),
+            content=content_mark(aboard) if is_planned else "",
         )
+
+    def as_fitted(self, key: StudyKey, device: str, rating_a: float) -> list[Outcome]:
+        """Return the findings that a boat would have if a device aboard had another rating, and has not."""
+        boat, _ = build_boat(self._content[key], self._class_of[key], self._catalogue)
+        if boat is None:
+            return []
+        limits = tuple(self._sets[use.id] for use in _judged_by(boat, self._adopted, self._sets))
+        before = {_named(outcome) for outcome in run_checks(study_boat(boat), limits, self._house)}
+        there = boat.devices[device]
+        assert isinstance(there.part, Overcurrent)
+        made = next((member for member in there.part.series if member.rating_a == rating_a), there.part)
+        fitted = replace(there, part=replace(made, rating_a=rating_a, series=there.part.series))
+        other = replace(boat, devices={**boat.devices, device: fitted})
+        return [o for o in run_checks(study_boat(other), limits, self._house)
+                if o.verdict is Verdict.FINDING and _named(o) not in before]  # fmt: skip
 
     def study_to_keep(self, key: StudyKey) -> Studied | Written:
         """Study one boat and write the study down; one that could not be built is not to be kept."""
         studied = self.study(key)
         return studied if studied.faults else written(studied)
+
+
+def _named(outcome: Outcome) -> tuple[object, ...]:
+    return (outcome.verdict, outcome.check, outcome.part, outcome.limit_set)
 
 
 def study_boat(boat: Boat) -> Studies:
@@ -399,198 +444,3 @@ def _enter_worker(work: Callable[[StudyKey], Studied | Written]) -> None:
 def _study_in_worker(key: StudyKey) -> Studied | Written:
     assert _work_of_worker is not None
     return _work_of_worker(key)
-
-
-class _Gatherer:
-    """Bring studies, waivers and file faults together into one result."""
-
-    def __init__(
-        self,
-        files: YardFiles,
-        assembly: Assembly,
-        subjects: list[Subject],
-        studied: dict[StudyKey, Studied],
-        faults: list[Fault],
-        today: datetime.date,
-        only: Collection[str],
-        house: House,
-    ) -> None:
-        self._house = house
-        self._files = files
-        self._assembly = assembly
-        self._studied = studied
-        self._today = today
-        self._only = only
-        self._faults = [*faults, *(fault for study in studied.values() for fault in study.faults)]
-        self._subjects = [s for s in subjects if s.key in studied and not studied[s.key].faults]
-        self._lost = [s for s in subjects if s not in self._subjects]
-        self._cards = {card.id: card for card in FILE_CARDS}
-
-    def result(self) -> FleetResult:
-        """Return the result of the run."""
-        waivers = self._waivers()
-        alike: dict[StudyKey, list[str]] = {}
-        for subject in self._subjects:
-            alike.setdefault(subject.key, []).append(subject.id)
-        results: list[SubjectResult] = []
-        matched: set[str] = set()
-        hull_files = self._file_outcomes_of_hulls()
-        far = self._far_lengths()
-        for subject in self._subjects:
-            study = self._studied[subject.key]
-            design = self._assembly.classes[subject.class_id]
-            mine = [w for w in waivers if w.concerns(subject.id, subject.class_id)]
-            waived = apply_waivers(study.news, mine, self._today)
-            matched |= waived.matched
-            own = [*waived.extra, *hull_files.get(subject.id, ()), *_behind(subject, design), *far.get(subject.id, ())]
-            own += [unmatched(w) for w in mine if w.hull and w.id not in waived.matched]
-            results.append(
-                SubjectResult(
-                    id=subject.id,
-                    is_hull=subject.is_hull,
-                    class_id=subject.class_id,
-                    class_name=str(design.base.data["class"].get("name", "")),
-                    revision=subject.revision,
-                    class_revision=design.revision,
-                    options=subject.options,
-                    status=subject.status,
-                    changes=subject.changes,
-                    study=alike[subject.key][0],
-                    alike=tuple(name for name in alike[subject.key] if name != subject.id),
-                    sets=study.sets,
-                    news=news_order([*waived.outcomes, *own]),
-                    own=news_order(own),
-                    passes=study.passes,
-                    passed=study.passed,
-                    thin=study.thin,
-                    ladder=study.ladder,
-                    tightest=study.tightest,
-                    accepted=waived.accepted,
-                    house=self._house_of(study.sets),
-                )
-            )
-        return FleetResult(
-            yard=self._yard_name(),
-            tool_version=__version__,
-            subjects=tuple(results),
-            studies=tuple(
-                Study(
-                    name=names[0],
-                    news=study.news,
-                    passes=study.passes,
-                    thin=study.thin,
-                    sets=study.sets,
-                    ladder=study.ladder,
-                    tightest=study.tightest,
-                    aboard=study.aboard,
-                )
-                for key, names in alike.items()
-                for study in (self._studied[key],)
-            ),
-            file_outcomes=self._fleet_outcomes(waivers, matched),
-            unstudied=self._unstudied(),
-            house=self._house.changes,
-        )
-
-    def _house_of(self, sets: Sequence[SetUse]) -> tuple[HouseChange, ...]:
-        """Return the yard's own rules that bear on a boat judged by these sets."""
-        judged_by = {"", *(use.id for use in sets)}
-        return tuple(change for change in self._house.changes if change.limit_set in judged_by)
-
-    def _far_lengths(self) -> dict[str, list[Outcome]]:
-        """Compare sister hulls; single hulls have no sisters at hand."""
-        if self._only:
-            return {}
-        found: dict[str, list[Outcome]] = {}
-        for class_id in self._assembly.classes:
-            of_class = [s for s in self._subjects if s.class_id == class_id]
-            hulls = [(s.id, self._studied[s.key].lengths) for s in of_class if s.is_hull]
-            found.update(far_lengths(hulls, (self._studied[s.key].lengths for s in of_class if not s.is_hull)))
-        return found
-
-    def _yard_name(self) -> str:
-        data = self._files.yard.data if self._files.yard else None
-        name = data.get("name", "") if isinstance(data, dict) else ""
-        return name if isinstance(name, str) else ""
-
-    def _waivers(self) -> list[Waiver]:
-        document = self._files.waivers
-        if document is None or document.file in self._files.faulty:
-            return []
-        hulls = {str(d.data.get("hull")) for d in self._files.hulls if isinstance(d.data, dict)}
-        waivers, faults = read_waivers(document, hulls, list(self._files.classes), all_cards())
-        self._faults += faults
-        return waivers
-
-    def _hull_of_file(self) -> dict[str, str]:
-        studied = {subject.id for subject in self._subjects if subject.is_hull}
-        named: dict[str, str] = {}
-        for document in self._files.hulls:
-            name = document.data.get("hull") if isinstance(document.data, dict) else None
-            if isinstance(name, str) and name in studied and name not in named.values():
-                named[document.file] = name
-        return named
-
-    def _file_outcomes_of_hulls(self) -> dict[str, list[Outcome]]:
-        """Return the file faults that belong to one hull that was studied all the same."""
-        owner = self._hull_of_file()
-        found: dict[str, list[Outcome]] = {}
-        for fault in sorted(set(self._faults), key=_fault_key):
-            if fault.at.file in owner:
-                found.setdefault(owner[fault.at.file], []).append(self._outcome(fault))
-        return found
-
-    def _fleet_outcomes(self, waivers: list[Waiver], matched: set[str]) -> tuple[Outcome, ...]:
-        owner = self._hull_of_file()
-        others = {document.file for document in self._files.hulls} if self._only else set()
-        asked = {d.file for d in self._files.hulls if isinstance(d.data, dict) and d.data.get("hull") in self._only}
-        lost_files = {s.at.file for s in self._lost} | asked
-        outcomes = [
-            self._outcome(fault)
-            for fault in sorted(set(self._faults), key=_fault_key)
-            if fault.at.file not in owner and (fault.at.file not in others or fault.at.file in lost_files)
-        ]
-        if not self._only:
-            outcomes += [unmatched(w) for w in waivers if w.class_id and w.id not in matched]
-        outcomes += [
-            Outcome(verdict=Verdict.FINDING, check=NOT_STUDIED.id, level=Level.ERROR, part=name, at=NOWHERE,
-                    fault="could not be studied", remedy="mend the faults of its files first")
-            for name in self._unstudied()
-        ]  # fmt: skip
-        return news_order(outcomes)
-
-    def _unstudied(self) -> tuple[str, ...]:
-        lost = [f"hull {s.id}" if s.is_hull else f"option set {s.id}" for s in self._lost]
-        names = sorted({*self._assembly.unstudied, *lost})
-        if self._only:
-            names = [name for name in names if name.removeprefix("hull ") in self._only]
-        return tuple(names)
-
-    def _outcome(self, fault: Fault) -> Outcome:
-        card = self._cards[fault.check]
-        return Outcome(
-            verdict=Verdict.FINDING, check=card.id, level=card.level, part=fault.at.file, at=fault.at,
-            fault=fault.message, remedy=fault.remedy, inputs=(("fault", fault.message),),
-        )  # fmt: skip
-
-
-def _fault_key(fault: Fault) -> tuple[object, ...]:
-    return (fault.at, fault.check, fault.message, fault.remedy)
-
-
-def _behind(subject: Subject, design: ClassDesign) -> list[Outcome]:
-    """Return the finding that a hull is behind its class, if it is."""
-    if not subject.is_hull or subject.revision >= design.revision:
-        return []
-    missed = {n: row for n, row in sorted(design.revisions.items()) if n > subject.revision}
-    electrical = [n for n, (_, is_electrical) in missed.items() if is_electrical]
-    told = "; ".join(f"{n}: {what}" for n, (what, _) in missed.items())
-    level = Level.ERROR if electrical or not missed else Level.NOTE
-    outcome = Outcome(
-        verdict=Verdict.FINDING, check=CLASS_REVISION.id, level=level, part=subject.id, at=subject.at_revision,
-        fault=f"built to class revision {subject.revision}, the class is at {design.revision} ({told})",
-        remedy="retrofit it and raise its revision" if level is Level.ERROR else
-        "nothing electrical has changed since; raise its revision when the rest is done",
-        inputs=(("revision", str(subject.revision)), ("class", str(design.revision))),
-    )  # fmt: skip
-    return [outcome._replace(note="" if level is Level.ERROR else "nothing electrical changed")]

@@ -22,6 +22,18 @@ STATUSES = ("planned", "in-build", "signed", "delivered")
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Signature:
+    """Tell who signed a hull off and when, by role, and the marks of what was signed for."""
+
+    role: str
+    date: str
+    content: str
+    tool: str
+    tables: str
+    at: Span = field(compare=False)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Subject:
     """Name one thing to study: a hull, or an option set of a class that may be sold.
 
@@ -38,6 +50,7 @@ class Subject:
     key: str = ""
     at: Span = field(compare=False)
     at_revision: Span = field(compare=False)
+    signed: Signature | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -296,11 +309,20 @@ def _add_hull(assembly: Assembly, document: Document, class_ids: set[str]) -> No
             key=key,
             at=row.at("hull"),
             at_revision=row.at("revision"),
+            signed=_signature(row),
         )
     )
     if row.whole("revision") > design.revision:
         message = f"hull “{name}” is at class revision {row.whole('revision')}, but the class is at {design.revision}"
         row.fault("bad-value", row.at("revision"), message)
+
+
+def _signature(row: Entry) -> Signature | None:
+    written = row.fields("signed")
+    if not written:
+        return None
+    return Signature(**{name: str(written.get(name, "")) for name in ("role", "date", "content", "tool", "tables")},
+                     at=row.at("signed"))  # fmt: skip
 
 
 def _hull_options(row: Entry, design: ClassDesign) -> tuple[str, ...] | None:

@@ -55,7 +55,20 @@ NOT_STUDIED = _card(
     "Its files, or files that it rests on, have faults that are told above. Mend them first.", (),
 )  # fmt: skip
 
+SIGNED_CONTENT = _card(
+    "signed-content", "A signed hull is wired as it was signed for", Level.WARNING,
+    "the signature vouches for another boat than the one that is written down",
+    "A signature bears the mark of the wiring that was signed for. The data of the hull, of its class, its options or "
+    "its parts have changed since: repeat what that touches and sign again. Before that the hull is not ready.", (),
+)  # fmt: skip
+SIGNED_TABLES = _card(
+    "signed-tables", "A signed hull is judged by what it was signed under", Level.NOTE,
+    "what the hull was held against then is not what it is held against now",
+    "The wiring is the one that was signed for, but the tool, the limit tables or the yard's own rules have changed "
+    "since.", (),
+)  # fmt: skip
+
 RESULT_CARDS = (
     WAIVER_UNMATCHED, WAIVER_TOO_WIDE, WAIVER_EXPIRED, WAIVER_INPUTS_CHANGED, CLASS_REVISION,
-    LENGTH_FAR_FROM_SISTERS, NOT_STUDIED,
+    LENGTH_FAR_FROM_SISTERS, SIGNED_CONTENT, SIGNED_TABLES, NOT_STUDIED,
 )  # fmt: skip

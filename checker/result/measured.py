@@ -7,11 +7,11 @@ from that: a bad joint may keep the limit, and a sound one may break it.
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from statistics import median
 
 from checker.checks.words import ampere, plain
-from checker.finding import NOWHERE, Basis, Card, Level, Measure, Outcome, Span, Verdict
+from checker.finding import Basis, Card, Level, Measure, Outcome, Span, Verdict
 from checker.limits.measuring_rule import MeasuringRule
 from checker.reading.document import Fault
 from checker.reading.words import nearest
@@ -29,6 +29,7 @@ from checker.result.sheet import (
 from checker.result.sheet_file import Reading, Sheet
 
 _PRACTICE = "common practice, no source"
+MOST_TOLD = 4
 
 
 def _card(name: str, title: str, level: Level, why: str, text: str, formula: str, *catalogue: str) -> Card:
@@ -415,5 +416,16 @@ def _found(
     )  # fmt: skip
 
 
-NO_SHEET = NOWHERE
-"""Where a missing sheet stands: in no file."""
+def with_as_fitted(judged: Judged, found_with: Callable[[str, float], Sequence[Outcome]]) -> Judged:
+    """Return a judged sheet whose findings of other devices tell what the boat would be found with as fitted."""
+    if not judged.differing:
+        return judged
+    outcomes = list(judged.outcomes)
+    for index, outcome in enumerate(outcomes):
+        if outcome.check == FITTED_DEVICE.id and outcome.part in judged.differing:
+            more = found_with(outcome.part, judged.differing[outcome.part])
+            names = list(dict.fromkeys(f"{o.check} at {o.part}" for o in more))
+            told = ", ".join(names[:MOST_TOLD]) + (f" and {len(names) - MOST_TOLD} more" if names[MOST_TOLD:] else "")
+            words = f"; as fitted the boat has also {told}" if names else "; as fitted the boat has no other finding"
+            outcomes[index] = outcome._replace(fault=outcome.fault + words)
+    return replace(judged, outcomes=tuple(outcomes))

@@ -6,9 +6,13 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
 
 from checker.boat.aboard import Aboard
+from checker.boat.assemble import Signature
 from checker.checks.check import HouseChange
 from checker.finding import Level, Outcome, Span, Verdict
 from checker.network.ladder import Rung
+from checker.result.measured import Judged
+from checker.result.sheet import Step
+from checker.result.sheet_file import Sheet
 
 
 @dataclass(frozen=True, slots=True)
@@ -70,6 +74,22 @@ class Acceptance:
     at: Span
 
 
+@dataclass(frozen=True, slots=True)
+class Handover:
+    """Hold what belongs to the hand-over of one hull: the plan of its test, what was measured, who signed.
+
+    `content` is the mark of its wiring, `tables` that of what judges it; `judged` is None without a
+    sheet.
+    """
+
+    steps: tuple[Step, ...]
+    content: str
+    tables: str
+    sheet: Sheet | None
+    judged: Judged | None
+    signed: Signature | None
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class SubjectResult:
     """Hold the result of one hull or option set.
@@ -78,7 +98,7 @@ class SubjectResult:
     in report order; `passes`, `passed` and `thin` are the study's, shared by all alike subjects.
     `passes` is empty where nobody asked for the list, `passed` counts them all the same.
     `alike` are the other subjects with the same content, `house` the yard's own rules that bear
-    on it.
+    on it; `handover` is None where the hull's test was not planned.
     """
 
     id: str
@@ -102,6 +122,7 @@ class SubjectResult:
     tightest: Mapping[str, Outcome]
     accepted: dict[str, Acceptance]
     house: tuple[HouseChange, ...] = ()
+    handover: Handover | None = None
 
     @property
     def outcomes(self) -> tuple[Outcome, ...]:

@@ -17,6 +17,7 @@ from checker.finding import Level, Measure, Outcome, Span, Verdict
 from checker.network.ladder import Rung
 from checker.reading.document import Fault
 from checker.result.model import EnteredTable, SetUse
+from checker.result.sheet import Step
 from checker.result.sisters import Length, Lengths
 
 
@@ -24,7 +25,8 @@ from checker.result.sisters import Length, Lengths
 class Studied:
     """Hold what was found on one distinct boat, or why it could not be built.
 
-    `passes` is empty where nobody asked for the list; `passed` counts them all the same.
+    `passes` is empty where nobody asked for the list; `passed` counts them all the same. `steps`
+    and `content` are empty where nobody asked for the plan of its test.
     """
 
     news: tuple[Outcome, ...] = ()
@@ -36,6 +38,8 @@ class Studied:
     tightest: Mapping[str, Outcome] = field(default_factory=dict)
     lengths: Lengths = field(default_factory=Lengths)
     aboard: Aboard = field(default_factory=Aboard)
+    steps: tuple[Step, ...] = ()
+    content: str = ""
     faults: tuple[Fault, ...] = ()
 
 
@@ -62,6 +66,8 @@ def written(studied: Studied) -> Written:
         "own_lengths": [astuple(length) for length in studied.lengths.own],
         "aboard": dict(studied.aboard.lines),
         "in_feet": sorted(studied.aboard.in_feet),
+        "steps": studied.steps,
+        "content": studied.content,
     }
     return Written(_packed(most), _packed([_row(outcome) for outcome in studied.passes]))
 
@@ -91,6 +97,8 @@ def read_study(one: Written, *, lists_passes: bool) -> Studied:
                 ),
             ),
             aboard=Aboard(most["aboard"], frozenset(most["in_feet"])),
+            steps=tuple(Step(*row) for row in most["steps"]),
+            content=most["content"],
         )
     except (zlib.error, KeyError, TypeError, IndexError) as error:
         raise ValueError("no study") from error

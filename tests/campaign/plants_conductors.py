@@ -50,7 +50,7 @@ def more_current_than_it_bears(design: Design) -> Iterator[Plant]:
     for path, name, row in trunk(design):
         too_much_a = AMPACITY_A[row["size"]] * PAST
         change = at(*path, {"current": f"{too_much_a:.1f} A"})
-        yield Plant(change, finds=[("ampacity", name)], line=row["size"], follows=DROPS)
+        yield Plant(change, finds=[("ampacity", name)], line=row["size"], follows=(*DROPS, "hot-device"))
 
 
 @fault("CON-01")

@@ -193,6 +193,6 @@ def spark_in_petrol_vapour(design: Design) -> Iterator[Plant]:
             yield Plant(change, finds=[("ignition-protection", f"{name}.load")], line=f"load: {row['load']}")
     for name, _, part in design.devices():
         if part["kind"] in ("switch", "breaker", "fuse", "source") and not part.get("ignition_protected"):
-            follows = ("far-end-clearing", "conductor-withstand", "device-carries-load", "selectivity")
+            follows = ("far-end-clearing", "conductor-withstand", "device-carries-load", "selectivity", "switch-reach")
             finds = [("ignition-protection", name)]
             yield Plant(at("devices", name, {"zone": vapour}), finds=finds, line=name, follows=follows)

@@ -601,6 +601,7 @@ def path_round_a_device(design: Design) -> Iterator[Plant]:
         follows = (
             *NO_DEVICE,  # what the device protected is now open to the battery
             "even-shares", "return-size", "selectivity", "rating-order", "maker-device", "solved-ampacity",
+            "heavy-motor", "stalled-motor",
         )  # fmt: skip
         yield Plant(at("conductors", "ROUND", wire), finds=[("device-bypass", name)], follows=follows)
 
