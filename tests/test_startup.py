@@ -35,7 +35,9 @@ def loaded(*words: str) -> tuple[int, set[str]]:
     return run.returncode, set(run.stderr.splitlines()[-1].split())
 
 
-@pytest.mark.parametrize("words", [["--version"], ["--help"], ["check", "--help"], ["explain", "--help"]])
+@pytest.mark.parametrize(
+    "words", [["--version"], ["--help"], ["check", "--help"], ["compare", "--help"], ["explain", "--help"]]
+)
 def test_a_question_about_the_command_loads_nothing_slow(words: list[str]) -> None:
     status, modules = loaded(*words)
     assert status == 0

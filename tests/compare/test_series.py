@@ -7,7 +7,7 @@ from collections.abc import Mapping
 import pytest
 
 from checker import sides
-from tests.compare.series import EXPECTED, SCREEN, SERIES, OneBase, git, screens
+from tests.compare.series import EXPECTED, ROOT, SCREEN, SERIES, OneBase, git, screens
 
 NAMES = [*(step.name for step in SERIES), "older-tables"]
 
@@ -45,3 +45,15 @@ def test_a_rename_changes_nothing(told: Mapping[str, str]) -> None:
     lines = told["renames"].splitlines()
     assert lines[0] == "verdict: 0 hulls worse, 0 better, 8 unchanged; 0 new errors"
     assert "what changed aboard: nothing" in lines
+
+
+def test_what_readme_shows_of_a_comparison_was_printed() -> None:
+    readme = (ROOT / "README.md").read_text(encoding="utf-8")
+    shown = [
+        line
+        for line in readme.splitlines()
+        if (line.startswith("    ") and " -> " in line) or "verdict: 3 hulls worse" in line
+    ]
+    printed = (EXPECTED / "breaks-three.txt").read_text(encoding="utf-8").splitlines()
+    assert len(shown) == 2
+    assert [line for line in shown if line.removeprefix("    ") not in printed] == []
