@@ -5,28 +5,24 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
+from checker.output.compare_aboard_words import difference_words, retrofit_words
 from checker.output.compare_words import (
     Names,
     count_words,
     fact_words,
-    figure_words,
     figures_words,
     headroom_words,
-    value_words,
 )
 from checker.result.cards import NOT_STUDIED
 from checker.result.comparison import (
     FILES,
     Comparison,
-    Difference,
-    DifferenceKind,
     FindingChange,
     FindingKind,
     Headroom,
     LimitMove,
     Lost,
     LostKind,
-    Retrofit,
     Silenced,
     SilencedKind,
     Standing,
@@ -278,44 +274,6 @@ def _differences(comparison: Comparison, names: Names) -> Iterator[Section]:
     yield Section(title, items, none=f"{title}: nothing")
 
 
-def _about(about: str) -> str:
-    """Name a circuit or thing: the stack of a stud by its stud."""
-    kind, _, name = about.partition(" ")
-    if kind == "stack" and " " in name:
-        post, _, stud = name.partition(" ")
-        return f"stud {stud} of {post}"
-    return about
-
-
-_TOLD_OF_NEW = (
-    "name",
-    "service",
-    "current_a",
-    "size",
-    "device",
-    "part",
-    "rating_a",
-    "zone",
-    "start",
-    "end",
-    "length_m",
-)
-
-
-def difference_words(one: Difference, where: str) -> str:
-    """Tell what changed aboard in one line."""
-    things = f" ({', '.join(one.things[:6])}{' …' if len(one.things) > 6 else ''})" if one.things else ""
-    about = _about(one.about)
-    on = f" {where}" if where else ""
-    if one.kind is DifferenceKind.CHANGED:
-        told = [", ".join(map(fact_words, one.facts)), *(figure_words(figure, one.about) for figure in one.figures)]
-        return f"{about}{things}{on}: {'; '.join(told)}"
-    facts = {fact.key: fact for fact in one.facts}
-    told = [value_words(facts[key]) for key in _TOLD_OF_NEW if key in facts]
-    word = "new" if one.kind is DifferenceKind.ADDED else "gone"
-    return f"{about} is {word}{on}{': ' if told else ''}{', '.join(told)}"
-
-
 def _reached(comparison: Comparison) -> int:
     reached = {hull for one in comparison.retrofits for hull in one.hulls} | {row.hull for row in comparison.behind}
     return len(reached)
@@ -324,7 +282,7 @@ def _reached(comparison: Comparison) -> int:
 def _built(comparison: Comparison) -> Iterator[Item]:
     for one in comparison.retrofits:
         yield Item(f"{', '.join(one.hulls)} ({one.status}): change aboard, or record what was built",
-                   tuple(_retrofit(one)))  # fmt: skip
+                   tuple(retrofit_words(one)))  # fmt: skip
     behind: dict[tuple[int, int, bool], list[str]] = {}
     for row in comparison.behind:
         behind.setdefault((row.revision, row.class_revision, row.is_new), []).append(row.hull)
@@ -333,14 +291,3 @@ def _built(comparison: Comparison) -> Iterator[Item]:
         yield Item(f"{', '.join(hulls)}: built to revision {revision}, the class is at {class_revision} ({since})")
     for name in comparison.same_revision:
         yield Item(f"the revision of class {name} did not rise: raise it, so that these hulls show as behind")
-
-
-def _retrofit(one: Retrofit) -> Iterator[str]:
-    for difference in one.work[:8]:
-        yield difference_words(difference, "")
-    if len(one.work) > 8:
-        yield f"and {len(one.work) - 8} more changes"
-    if one.mends:
-        yield f"mends: {', '.join(one.mends[:6])}{' …' if len(one.mends) > 6 else ''}"
-    if one.makes:
-        yield f"makes: {', '.join(one.makes[:6])}{' …' if len(one.makes) > 6 else ''}"

@@ -86,7 +86,7 @@ def _value(value: Fact | None, unit: str, digits: int = 2) -> str:
         return "yes" if value else "no"
     if isinstance(value, str):
         return value
-    if unit == " m" and digits == 2 and round(value, 2) == round(value, 9):
+    if unit == " m" and digits == 2:
         return f"{value:.2f} m"
     text = plain(value) if digits == 2 and (value == 0 or abs(value) >= 0.01) else f"{value:.{max(digits, 4)}g}"
     return f"{text}{unit}"

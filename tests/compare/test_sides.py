@@ -16,10 +16,11 @@ from checker.errors import CheckerError
 from checker.output.compare_text import compare_text
 from checker.output.json_report import json_report
 from checker.pipeline import all_cards
-from checker.result.comparison import Comparison, Standing
+from checker.result.comparison import Comparison, FindingKind, Standing
 from checker.sides import compare
 from tests.compare.series import git
 from tests.dory_yard import DORY, TODAY, checked, edited, write
+from tests.metric_yard import METRIC, without_table
 
 DAY = ["--today", TODAY.isoformat()]
 THINNER = edited(
@@ -232,6 +233,41 @@ def test_a_file_that_is_no_result_is_told_in_one_line(
     assert (told.out, told.err.count("\n")) == ("", 1)
     assert words in told.err
     assert "\x1b" not in told.err
+
+
+# --- the yard's own limits
+
+
+def with_rule(files: Mapping[str, str]) -> dict[str, str]:
+    figure = "drop.critical_percent: {value: 0.5, reason: ours}"
+    rule = f"house: {{drop_critical: [lighting], limits: {{voluntary-dc: {{{figure}}}}}}}\n"
+    return {**files, "yard.yaml": files["yard.yaml"] + rule}
+
+
+def test_what_a_house_limit_does_is_told_apart_from_what_the_boats_do(tmp_path: Path) -> None:
+    base = write(tmp_path / "a", DORY)
+    ruled = of(base, write(tmp_path / "b", with_rule(DORY)), tmp_path)
+    assert [move.what for move in ruled.limits] == ["drop_critical", "drop.critical_percent of voluntary-dc"]
+    assert {(one.found.check, one.by_limits) for one in ruled.new_errors} == {
+        ("voltage-drop", True), ("voltage-drop-from-bank", True),
+    }  # fmt: skip
+    assert ruled.differences == ()
+    both = of(base, write(tmp_path / "c", with_rule(THINNER)), tmp_path)
+    told = {(one.found.part, one.by_limits) for one in both.new_errors if one.found.check == "voltage-drop"}
+    assert told == {(one.found.part, True) for one in ruled.new_errors}
+    boats = of(base, write(tmp_path / "d", THINNER), tmp_path)
+    assert not any(one.by_limits for one in boats.findings)
+
+
+def test_a_table_that_the_yard_enters_is_marked_by_what_it_says(tmp_path: Path) -> None:
+    name = "limits/iso-13297/ampacity.yaml"
+    again = {**METRIC.files, name: f"# read again\n{METRIC.files[name]}"}
+    same = of(write(tmp_path / "a", METRIC.files), write(tmp_path / "b", again), tmp_path)
+    assert same.limits == ()
+    fewer = of(tmp_path / "a", write(tmp_path / "c", without_table("ampacity").files), tmp_path)
+    assert [move.what for move in fewer.limits] == ["ampacity (iso-13297)"]
+    assert "ampacity" in {one.check for one in fewer.lost}
+    assert fewer.of_kind(FindingKind.FIXED) == ()
 
 
 # --- what cannot be a side
