@@ -11,10 +11,10 @@ from collections.abc import Sequence
 from typing import NoReturn
 
 from checker import __version__
-from checker.commands import check, compare, explain, lists, waiver
+from checker.commands import check, compare, explain, handover, lists, waiver
 from checker.commands.common import NOT_DONE
 
-COMMANDS = (check, compare, waiver, lists, explain)
+COMMANDS = (check, compare, waiver, handover, lists, explain)
 
 
 def run() -> NoReturn:

@@ -34,7 +34,7 @@ def _against(gate: Gate) -> Iterator[str]:
     """Count what speaks against a hull."""
     for some, word in (
         (gate.errors, "open error"), (gate.not_assessed, "place not assessed"),
-        (gate.failed, "finding of the test"),
+        (gate.failed, "test finding"),
     ):  # fmt: skip
         if some:
             yield count(len(_blocks(some)), word)

@@ -35,7 +35,7 @@ SAFETY = (
 )
 
 
-def sheet_csv(subject: SubjectResult, rule: MeasuringRule) -> str:
+def sheet_csv(subject: SubjectResult) -> str:
     """Return the sheet as CSV: a row a step, the columns `measured` and `with` to be filled in."""
     handover = _handover(subject)
     sheet = handover.sheet
@@ -55,7 +55,7 @@ def sheet_csv(subject: SubjectResult, rule: MeasuringRule) -> str:
         for name, what in (("DMM-1", "multimeter"), ("CL-1", "clamp meter")):
             rows.append(_row(f"instrument {name}", what, expected="calibrated until"))
     readings = sheet.readings if sheet else {}
-    rows += [_step_row(step, readings.get(step.id), rule) for step in handover.steps]
+    rows += [_step_row(step, readings.get(step.id), handover.rule) for step in handover.steps]
     return csv_text(Table(COLUMNS, rows))
 
 
@@ -113,9 +113,9 @@ def measured_words(step: Step, reading: Reading | None) -> str:
     return f"{plain(reading.value * 1000)} mA" if step.kind == LEAKAGE else ampere(round(reading.value, 3))
 
 
-def sheet_markdown(subject: SubjectResult, rule: MeasuringRule) -> str:
+def sheet_markdown(subject: SubjectResult) -> str:
     """Return the sheet as Markdown: a table for each kind of step, in the order of the work."""
-    return "\n".join([*_head(subject), *_tables(_handover(subject), rule), ""])
+    return "\n".join([*_head(subject), *_tables(_handover(subject)), ""])
 
 
 def _head(subject: SubjectResult) -> Iterator[str]:
@@ -139,7 +139,7 @@ def _head(subject: SubjectResult) -> Iterator[str]:
     yield from ("", f"{SAFETY} {CAUTION}")
 
 
-def _tables(handover: Handover, rule: MeasuringRule) -> Iterator[str]:
+def _tables(handover: Handover) -> Iterator[str]:
     readings = handover.sheet.readings if handover.sheet else {}
     for kind, (title, how) in GROUPS.items():
         steps = [step for step in handover.steps if step.kind == kind]
@@ -149,5 +149,5 @@ def _tables(handover: Handover, rule: MeasuringRule) -> Iterator[str]:
         yield "| step | what | where | expected | at least | at most | measured | with |"
         yield "| --- | --- | --- | --- | --- | --- | --- | --- |"
         for step in steps:
-            cells = [str(cell) for cell in _step_row(step, readings.get(step.id), rule)[:8]]
+            cells = [str(cell) for cell in _step_row(step, readings.get(step.id), handover.rule)[:8]]
             yield f"| {' | '.join(markdown.plain(cell) for cell in cells)} |"

@@ -91,6 +91,12 @@ def read_yard(folder: Path) -> YardFiles:
     return files
 
 
+def hull_file(folder: Path, hull: str) -> str:
+    """Return the name of the file that a hull of a sound yard is written in."""
+    files = read_yard(folder)
+    return next(d.file for d in files.hulls if isinstance(d.data, dict) and d.data.get("hull") == hull)
+
+
 def _yaml_files(folder: Path, files: YardFiles) -> Iterator[tuple[str, Path]]:
     """Yield name and path of each YAML file of the yard, sorted by name."""
     found = [path for path in folder.iterdir() if _is_yaml(path) and not path.name.startswith(".")]

@@ -151,7 +151,7 @@ class Gatherer:
         if judged is not None:
             judged = with_as_fitted(judged, lambda device, a: self._as_fitted(subject.key, device, a))
             self._faults += judged.faults
-        return Handover(study.steps, study.content, self._tables[subject.key], sheet, judged, subject.signed)
+        return Handover(study.steps, study.content, self._tables[subject.key], sheet, judged, subject.signed, rule)
 
     def _far_drops(self, handovers: Mapping[str, Handover]) -> dict[str, list[Outcome]]:
         """Compare the measured drops of sister hulls."""

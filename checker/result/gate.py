@@ -32,8 +32,12 @@ class Gate:
     @property
     def is_ready(self) -> bool:
         """Tell whether nothing speaks against the hand-over."""
-        against = (self.errors, self.not_assessed, self.failed, self.missing, self.changed, self.behind, self.files)
-        return not any(against)
+        return self.is_ready_but_for_signature and not self.changed
+
+    @property
+    def is_ready_but_for_signature(self) -> bool:
+        """Tell whether it may be signed, for the first time or again."""
+        return not any((self.errors, self.not_assessed, self.failed, self.missing, self.behind, self.files))
 
 
 def gate(result: FleetResult, hull: str) -> Gate | None:

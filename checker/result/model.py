@@ -9,6 +9,7 @@ from checker.boat.aboard import Aboard
 from checker.boat.assemble import Signature
 from checker.checks.check import HouseChange
 from checker.finding import Level, Outcome, Span, Verdict
+from checker.limits.measuring_rule import MeasuringRule
 from checker.network.ladder import Rung
 from checker.result.measured import Judged
 from checker.result.sheet import Step
@@ -78,8 +79,8 @@ class Acceptance:
 class Handover:
     """Hold what belongs to the hand-over of one hull: the plan of its test, what was measured, who signed.
 
-    `content` is the mark of its wiring, `tables` that of what judges it; `judged` is None without a
-    sheet.
+    `content` is the mark of its wiring, `tables` that of what judges it, `rule` says how far measured
+    figures may be off; `judged` is None without a sheet.
     """
 
     steps: tuple[Step, ...]
@@ -88,6 +89,7 @@ class Handover:
     sheet: Sheet | None
     judged: Judged | None
     signed: Signature | None
+    rule: MeasuringRule
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
