@@ -84,6 +84,21 @@ waivers:
     return OPEN.with_file("waivers.yaml", row)
 
 
+def signed(content: str) -> Yard:
+    """Return the sound yard with a hull that was signed for some wiring, under other tables."""
+    block = (
+        f'signed: {{role: quality assurance, date: "2026-05-21", content: {content}, tool: 0.1.0, tables: "01234567"}}'
+    )
+    return SOUND.edit("options: []", f"options: []\n{block}")
+
+
+def the_content() -> str:
+    """Return the mark of the sound yard's wiring."""
+    (hull,) = (s for s in check_yard(signed("0123456789ab")).subjects if s.is_hull)
+    assert hull.handover is not None
+    return hull.handover.content
+
+
 def _of_files() -> Iterator[Outcome]:
     """Yield findings of a yard's files: YAML, schema, references, revisions, waivers."""
     (accepted,) = [o for o in _findings(OPEN) if o.check == "maker-device"]
@@ -98,6 +113,8 @@ def _of_files() -> Iterator[Outcome]:
         SOUND.edit("revision: 2\nstatus", "revision: 1\nstatus"),
         waived("2026-11-30", good),
         waived("2027-11-30", "000000000000"),
+        signed("0123456789ab"),
+        signed(the_content()),
     ]
     for yard in (*yards, *_others()):
         yield from _findings(yard)

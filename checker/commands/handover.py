@@ -99,7 +99,7 @@ def _result(options: argparse.Namespace) -> tuple[FleetResult, Gate]:
     )  # fmt: skip
     found = gate(result, options.hull)
     if found is None:
-        first = next(iter(result.file_outcomes), None)
+        first = next((outcome for outcome in result.file_outcomes if outcome.at.file), None)
         told = f" ({first.at}: {first.fault})" if first is not None else ""
         raise UsageError(f"{options.hull} cannot be studied: mend the faults of its files first{told}")
     return result, found

@@ -94,7 +94,7 @@ FITTED_DEVICE = _card(
     "the cable behind it is not protected, or the load does not start",
     "The rating read on each fuse and breaker against the data. The boat is judged again with what is fitted; what "
     "that brings up is told beside it.",
-    "", "COM-08",
+    "", "COM-08", "FLT-01",
 )  # fmt: skip
 STAYS_LIVE = _card(
     "live-when-off", "A load goes dead with its own device", Level.ERROR,

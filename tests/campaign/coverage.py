@@ -21,13 +21,8 @@ from tests.campaign.tally import by_planter, catalogue
 COVERAGE = Path(__file__).with_name("coverage.yaml")
 HEAD = "# What finds each fault, and where the campaign plants it. Made by `python -m tests.campaign.coverage`.\n"
 
-_MEASURED = "a measurement on the finished boat: the wiring data say what is meant, not what was measured"
-NOT_DECIDED = {
-    "FLT-01": "a hull is its class, options and recorded changes and nothing else: what was fitted otherwise stands in "
-    "no file, and is compared once a sheet of what was fitted is read",
-    **{f"COM-{number:02d}": _MEASURED for number in range(1, 13)},
-}
-"""Faults that cannot be decided from wiring data, with the reason."""
+NOT_DECIDED: dict[str, str] = {}
+"""Faults that cannot be decided, with the reason."""
 
 MECHANISMS = {
     "FLT-03": "every legal set of options is studied by every check",
