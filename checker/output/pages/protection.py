@@ -17,7 +17,7 @@ from checker.output.text import far_words, flow_words, selective_words
 from checker.result.gather import natural
 
 MOST_PLOTTED = 3
-_OWN_DROP, _BANK_DROP = "voltage-drop", "voltage-drop-from-bank"
+_DROPS = ("voltage-drop", "voltage-drop-from-bank")
 
 
 def ladder(dossier: Dossier) -> Section:
@@ -83,7 +83,7 @@ def _circuit_row(dossier: Dossier, circuit: Circuit) -> tuple[str, ...]:
     return (
         circuit.id, circuit.name, "" if circuit.current_a is None else ampere(circuit.current_a),
         f"{circuit.device}{rating}", ", ".join(size.text for size in sizes),
-        *(_drop_words([o for o in own if o.check == check and o.part == circuit.id]) for check in (_OWN_DROP, _BANK_DROP)),
+        *(_drop_words([o for o in own if (o.check, o.part) == (check, circuit.id)]) for check in _DROPS),
         "" if least is None else f"{percent(headroom(least))}: {least.check} at {least.part}{_standing(least)}",
     )  # fmt: skip
 
@@ -125,9 +125,7 @@ def worst_circuits(dossier: Dossier) -> list[str]:
     """Return the circuits that lose most of what they may lose, the worst first."""
     found: list[tuple[float, Circuit]] = []
     for circuit in _in_order(dossier):
-        drops = [
-            o for o in dossier.by_part.get(circuit.id, ()) if o.check in (_OWN_DROP, _BANK_DROP) and has_headroom(o)
-        ]
+        drops = [o for o in dossier.by_part.get(circuit.id, ()) if o.check in _DROPS and has_headroom(o)]
         if drops:
             found.append((min(map(headroom, drops)), circuit))
     found.sort(key=lambda row: (row[0], natural(row[1].id)))
@@ -140,7 +138,7 @@ def plots(drawn: Drawn) -> Iterator[Section]:
         return
     shown = (_plot(title, svg) for title, svg in drawn.plots)
     yield Section("plots", "Plots of the circuits with the least headroom in voltage", (
-        paragraph("How the devices in series open, and where the voltage is lost. The other circuits are in the table."),
+        paragraph("How the devices in series open, and where the voltage is lost."),
         *shown,
     ))  # fmt: skip
 

@@ -25,7 +25,8 @@ a {{ color: {LINK}; }}
 .answer {{ border: .2rem solid {INK}; margin: 1rem 0; padding: .75rem 1rem; }}
 .answer p {{ margin: .25rem 0; }}
 .answer strong {{ font-size: 1.4rem; }}
-.caution {{ border: .1rem solid {INK}; border-left-width: .6rem; margin: 1rem 0; max-width: 60rem; padding: .25rem 1rem; }}
+.caution {{ border: .1rem solid {INK}; border-left-width: .6rem; margin: 1rem 0; padding: .25rem 1rem; }}
+.caution {{ max-width: 60rem; }}
 nav ol {{ columns: 18rem; margin: 0; padding-left: 1.6rem; }}
 nav li {{ padding: .2rem 0; }}
 dl {{ margin: .5rem 0; }}
@@ -88,10 +89,12 @@ def deep(depth: int) -> str:
 
 
 def css(foot: str) -> str:
-    """Return the style of a page; `foot` stands at the foot of each printed sheet, signs that could end it taken out."""
+    """Return the style of a page; `foot` stands at the foot of each printed sheet, without signs that could end it."""
     words = _NOT_PLAIN.sub("", foot)
-    corner = "font: 7.5pt sans-serif;"
     feet = f"""\
-@page {{ @bottom-left {{ content: "{words}"; {corner} }} @bottom-right {{ content: counter(page) " of " counter(pages); {corner} }} }}
+@page {{
+@bottom-left {{ content: "{words}"; font: 7.5pt sans-serif; }}
+@bottom-right {{ content: counter(page) " of " counter(pages); font: 7.5pt sans-serif; }}
+}}
 """
     return _SCREEN + _DEPTHS + _PRINT + feet

@@ -139,6 +139,9 @@ def _outside(dossier: Dossier) -> Iterator[str]:
             yield f"{limits.id}: the yard has not entered {names}; what needs them is not assessed."
 
 
+_WAIVER = ("waiver", "accepted", "by (role)", "until", "reason", "evidence")
+
+
 def deviations(dossier: Dossier) -> Section:
     """Tell what differs from the class, what was accepted by whom and until when, and what is exempt."""
     changes = list(_changes(dossier))
@@ -147,7 +150,7 @@ def deviations(dossier: Dossier) -> Section:
     return Section("deviations", "Deviations, waivers and exemptions", (
         table("changes", "As-built changes", ("change", "what", "reason", "decided", "note"), changes)
         if changes else paragraph("As-built changes: none."),
-        table("waivers", "Accepted findings", ("waiver", "accepted", "by (role)", "until", "reason", "evidence"), accepted)
+        table("waivers", "Accepted findings", _WAIVER, accepted)
         if accepted else paragraph("Accepted findings: none."),
         table("exemptions", "Exemptions used", ("why", "check", "limit set", "parts"), exempt)
         if exempt else paragraph("Exemptions used: none."),
