@@ -6,7 +6,16 @@ import argparse
 import sys
 from pathlib import Path
 
-from checker.commands.common import CLEAN, OPEN_ERRORS, add_folder, add_today, today_of
+from checker.commands.common import (
+    CLEAN,
+    OPEN_ERRORS,
+    ProgressLine,
+    add_folder,
+    add_today,
+    add_workers,
+    today_of,
+    workers_of,
+)
 
 
 def add(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
@@ -18,6 +27,13 @@ def add(commands: argparse._SubParsersAction[argparse.ArgumentParser]) -> None:
     handover.add_argument("--to", required=True, metavar="FILE", help="the HTML file to write")
     add_today(handover)
     handover.set_defaults(run=write_handover)
+    fleet = commands.add_parser("fleet", help="show the fleet: who is ready, where it is tight, what is open",
+                                description=show_fleet.__doc__)  # fmt: skip
+    add_folder(fleet)
+    fleet.add_argument("--to", metavar="FILE", help="also write it as one HTML page")
+    add_today(fleet)
+    add_workers(fleet)
+    fleet.set_defaults(run=show_fleet)
 
 
 def write_handover(options: argparse.Namespace) -> int:
@@ -45,6 +61,27 @@ def write_handover(options: argparse.Namespace) -> int:
     _write(page, options.to)
     print(f"{gate_line(found)}\nwritten to {options.to}", file=sys.stderr)
     return CLEAN if found.is_ready else OPEN_ERRORS
+
+
+def show_fleet(options: argparse.Namespace) -> int:
+    """Print a fleet on a page: hulls by status, ready or not, smallest headroom, open findings, retrofit list."""
+    from checker.output.fleet_text import fleet_text
+    from checker.output.pages.fleet import fleet_page
+    from checker.pipeline import all_cards, check_fleet
+    from checker.result.fleet_view import fleet_view
+
+    progress = ProgressLine()
+    result = check_fleet(
+        Path(options.folder), today=today_of(options), workers=workers_of(options), progress=progress.call,
+        plans_tests=True,
+    )  # fmt: skip
+    progress.clear()
+    view = fleet_view(result, {card.id: card for card in all_cards()})
+    if options.to:
+        _write(fleet_page(view), options.to)
+        print(f"written to {options.to}", file=sys.stderr)
+    sys.stdout.write(fleet_text(view))
+    return CLEAN if result.is_clean else OPEN_ERRORS
 
 
 def _write(page: str, file: str) -> None:

@@ -24,6 +24,8 @@ class Markup:
 
 
 Content = str | Markup
+LONG_WORD = 22
+"""Signs from which on a word in a table may be broken."""
 _BLOCKS = frozenset(
     ("article", "caption", "dd", "div", "dl", "figure", "footer", "h1", "h2", "h3", "h4", "header", "li", "main", "nav",
      "ol", "p", "section", "table", "tbody", "thead", "tr", "ul")
@@ -125,11 +127,21 @@ def _body(title: str, rows: Iterable[Sequence[TableCell]], columns: int) -> Mark
 def _cells(row: Sequence[TableCell]) -> Iterator[Markup]:
     for place, cell in enumerate(row):
         is_number = isinstance(cell, (int, float))
-        content = "" if cell is None else printed(cell) if isinstance(cell, (int, float)) else cell
+        content: Content = "" if cell is None else printed(cell) if isinstance(cell, (int, float)) else cell
+        if isinstance(content, str):
+            content = _breakable(content)
         if place == 0:
             yield tag("th", content, scope="row")
         else:
             yield tag("td", content, class_="number" if is_number else "")
+
+
+def _breakable(words: str) -> Content:
+    """Let a word that is wider than a column ought to be break anywhere; the others stay whole."""
+    parts = words.split(" ")
+    if all(len(part) < LONG_WORD for part in parts):
+        return words
+    return joined((tag("span", part, class_="long") if len(part) >= LONG_WORD else part for part in parts), " ")
 
 
 def columns(source: Table, wanted: Sequence[str]) -> list[tuple[Cell, ...]]:

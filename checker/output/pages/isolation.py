@@ -22,7 +22,7 @@ def isolation(dossier: Dossier) -> Section:
     live = stays_live(dossier.boat, dossier.studies.network, dossier.studies.all_off)
     loads = [_live_row(dossier, name, banks) for name, banks in live.loads]
     sources = [
-        (f"{source.device}.{source.post}", dossier.aboard.device_names.get(source.device, ""),
+        (f"{source.device}.{source.post}",
          dossier.aboard.zone_words(dossier.boat.devices[source.device].zone), ampere(source.max_a),
          f"still reaches {', '.join(banks)}" if banks else "reaches no bank")
         for source, banks in live.sources
@@ -39,7 +39,7 @@ def isolation(dossier: Dossier) -> Section:
         tag("h3", "Live metal with every switch off"),
         bullets(_by_zone(dossier, live.devices)),
         paragraph(f"Conductors: {', '.join(sorted(live.conductors, key=natural)) or 'none'}."),
-        table("sources", "Sources, with every switch off", ("output", "name", "place", "up to", "with all off"),
+        table("sources", "Sources, with every switch off", ("output", "place", "up to", "with all off"),
               sources)
         if sources else paragraph("No source is aboard."),
         paragraph("A source is dead only when what drives it is off: shore power, daylight, the engine. A solar array "

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Sequence
 
 from checker.boat.hull import Circuit
@@ -14,6 +15,7 @@ from checker.output.pages.drawings import Drawn
 from checker.output.pages.html import Content, Markup, Section, TableCell, grouped_table, paragraph, table, tag
 from checker.output.pages.style import deep
 from checker.output.text import far_words, flow_words, selective_words
+from checker.result.fleet_view import headroom_fraction
 from checker.result.gather import natural
 
 MOST_PLOTTED = 3
@@ -90,20 +92,15 @@ def _circuit_row(dossier: Dossier, circuit: Circuit) -> tuple[str, ...]:
 
 def _of_circuit(dossier: Dossier, circuit: Circuit) -> list[Outcome]:
     """Return what was held against a limit in a circuit and has headroom to tell."""
-    return [o for o in dossier.subject.outcomes if circuit.id in (o.circuit, o.part) and has_headroom(o)]
-
-
-def has_headroom(outcome: Outcome) -> bool:
-    """Tell whether an outcome has headroom to tell: a figure against a limit, and no size of a row."""
-    measure = outcome.measure
-    return measure is not None and not measure.is_stepped and measure.headroom_fraction is not None
+    return [
+        o for o in dossier.subject.outcomes if circuit.id in (o.circuit, o.part) and headroom_fraction(o) is not None
+    ]
 
 
 def headroom(outcome: Outcome) -> float:
-    """Return the headroom of an outcome that has one."""
-    assert outcome.measure is not None
-    assert outcome.measure.headroom_fraction is not None
-    return outcome.measure.headroom_fraction
+    """Return the headroom of an outcome, the largest there is where it has none to tell."""
+    fraction = headroom_fraction(outcome)
+    return math.inf if fraction is None else fraction
 
 
 def _drop_words(outcomes: Sequence[Outcome]) -> str:
@@ -125,7 +122,9 @@ def worst_circuits(dossier: Dossier) -> list[str]:
     """Return the circuits that lose most of what they may lose, the worst first."""
     found: list[tuple[float, Circuit]] = []
     for circuit in _in_order(dossier):
-        drops = [o for o in dossier.by_part.get(circuit.id, ()) if o.check in _DROPS and has_headroom(o)]
+        drops = [
+            o for o in dossier.by_part.get(circuit.id, ()) if o.check in _DROPS and headroom_fraction(o) is not None
+        ]
         if drops:
             found.append((min(map(headroom, drops)), circuit))
     found.sort(key=lambda row: (row[0], natural(row[1].id)))
@@ -144,5 +143,4 @@ def plots(drawn: Drawn) -> Iterator[Section]:
 
 
 def _plot(title: str, svg: Markup) -> Markup:
-    frame = tag("div", svg, class_="drawing plot", tabindex="0", role="group", aria_label=title)
-    return tag("figure", tag("figcaption", title), frame)
+    return tag("figure", tag("div", svg, class_="drawing plot", tabindex="0", role="group", aria_label=title))

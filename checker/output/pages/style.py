@@ -42,9 +42,9 @@ caption {{ font-weight: bold; padding: .25rem 0; text-align: left; }}
 th, td {{ border: 1px solid {RULE}; padding: .25rem .45rem; text-align: left; vertical-align: top; }}
 thead th, .over {{ background: {SHADE}; }}
 tbody th {{ font-weight: 600; }}
+.long {{ overflow-wrap: anywhere; }}
 .number {{ font-variant-numeric: tabular-nums; text-align: right; white-space: nowrap; }}
 figure {{ margin: 1rem 0 2rem; }}
-figcaption {{ font-weight: bold; margin-bottom: .35rem; }}
 .drawing {{ border: 1px solid {RULE}; overflow: auto; }}
 .drawing svg {{ display: block; height: auto; width: 100%; }}
 .one-line svg {{ min-width: 75rem; }}
@@ -62,7 +62,7 @@ body { font-size: 9.5pt; max-width: none; padding: 0; }
 h1 { font-size: 17pt; }
 h2 { font-size: 13pt; margin-top: 7mm; }
 h3 { font-size: 10.5pt; }
-h2, h3, h4, caption, figcaption { break-after: avoid; }
+h2, h3, h4, caption { break-after: avoid; }
 .wide { break-before: page; page: wide; }
 .wide > h2 { border-top: 0; margin-top: 0; padding-top: 0; }
 p, li, dl, .caution { max-width: none; }
@@ -70,14 +70,15 @@ a { color: inherit; text-decoration: none; }
 .frame, .drawing { overflow: visible; }
 table { font-size: 7.5pt; width: 100%; }
 table.narrow { width: auto; }
-th, td { overflow-wrap: anywhere; padding: .6mm 1mm; }
+th, td { padding: .6mm 1mm; }
 thead { display: table-header-group; }
 tr, article, figure, .answer, .caution { break-inside: avoid; }
 p, li { orphans: 3; widows: 3; }
 .drawing { border: 0; }
 .drawing svg { max-width: 100%; min-width: 0; }
 .one-line svg { max-height: 168mm; }
-.plot svg { max-height: 225mm; }
+.plot svg { max-width: 165mm; }
+figure { margin: 3mm 0; }
 }
 """
 _NOT_PLAIN = re.compile(r"[^A-Za-z0-9 ,.-]")

@@ -8,7 +8,7 @@ from checker.checks.words import ampere
 from checker.finding import Outcome, Verdict
 from checker.output.gate_text import signed_words
 from checker.output.pages.dossier import Dossier
-from checker.output.pages.html import Content, Markup, Section, facts, paragraph, table, tag
+from checker.output.pages.html import Content, Markup, Section, facts, table, tag
 from checker.output.sheet_text import GROUPS, expectation, measured_words
 from checker.result.gather import fingerprint
 from checker.result.sheet import Step
@@ -30,7 +30,7 @@ def tested(dossier: Dossier) -> Section:
     for kind, (title, how) in GROUPS.items():
         steps = [step for step in handover.steps if step.kind == kind]
         if steps:
-            told += [tag("h3", title), paragraph(how), _table(kind, title, steps, dossier)]
+            told += [tag("h3", title), _table(kind, how, steps, dossier)]
     return Section("test", "Test sheet: expected and measured", tuple(told), is_wide=True)
 
 
@@ -48,13 +48,13 @@ def _head(sheet: Sheet | None) -> Iterator[tuple[str, str]]:
     yield "printed for the wiring", sheet.content or "not told"
 
 
-def _table(kind: str, title: str, steps: list[Step], dossier: Dossier) -> Markup:
+def _table(kind: str, how: str, steps: list[Step], dossier: Dossier) -> Markup:
     headings = ("step", "what", "where", "expected", "at least", "at most", "measured", "with", "meter", "verdict")
     rows = [_row(step, dossier) for step in steps]
     empty = [place for place in range(len(headings)) if place and not any(row[place] for row in rows)]
     shown = [place for place in range(len(headings)) if place not in empty]
     return table(
-        f"test-{kind}", title, [headings[place] for place in shown], [[row[place] for place in shown] for row in rows]
+        f"test-{kind}", how, [headings[place] for place in shown], [[row[place] for place in shown] for row in rows]
     )
 
 

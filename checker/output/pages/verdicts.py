@@ -15,10 +15,6 @@ from checker.output.text import CAUTION, count
 from checker.result.gather import fingerprint, natural
 from checker.result.model import SetUse
 
-DANGER = (
-    "A battery drives thousands of amperes into a short circuit: enough to melt a tool, to burn hands and eyes, and to "
-    "set a boat on fire."
-)
 PRACTICE = (
     "Local codes, the licensed edition of each standard and licensed practice govern; where this page and they differ, "
     "follow them."
@@ -42,7 +38,7 @@ def answer(dossier: Dossier) -> Markup:
 def cautions() -> Markup:
     """Return the cautions that stand ahead of everything."""
     return tag(
-        "div", paragraph(tag("strong", "Caution. "), DANGER, " ", SAFETY), paragraph(PRACTICE), paragraph(CAUTION),
+        "div", paragraph(tag("strong", "Caution. "), SAFETY), paragraph(PRACTICE), paragraph(CAUTION),
         class_="caution", role="note",
     )  # fmt: skip
 
@@ -81,7 +77,14 @@ def _set_row(use: SetUse, dossier: Dossier) -> tuple[str, ...]:
     entered = "; ".join(
         ", ".join(filter(None, (one.table, one.document, one.edition, one.clause, one.page))) for one in use.entered
     )
-    return (use.id, use.title, limits.edition, use.why, count(use.from_memory, "table or figure"), entered or "none")
+    return (
+        use.id,
+        use.title,
+        limits.edition,
+        use.why,
+        f"{use.from_memory} of its tables and figures",
+        entered or "none",
+    )
 
 
 def findings(dossier: Dossier) -> Section:
