@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
 from dataclasses import dataclass
 from importlib import import_module
@@ -15,11 +16,26 @@ _NAMESPACE = ' xmlns="http://www.w3.org/2000/svg"'
 """Needed in a file, not in a page: the page then names no address at all."""
 
 
+PICTURE = "one-line-picture"
+_PIECES = {297: (1, 1), 420: (2, 1), 594: (2, 2), 841: (4, 2), 1189: (4, 4)}
+"""Into how many sheets of A4, across and down, a sheet is cut, by its width, mm. Citation: ISO 216."""
+_SIZE = re.compile(r'<svg width="([0-9.]+)mm" height="[0-9.]+mm" viewBox="0 0 ([0-9.]+) ([0-9.]+)"')
+
+
+@dataclass(frozen=True, slots=True)
+class Picture:
+    """Hold a drawing for the screen, and the same in pieces of A4 for the printer; `is_wide` where these lie."""
+
+    whole: Markup
+    pieces: tuple[Markup, ...]
+    is_wide: bool
+
+
 @dataclass(frozen=True, slots=True)
 class Drawn:
     """Hold the drawings for a page: the one-line drawing, and plots with their titles; nothing where none were made."""
 
-    one_line: Markup | None = None
+    one_line: Picture | None = None
     plots: tuple[tuple[str, Markup], ...] = ()
 
 
@@ -37,7 +53,30 @@ def drawn(studies: Studies, outcomes: Sequence[Outcome], hull: str, circuits: Se
             if svg is not None:
                 name = studies.boat.circuits[circuit].name
                 plots.append((f"{circuit} {name}: {kind}", _inline(svg)))
-    return Drawn(_inline(files["one-line.svg"]), tuple(plots))
+    return Drawn(_picture(files["one-line.svg"]), tuple(plots))
+
+
+def _picture(svg: str) -> Picture:
+    """Cut a drawing for A4: the printer's pieces are windows on the one on the page, which is there once."""
+    whole = _inline(svg)
+    size = _SIZE.match(whole.text)
+    paper, wide, high = (float(size[1]), float(size[2]), float(size[3])) if size else (0.0, 0.0, 0.0)
+    across, down = _PIECES.get(round(paper), (1, 1))
+    whole = Markup(whole.text.replace("<svg ", f'<svg id="{PICTURE}" ', 1))
+    pieces = tuple(
+        _window(wide, high, (wide / across * column, high / down * row, wide / across, high / down))
+        for row in range(down)
+        for column in range(across)
+        if across * down > 1
+    )
+    return Picture(whole, pieces, is_wide=across == down)
+
+
+def _window(wide: float, high: float, part: tuple[float, float, float, float]) -> Markup:
+    box = " ".join(f"{value:g}" for value in part)
+    return Markup(
+        f'<svg viewBox="{box}" aria-hidden="true"><use href="#{PICTURE}" width="{wide:g}" height="{high:g}"/></svg>\n'
+    )
 
 
 def _inline(svg: str) -> Markup:

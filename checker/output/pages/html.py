@@ -94,6 +94,11 @@ def facts(rows: Iterable[tuple[str, Content]]) -> Markup:
     return tag("dl", *(tag("div", tag("dt", name), tag("dd", told)) for name, told in rows))
 
 
+def lines(rows: Iterable[str]) -> Iterator[Markup]:
+    """Return lines of text as paragraphs; those that stand in from the left do so here."""
+    yield from (paragraph(row.strip(), class_="indented" if row.startswith(" ") else "") for row in rows)
+
+
 TableCell = Cell | Markup
 
 

@@ -53,9 +53,16 @@ def _rung_row(rung: Rung, dossier: Dossier) -> tuple[TableCell, ...]:
 def one_line(drawn: Drawn) -> Iterator[Section]:
     """Show the one-line drawing, if there is one."""
     if drawn.one_line is not None:
-        figure = tag("figure", tag("div", drawn.one_line, class_="drawing one-line", tabindex="0", role="group",
-                                   aria_label="One-line drawing"))  # fmt: skip
-        yield Section("one-line", "One-line drawing", (figure,), is_wide=True)
+        picture = drawn.one_line
+        name = "drawing one-line in-pieces" if picture.pieces else "drawing one-line"
+        told: list[Content] = [
+            tag("figure", tag("div", picture.whole, class_=name, tabindex="0", role="group",
+                              aria_label="One-line drawing")),
+        ]  # fmt: skip
+        if picture.pieces:
+            words = f"The drawing takes {len(picture.pieces)} sheets: lay them side by side, row by row."
+            told += [paragraph(words, class_="on-paper"), *(tag("div", one, class_="piece") for one in picture.pieces)]
+        yield Section("one-line", "One-line drawing", tuple(told), is_wide=picture.is_wide)
 
 
 def circuits(dossier: Dossier) -> Section:

@@ -21,6 +21,7 @@ a {{ color: {LINK}; }}
 :focus-visible {{ outline: .2rem solid {LINK}; outline-offset: .1rem; }}
 .skip {{ background: {PAPER}; left: .5rem; padding: .5rem; position: absolute; top: -5rem; }}
 .skip:focus {{ top: .5rem; }}
+.indented {{ margin-left: 1.5rem; }}
 .quiet {{ color: {QUIET}; }}
 .answer {{ border: .2rem solid {INK}; margin: 1rem 0; padding: .75rem 1rem; }}
 .answer p {{ margin: .25rem 0; }}
@@ -47,7 +48,8 @@ tbody th {{ font-weight: 600; }}
 figure {{ margin: 1rem 0 2rem; }}
 .drawing {{ border: 1px solid {RULE}; overflow: auto; }}
 .drawing svg {{ display: block; height: auto; width: 100%; }}
-.one-line svg {{ min-width: 75rem; }}
+.one-line svg {{ min-width: 120rem; }}
+.piece, .on-paper {{ display: none; }}
 .plot svg {{ max-width: 60rem; min-width: 40rem; }}
 """
 _DEEPEST = 12
@@ -77,6 +79,11 @@ p, li { orphans: 3; widows: 3; }
 .drawing { border: 0; }
 .drawing svg { max-width: 100%; min-width: 0; }
 .one-line svg { max-height: 168mm; }
+.in-pieces { display: none; }
+.piece, .on-paper { display: block; }
+.piece { break-after: page; }
+.piece svg { display: block; height: 246mm; margin: 0 auto; max-width: 100%; }
+.wide .piece svg { height: 160mm; }
 .plot svg { max-width: 165mm; }
 figure { margin: 3mm 0; }
 }
