@@ -33,7 +33,8 @@ def isolation(dossier: Dossier) -> Section:
         ),
         table("switches", "Hand switches: what each one alone makes dead",
               ("switch", "place", "in use", "isolates when", "makes dead"), _switches(dossier)),
-        table("live", "With every switch off, these loads stay live", ("load", "bank", "take out or open", "why it may"), loads)
+        table("live", "With every switch off, these loads stay live",
+              ("load", "bank", "take out or open", "why it may"), loads)
         if loads else paragraph("With every switch off no load stays live."),
         tag("h3", "Live metal with every switch off"),
         bullets(_by_zone(dossier, live.devices)),

@@ -99,9 +99,8 @@ def _circuit_row(dossier: Dossier, circuit: Circuit) -> tuple[str, ...]:
 
 def _of_circuit(dossier: Dossier, circuit: Circuit) -> list[Outcome]:
     """Return what was held against a limit in a circuit and has headroom to tell."""
-    return [
-        o for o in dossier.subject.outcomes if circuit.id in (o.circuit, o.part) and headroom_fraction(o) is not None
-    ]
+    own = (o for o in dossier.subject.outcomes if circuit.id in (o.circuit, o.part))
+    return [o for o in own if headroom_fraction(o) is not None]
 
 
 def headroom(outcome: Outcome) -> float:
@@ -129,11 +128,9 @@ def worst_circuits(dossier: Dossier) -> list[str]:
     """Return the circuits that lose most of what they may lose, the worst first."""
     found: list[tuple[float, Circuit]] = []
     for circuit in _in_order(dossier):
-        drops = [
-            o for o in dossier.by_part.get(circuit.id, ()) if o.check in _DROPS and headroom_fraction(o) is not None
-        ]
-        if drops:
-            found.append((min(map(headroom, drops)), circuit))
+        drops = [headroom(o) for o in dossier.by_part.get(circuit.id, ()) if o.check in _DROPS]
+        if drops and min(drops) < math.inf:
+            found.append((min(drops), circuit))
     found.sort(key=lambda row: (row[0], natural(row[1].id)))
     return [circuit.id for _, circuit in found[:MOST_PLOTTED]]
 

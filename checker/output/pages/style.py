@@ -53,7 +53,8 @@ figure {{ margin: 1rem 0 2rem; }}
 .plot svg {{ max-width: 60rem; min-width: 40rem; }}
 """
 _DEEPEST = 12
-_DEPTHS = "".join(f".deep{n} {{ padding-left: {n * 0.9:g}rem; }}\n" for n in range(1, _DEEPEST + 1))
+_DEEP = ", ".join(f".deep{n}" for n in range(1, _DEEPEST + 1)) + " { display: block; white-space: nowrap; }\n"
+_DEPTHS = "".join(f".deep{n} {{ margin-left: {(n - 1) * 0.7:g}rem; }}\n" for n in range(1, _DEEPEST + 1))
 
 _PRINT = """\
 @page { margin: 13mm 12mm 15mm; size: A4; }
@@ -82,7 +83,7 @@ p, li { orphans: 3; widows: 3; }
 .in-pieces { display: none; }
 .piece, .on-paper { display: block; }
 .piece { break-after: page; }
-.piece svg { display: block; height: 246mm; margin: 0 auto; max-width: 100%; }
+.piece svg { display: block; height: 236mm; margin: 0 auto; max-width: 100%; }
 .wide .piece svg { height: 160mm; }
 .plot svg { max-width: 165mm; }
 figure { margin: 3mm 0; }
@@ -105,4 +106,4 @@ def css(foot: str) -> str:
 @bottom-right {{ content: counter(page) " of " counter(pages); font: 7.5pt sans-serif; }}
 }}
 """
-    return _SCREEN + _DEPTHS + _PRINT + feet
+    return _SCREEN + _DEEP + _DEPTHS + _PRINT + feet
