@@ -8,18 +8,19 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
+from functools import partial
 
 from checker.boat.hull import Boat
 from checker.output.drawing.canvas import Canvas
 from checker.output.drawing.lettering import text_width
 from checker.output.drawing.marks import Mark
-from checker.output.drawing.symbols import HALF, MARK, bar, mark, symbol
+from checker.output.drawing.symbols import BOX, HALF, MARK, bank_negative, bar, mark, symbol
 from checker.output.drawing.tree import Kind, Node
 
 NAME, TOLD = 2.2, 2.0
 """Sizes of the letters, mm."""
 ROW, TREE_GAP = 8.4, 4.0
-ABOVE, BELOW = 2.4, 3.6
+ABOVE, BELOW = 2.0, 3.2
 """Where the lines of text stand above and below the line of a row."""
 LEAF_TEXT = 42.0
 MOST_MARKS = 3
@@ -165,7 +166,8 @@ class Layout:
         if node.kind is Kind.PANEL:
             self._draw_panel_end(canvas, spot, end_of(spot))
         elif self._is_leaf(node):
-            symbol(canvas, node.kind, column.symbols_x + HALF, spot.y)
+            draw = bank_negative if node.kind is Kind.BANK else partial(symbol, kind=node.kind)
+            draw(canvas, x=column.symbols_x + HALF, y=spot.y)
             self._draw_leaf_text(canvas, spot)
         else:
             self._draw_inner(canvas, spot)
@@ -178,7 +180,8 @@ class Layout:
         else:
             symbol(canvas, node.kind, x, spot.y)
             down_x = self._down_x(spot)
-            canvas.line([(x + HALF, spot.y), (down_x, spot.y), (down_x, max(child.y for child in spot.children))])
+            from_x = x + (BOX if node.kind in _LEAVES else HALF)
+            canvas.line([(from_x, spot.y), (down_x, spot.y), (down_x, max(child.y for child in spot.children))])
         self._labelled(canvas, node, column, spot)
 
     def _down_x(self, spot: Spot) -> float:
@@ -191,14 +194,15 @@ class Layout:
         room = column.symbols - 1.0 - MARK * len(marks)
         width = min(room, text_width(node.name, NAME, is_bold=True))
         left = column.centre - (width + MARK * len(marks)) / 2
-        canvas.text(left, spot.y - ABOVE, node.name, NAME, within=room, is_bold=True)
-        self._draw_marks(canvas, marks, left + width + MARK / 2, spot.y - ABOVE - 0.7)
+        if marks:
+            canvas.text(left, spot.y - ABOVE, node.name, NAME, within=room, is_bold=True)
+        else:
+            canvas.text(column.centre, spot.y - ABOVE, node.name, NAME, within=room, is_bold=True, anchor="middle")
+        self._draw_marks(canvas, marks, left + width + MARK / 2, spot.y - ABOVE - 1.0)
         y = spot.bottom + BELOW if node.kind in _BARS else spot.y + BELOW
         for words in (node.told, node.note):
             if words:
-                within = column.symbols - 1.0
-                left = column.centre - min(within, text_width(words, TOLD)) / 2
-                canvas.text(left, y, words, TOLD, within=within)
+                canvas.text(column.centre, y, words, TOLD, within=column.symbols - 1.0, anchor="middle")
                 y += TOLD + 0.7
 
     def _draw_leaf_text(self, canvas: Canvas, spot: Spot) -> None:
@@ -225,11 +229,11 @@ class Layout:
         if child.node.wires:
             above, below = wire_words(self._boat, child.node.wires)
             marks = self._marks_at(child.node.wires)
-            room = end.wires - 1.0
-            canvas.text(end.wires_x + 0.5, child.y - 0.9, above, TOLD, within=room - MARK * len(marks))
+            room = end.wires - 1.3
+            canvas.text(end.wires_x + 1.0, child.y - 0.9, above, TOLD, within=room - MARK * len(marks))
             width = min(room - MARK * len(marks), text_width(above, TOLD))
-            self._draw_marks(canvas, marks, end.wires_x + 0.5 + width + MARK / 2, child.y - 2.2)
-            canvas.text(end.wires_x + 0.5, child.y + 2.5, below, TOLD, within=room)
+            self._draw_marks(canvas, marks, end.wires_x + 1.0 + width + MARK / 2, child.y - 2.2)
+            canvas.text(end.wires_x + 1.0, child.y + 2.5, below, TOLD, within=room)
 
     def _draw_panel_end(self, canvas: Canvas, spot: Spot, end_x: float | None) -> None:
         column = self.columns[spot.level]

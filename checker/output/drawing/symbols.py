@@ -8,6 +8,8 @@ from checker.output.drawing.tree import Kind
 
 HALF = 4.0
 """Half the width of a symbol in a line, mm."""
+BOX = 1.5
+"""Half the side of a box."""
 MARK = 4.2
 """Width of a finding's mark with the gap after it, mm."""
 _MARK_LETTERS = 2.0
@@ -24,7 +26,17 @@ def _plain(canvas: Canvas, x: float, y: float) -> None:
 
 def _bank(canvas: Canvas, x: float, y: float) -> None:
     canvas.line([(x + 1.2, y), (x + HALF, y)])
-    for left, high, width in ((1.2, 2.2, LINE), (0.2, 1.1, THICK), (-0.8, 2.2, LINE), (-1.8, 1.1, THICK)):
+    _cells(canvas, x, y)
+
+
+def bank_negative(canvas: Canvas, x: float, y: float) -> None:
+    """Draw a bank at the end of a line that comes to its negative post."""
+    canvas.line([(x - HALF, y), (x - 1.8, y)])
+    _cells(canvas, x, y)
+
+
+def _cells(canvas: Canvas, x: float, y: float) -> None:
+    for left, high, width in ((1.2, 1.6, LINE), (0.2, 0.8, THICK), (-0.8, 1.6, LINE), (-1.8, 0.8, THICK)):
         canvas.line([(x + left, y - high), (x + left, y + high)], width=width)
 
 
@@ -45,7 +57,7 @@ def _closed(canvas: Canvas, x: float, y: float) -> None:
 
 
 def _open(canvas: Canvas, x: float, y: float) -> None:
-    _contact(canvas, x, y, rise=2.0)
+    _contact(canvas, x, y, rise=1.4)
     canvas.circle(x + 2.5, y, 0.55)
 
 
@@ -61,7 +73,7 @@ def _shunt(canvas: Canvas, x: float, y: float) -> None:
     canvas.line([(x + 2.6, y), (x + HALF, y)])
     canvas.rect(x - 2.6, y - 1.1, 5.2, 2.2)
     for left in (-1.6, 1.6):
-        canvas.line([(x + left, y + 1.1), (x + left, y + 2.1)])
+        canvas.line([(x + left, y + 1.1), (x + left, y + 1.5)])
 
 
 def _diode(canvas: Canvas, x: float, y: float) -> None:
@@ -71,20 +83,20 @@ def _diode(canvas: Canvas, x: float, y: float) -> None:
 
 
 def _load(canvas: Canvas, x: float, y: float) -> None:
-    canvas.line([(x - HALF, y), (x - 1.7, y)])
-    canvas.rect(x - 1.7, y - 1.7, 3.4, 3.4, width=THICK)
+    canvas.line([(x - HALF, y), (x - BOX, y)])
+    canvas.rect(x - BOX, y - BOX, 2 * BOX, 2 * BOX, width=THICK)
 
 
 def _source(canvas: Canvas, x: float, y: float) -> None:
-    canvas.line([(x - HALF, y), (x - 1.9, y)])
-    canvas.circle(x, y, 1.9)
-    canvas.text(x, y + 0.85, "G", 2.3, anchor="middle")
+    canvas.line([(x - HALF, y), (x - 1.7, y)])
+    canvas.circle(x, y, 1.7)
+    canvas.text(x, y + 0.75, "G", 2.0, anchor="middle")
 
 
 def _converter(canvas: Canvas, x: float, y: float) -> None:
-    canvas.line([(x - HALF, y), (x - 1.8, y)])
-    canvas.rect(x - 1.8, y - 1.8, 3.6, 3.6)
-    canvas.line([(x - 1.8, y + 1.8), (x + 1.8, y - 1.8)])
+    canvas.line([(x - HALF, y), (x - BOX, y)])
+    canvas.rect(x - BOX, y - BOX, 2 * BOX, 2 * BOX)
+    canvas.line([(x - BOX, y + BOX), (x + BOX, y - BOX)])
 
 
 def _tie(canvas: Canvas, x: float, y: float) -> None:
@@ -107,7 +119,7 @@ _SYMBOLS = {
 def bar(canvas: Canvas, x: float, top: float, bottom: float, *, is_bus: bool) -> None:
     """Draw a bus bar, or the line down from a junction."""
     if is_bus:
-        canvas.line([(x, top - 1.6), (x, bottom + 1.6)], width=BAR)
+        canvas.line([(x, top - 1.3), (x, bottom + 1.3)], width=BAR)
     else:
         canvas.line([(x, top), (x, bottom)])
         canvas.circle(x, top, 0.5, fill="black", width=THIN)
@@ -117,12 +129,12 @@ def mark(canvas: Canvas, x: float, y: float, number: int, verdict: Verdict, leve
     """Draw the numbered mark of a finding, its centre at x and y: black disc, triangle, circle, or square if accepted."""
     is_error = level is Level.ERROR and verdict is Verdict.FINDING
     if verdict is Verdict.ACCEPTED:
-        canvas.rect(x - 1.6, y - 1.45, 3.2, 2.9)
+        canvas.rect(x - 1.6, y - 1.45, 3.2, 2.9, fill="white")
     elif is_error:
-        canvas.circle(x, y, 1.75, fill="black")
+        canvas.circle(x, y, 1.6, fill="black")
     elif level is Level.WARNING:
-        canvas.polygon([(x - 2, y), (x - 0.9, y - 1.7), (x + 0.9, y - 1.7), (x + 2, y), (x + 0.9, y + 1.7), (x - 0.9, y + 1.7)])
+        canvas.polygon([(x - 1.9, y), (x - 0.9, y - 1.6), (x + 0.9, y - 1.6), (x + 1.9, y), (x + 0.9, y + 1.6), (x - 0.9, y + 1.6)])
     else:
-        canvas.circle(x, y, 1.75)
+        canvas.circle(x, y, 1.6)
     colour = "white" if is_error else "black"
     canvas.text(x, y + 0.7, str(number), _MARK_LETTERS, anchor="middle", fill=colour)
