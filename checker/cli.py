@@ -94,6 +94,14 @@ def _parser() -> argparse.ArgumentParser:
     waiver.add_argument("--expires", default="", metavar="DATE", help="the last day on which it counts")
     _add_today(waiver)
     waiver.set_defaults(run=_waiver)
+    draw = commands.add_parser("draw", help="draw a hull: one line, coordination, voltages", description=_draw.__doc__)
+    draw.add_argument("hull", metavar="HULL", help="the hull to draw")
+    draw.add_argument("folder", nargs="?", default=".", metavar="FOLDER", help="the yard's repository (default: here)")
+    draw.add_argument("--to", required=True, metavar="FOLDER", help="the folder to write the drawings into")
+    draw.add_argument("--circuit", action="append", default=[], metavar="CIRCUIT",
+                      help="plot this circuit only; may be repeated (default: all)")  # fmt: skip
+    _add_today(draw)
+    draw.set_defaults(run=_draw)
     explain = commands.add_parser("explain", help="say what a check does", description=_explain.__doc__)
     explain.add_argument("check", nargs="?", metavar="CHECK", help="the id of a check (default: list all)")
     explain.set_defaults(run=_explain)
@@ -220,6 +228,18 @@ def _waiver(options: argparse.Namespace) -> int:
             expires=options.expires,
         )
     )
+    return CLEAN
+
+
+def _draw(options: argparse.Namespace) -> int:
+    """Draw a hull as SVG: its one-line drawing, and for each circuit coordination and voltage; its trunk as Mermaid."""
+    from checker.output.drawing.files import drawing_files, write_drawings
+    from checker.pipeline import open_hull
+
+    opened = open_hull(Path(options.folder), options.hull, today=_today(options))
+    files = drawing_files(opened.studies, opened.result.outcomes, options.hull, options.circuit)
+    write_drawings(files, Path(options.to))
+    print(f"{len(files)} drawings of {options.hull} written to {options.to}")
     return CLEAN
 
 

@@ -114,6 +114,40 @@ def study_part(
 
 
 @dataclass(frozen=True, slots=True)
+class OpenHull:
+    """Hold one hull with its studies, for what shows more than a result holds; passes are in `result`."""
+
+    studies: Studies
+    result: SubjectResult
+
+
+def open_hull(folder: Path, hull: str, *, today: datetime.date) -> OpenHull:
+    """Check one hull, and return its boat and studies beside what was found.
+
+    Args:
+        folder: The yard's repository.
+        hull: The hull's id.
+        today: The day on which waivers are judged.
+
+    Raises:
+        FleetNotFoundError: If the folder holds no yard.
+        UsageError: If there is no such hull, or it cannot be studied.
+    """
+    with _collector_off():
+        fleet = _read_fleet(folder, lists_passes=True)
+        subjects = _chosen(fleet.assembly, fleet.files, [hull])
+        keys = fleet.keys(subjects)
+        opened = fleet.bench.open(keys[0]) if keys else None
+        if opened is None or opened[0] is None:
+            raise UsageError(f"hull {hull} could not be studied: “fairloom check --only {hull}” tells why")
+        studies, studied = opened
+        result = _Gatherer(
+            fleet.files, fleet.assembly, subjects, {keys[0]: studied}, fleet.faults, today, [hull], fleet.rules.house
+        ).result()
+        return OpenHull(studies, result.subjects[0])
+
+
+@dataclass(frozen=True, slots=True)
 class _Fleet:
     """Hold a fleet that was read and assembled, and what studies its boats."""
 
@@ -234,16 +268,20 @@ class _Bench:
 
     def study(self, key: StudyKey) -> Studied:
         """Build one boat, study it, and hold it against every limit set that it is judged by."""
+        return self.open(key)[1]
+
+    def open(self, key: StudyKey) -> tuple[Studies | None, Studied]:
+        """Study one boat, and return its studies too; None where it could not be built."""
         boat, faults = build_boat(self._content[key], self._class_of[key], self._catalogue)
         if boat is None:
-            return Studied(faults=tuple(faults))
+            return None, Studied(faults=tuple(faults))
         sets = _judged_by(boat, self._adopted, self._sets)
         limits = tuple(self._sets[use.id] for use in sets)
         studies = study_boat(boat)
         outcomes = run_checks(studies, limits, self._house)
         passed = [outcome for outcome in outcomes if outcome.verdict is Verdict.PASSED]
         ladder = studies.ladder
-        return Studied(
+        return studies, Studied(
             news=news_order(outcomes),
             passes=pass_order(passed) if self._lists_passes else (),
             passed=len(passed),

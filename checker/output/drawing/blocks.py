@@ -86,6 +86,8 @@ def _cells(boat: Boat, row: Row, before: tuple[str, ...]) -> tuple[str, ...]:
     if current_a is None and isinstance(part, Load):
         current_a = part.current_a
     name = circuit.name if circuit is not None else row.load
+    if circuit is not None and row.load != circuit.load:
+        name = f"{row.load} {name}"
     switches = "".join(f", {switch} {'closed' if is_closed else 'open'}" for switch, is_closed in row.switches)
     return (
         position,

@@ -15,7 +15,7 @@ from checker.output.drawing.canvas import LINE, THIN, Canvas, Point
 
 LETTERS = 2.3
 LANE = 3.6
-TICKS = 4.4
+TICKS = 4.8
 """Height of the strip with the figures under a frame, mm."""
 DASHES = ("", "3 1", "0.8 0.8", "5 1 0.8 1", "2 0.8", "5 1.5", "0.3 1", "7 1 2 1")
 GRID = "#b0b0b0"
@@ -113,8 +113,8 @@ class Frame:
         for value in self.across.ticks():
             x, _ = self.at(value, self.up.low)
             canvas.line([(x, self.y), (x, self.bottom)], width=THIN, grey=GRID)
-            canvas.text(x, self.bottom + 3.2, figure(value), LETTERS, anchor="middle")
-        canvas.text(self.right + 8, self.bottom + 3.2, title, LETTERS)
+            canvas.text(x, self.bottom + 3.6, figure(value), LETTERS, anchor="middle")
+        canvas.text(self.right + 8, self.bottom + 3.6, title, LETTERS)
 
     def draw_up(self, canvas: Canvas, title: str) -> None:
         """Draw the grid of the axis up, with its figures on the left."""

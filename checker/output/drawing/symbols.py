@@ -12,7 +12,7 @@ BOX = 1.5
 """Half the side of a box."""
 MARK = 4.2
 """Width of a finding's mark with the gap after it, mm."""
-_MARK_LETTERS = 2.0
+_MARK_LETTERS = 1.75
 
 
 def symbol(canvas: Canvas, kind: Kind, x: float, y: float) -> None:
@@ -36,7 +36,7 @@ def bank_negative(canvas: Canvas, x: float, y: float) -> None:
 
 
 def _cells(canvas: Canvas, x: float, y: float) -> None:
-    for left, high, width in ((1.2, 1.6, LINE), (0.2, 0.8, THICK), (-0.8, 1.6, LINE), (-1.8, 0.8, THICK)):
+    for left, high, width in ((1.2, 1.4, LINE), (0.2, 0.7, THICK), (-0.8, 1.4, LINE), (-1.8, 0.7, THICK)):
         canvas.line([(x + left, y - high), (x + left, y + high)], width=width)
 
 
@@ -137,4 +137,4 @@ def mark(canvas: Canvas, x: float, y: float, number: int, verdict: Verdict, leve
     else:
         canvas.circle(x, y, 1.6)
     colour = "white" if is_error else "black"
-    canvas.text(x, y + 0.7, str(number), _MARK_LETTERS, anchor="middle", fill=colour)
+    canvas.text(x, y + 0.62, str(number), _MARK_LETTERS, anchor="middle", fill=colour)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
@@ -136,9 +137,10 @@ def _alike(profiles: Sequence[_Profile]) -> list[list[_Profile]]:
 
 def _axis(volts: Sequence[float]) -> Axis:
     low, high = min(0.0, *volts), max(0.0, *volts)
-    step = round_step((high - low) / 6)
-    first = step * (int(low / step) - (1 if low < 0 else 0))
-    return Axis(first, step * (int(high / step) + 1), False)
+    step = round_step(max(high - low, _SAME_V) / 6)
+    # A hair beyond a step is no reason for a whole step more.
+    first, last = math.floor(low / step + 0.02), math.ceil(high / step - 0.02)
+    return Axis(step * min(first, 0), step * max(last, 1), False)
 
 
 def _allowed_v(

@@ -1,0 +1,197 @@
+"""Drawings can be read: no text meets another, nothing is cut, no line runs through a text; and they tell all."""
+
+from __future__ import annotations
+
+import datetime
+import os
+import subprocess
+import sys
+from collections.abc import Iterator
+from functools import cache
+from pathlib import Path
+
+import pytest
+
+from checker import pipeline
+from checker.boat.parts import Load, Overcurrent
+from checker.cli import main
+from checker.errors import UsageError
+from checker.finding import Outcome
+from checker.network.studies import Studies
+from checker.output.drawing.files import drawing_files
+from checker.output.drawing.lettering import shortened, text_width
+from checker.output.drawing.one_line import one_line
+from checker.output.drawing.tree import feed_trees
+from tests.benchmark import write_large_hull
+from tests.make_drawings import FOLDER, drawings, flawed_yard
+from tests.output.svg_geometry import faults, read
+from tests.small_yard import HULL, SOUND, Yard
+
+ROOT = Path(__file__).resolve().parents[2]
+EXAMPLE = ROOT / "fleet_example"
+TODAY = datetime.date(2026, 12, 1)
+Opened = tuple[str, Studies, tuple[Outcome, ...]]
+
+
+@cache
+def example() -> list[Opened]:
+    """Return every hull and option set of the example with its studies and what was found."""
+    fleet = pipeline._read_fleet(EXAMPLE, lists_passes=True)
+    found: list[Opened] = []
+    for subject in fleet.assembly.subjects:
+        studies, studied = fleet.bench.open(subject.key)
+        assert studies is not None
+        found.append((subject.id, studies, (*studied.news, *studied.passes)))
+    return found
+
+
+def texts(svg: str) -> list[str]:
+    return [text for text, _ in read(svg).texts]
+
+
+def opened(yard: Yard, folder: Path) -> pipeline.OpenHull:
+    for name, text in yard.files.items():
+        (folder / name).parent.mkdir(parents=True, exist_ok=True)
+        (folder / name).write_text(text, encoding="utf-8")
+    return pipeline.open_hull(folder, HULL, today=TODAY)
+
+
+def drawn(yard: Yard, folder: Path) -> dict[str, str]:
+    """Return all drawings of the small yard's hull."""
+    hull = opened(yard, folder)
+    return drawing_files(hull.studies, hull.result.outcomes, HULL)
+
+
+def test_the_one_line_drawing_of_every_hull_and_option_set_can_be_read() -> None:
+    assert len(example()) > 12
+    assert {name: found for name, studies, outcomes in example() if (found := faults(one_line(studies, outcomes, name)))} == {}
+
+
+def test_no_device_and_no_load_is_left_out() -> None:
+    for name, studies, outcomes in example():
+        told = " ".join(texts(one_line(studies, outcomes, name))).split(" ")
+        devices = {d.id for d in studies.boat.devices.values() if isinstance(d.part, Overcurrent)}
+        loads = {d.circuit or d.id for d in studies.boat.devices.values() if isinstance(d.part, Load)}
+        assert (devices | loads) - set(told) == set(), name
+
+
+@pytest.mark.parametrize("hull", ["TND-036", "TND-038"])
+def test_the_plots_of_every_circuit_can_be_read(hull: str) -> None:
+    name, studies, outcomes = next(row for row in example() if row[0] == hull)
+    plots = {n: svg for n, svg in drawing_files(studies, outcomes, name).items() if "-line" not in n and n.endswith("svg")}
+    assert len(plots) > 100
+    assert {n: found for n, svg in plots.items() if (found := faults(svg))} == {}
+
+
+def test_the_drawings_of_a_large_hull_can_be_read(tmp_path: Path) -> None:
+    write_large_hull(tmp_path)
+    hull = pipeline.open_hull(tmp_path, "TND-0001", today=TODAY)
+    svg = one_line(hull.studies, hull.result.outcomes, "TND-0001")
+    assert faults(svg) == []
+    assert len(hull.studies.boat.conductors) > 350
+    assert {circuit for circuit, row in hull.studies.boat.circuits.items() if row.load} - set(texts(svg)) == set()
+
+
+def test_nothing_found_leaves_the_list_of_findings_empty(tmp_path: Path) -> None:
+    svg = drawn(SOUND, tmp_path)["one-line.svg"]
+    assert "none" in texts(svg)
+    assert faults(svg) == []
+
+
+def test_a_finding_is_marked_where_it_is_and_told_in_the_list(tmp_path: Path) -> None:
+    picture = read(drawn(flawed_yard(), tmp_path)["one-line.svg"])
+    (wire,) = [box for text, box in picture.texts if text.startswith("M1 ")]
+    marks = [box for text, box in picture.texts if text == "1" and abs(box[1] - wire[1]) < 3]
+    assert min(box[0] - wire[2] for box in marks) < 3
+    assert any(text.startswith("error: M1 of MAIN") for text, _ in picture.texts)
+
+
+def test_a_fault_under_two_limit_sets_is_one_mark(tmp_path: Path) -> None:
+    told = [text for text in texts(drawn(flawed_yard(), tmp_path)["one-line.svg"]) if text.startswith("error: M1 ")]
+    assert len(told) == 1
+
+
+def test_an_open_switch_is_told_as_open() -> None:
+    _, studies, _ = next(row for row in example() if row[0] == "TND-031")
+    nodes = {node.name: node for tree in feed_trees(studies) for node in tree.walk()}
+    assert (nodes["SW-P"].told, nodes["SW-H"].told) == ("open", "closed")
+
+
+HOSTILE = [
+    "<script>alert(1)</script>", "x" * 400, "W" * 200, "]]> & \\\" ' --> ${x}", "\u202egnp.exe", "e" + "\u0301" * 60,
+    "漢字" * 80, "::error::x", "| `a` @b #c ; end", "\u200f\u05d0\u05d1\u05d2", "\ufdfd" * 9,
+]  # fmt: skip
+
+
+@pytest.mark.parametrize("name", HOSTILE, ids=range(len(HOSTILE)))
+def test_names_are_escaped_and_cut_to_their_room(tmp_path: Path, name: str) -> None:
+    quoted = "'" + name.replace("'", "''") + "'"
+    yard = SOUND.edit("name: Cabin lights", f"name: {quoted}").edit("name: Starter\n", f"name: {quoted}\n")
+    yard = yard.edit("name: Skiff", f"name: {quoted}")
+    try:
+        files = drawn(yard, tmp_path)
+    except UsageError:
+        pytest.skip("the reader refuses this text")
+    for file, text in files.items():
+        if file.endswith(".svg"):
+            assert faults(text) == [], file
+            assert "<script" not in text
+        else:
+            assert text.count("```") == 2
+
+
+def test_long_ids_are_cut_to_their_room(tmp_path: Path) -> None:
+    files = {name: text for name, text in SOUND.files.items()}
+    for short in ("F-MAIN", "BUS-P", "PLOTTER", "M1", "PANEL-N", "SW-H"):
+        long = (short + "-" + "WIDE" * 10)[:40]
+        files = {name: text.replace(f"{short}:", f"{long}:").replace(f"{short}.", f"{long}.").replace(f"{short},", f"{long},")
+                 .replace(f"{short}}}", f"{long}}}") for name, text in files.items()}  # fmt: skip
+    for file, text in drawn(Yard(files), tmp_path).items():
+        assert file.endswith(".md") or faults(text) == [], file
+
+
+def test_a_text_is_cut_with_an_ellipsis_and_keeps_its_width() -> None:
+    cut = shortened("Chart plotter and sounder at the helm", 2.0, 20.0)
+    assert cut.endswith("…") and text_width(cut, 2.0) <= 20.0
+    assert shortened("Horn", 2.0, 20.0) == "Horn"
+
+
+@pytest.mark.parametrize("name", sorted(path.name for path in FOLDER.iterdir()))
+def test_the_drawings_kept_with_the_tests_are_made_to_the_byte(name: str) -> None:
+    assert drawings()[name] == (FOLDER / name).read_text(encoding="utf-8")
+
+
+def test_the_bytes_do_not_depend_on_the_hash_seed(tmp_path: Path) -> None:
+    def run(seed: str) -> Iterator[tuple[str, bytes]]:
+        folder = tmp_path / seed
+        words = ["draw", "TND-038", str(EXAMPLE), "--to", str(folder), "--circuit", "P11", "--today", "2026-12-01"]
+        command = [sys.executable, "-m", "checker", *words]
+        subprocess.run(command, cwd=ROOT, env={**os.environ, "PYTHONHASHSEED": seed}, check=True, capture_output=True)
+        return ((path.name, path.read_bytes()) for path in sorted(folder.iterdir()))
+
+    assert dict(run("1")) == dict(run("2"))
+
+
+def test_the_command_writes_the_plots_asked_for(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    words = ["draw", "TND-031", str(EXAMPLE), "--to", str(tmp_path / "new"), "--circuit", "P14", "--today", "2026-12-01"]
+    assert main(words) == 0
+    assert sorted(path.name for path in (tmp_path / "new").iterdir()) == [
+        "coordination-P14.svg", "one-line.svg", "trunk.md", "voltage-P14.svg",
+    ]  # fmt: skip
+    assert "4 drawings of TND-031" in capsys.readouterr().out
+
+
+@pytest.mark.parametrize(
+    ("hull", "circuit", "told"), [("TND-099", "P14", "no hull TND-099"), ("TND-031", "p14", "did you mean P14?")]
+)
+def test_what_is_not_aboard_is_told(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str], hull: str, circuit: str, told: str
+) -> None:
+    assert main(["draw", hull, str(EXAMPLE), "--to", str(tmp_path), "--circuit", circuit, "--today", "2026-12-01"]) == 2
+    assert told in capsys.readouterr().err
+
+
+def test_a_hull_that_cannot_be_built_is_told(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    yard = SOUND.edit("to: F-MAIN.line", "to: F-NONE.line")
+    with pytest.raises(UsageError, match="could not be studied"):
+        opened(yard, tmp_path)
