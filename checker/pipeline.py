@@ -137,10 +137,9 @@ def open_hull(folder: Path, hull: str, *, today: datetime.date) -> OpenHull:
         fleet = _read_fleet(folder, lists_passes=True)
         subjects = _chosen(fleet.assembly, fleet.files, [hull])
         keys = fleet.keys(subjects)
-        opened = fleet.bench.open(keys[0]) if keys else None
-        if opened is None or opened[0] is None:
+        studies, studied = fleet.bench.open(keys[0]) if keys else (None, Studied())
+        if studies is None:
             raise UsageError(f"hull {hull} could not be studied: “fairloom check --only {hull}” tells why")
-        studies, studied = opened
         result = _Gatherer(
             fleet.files, fleet.assembly, subjects, {keys[0]: studied}, fleet.faults, today, [hull], fleet.rules.house
         ).result()

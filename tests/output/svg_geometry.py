@@ -18,11 +18,12 @@ Segment = tuple[float, float, float, float]
 
 @dataclass(frozen=True)
 class Picture:
-    """Hold what a drawing is made of: its size, its texts with the room they take, and all its strokes."""
+    """Hold what a drawing is made of: its size, its texts with the room they take, its lines and all its strokes."""
 
     wide: float
     high: float
     texts: list[tuple[str, Box]]
+    lines: list[Segment]
     segments: list[Segment]
     points: list[tuple[float, float]]
 
@@ -34,6 +35,7 @@ def read(svg: str) -> Picture:
     assert root.findtext(f"{SVG}title") and root.findtext(f"{SVG}desc")
     wide, high = (float(v) for v in root.get("viewBox", "").split()[2:])
     texts: list[tuple[str, Box]] = []
+    lines: list[Segment] = []
     segments: list[Segment] = []
     points: list[tuple[float, float]] = []
     for shape in root.iter():
@@ -45,7 +47,9 @@ def read(svg: str) -> Picture:
             points += [(x, y) for x, y in corners]
             if shape.get("stroke") != "none":
                 closed = [*corners, corners[0]] if name == "polygon" else corners
-                segments += [(*a, *b) for a, b in itertools.pairwise(closed)]
+                pieces = [(*a, *b) for a, b in itertools.pairwise(closed)]
+                segments += pieces
+                lines += pieces if name == "polyline" else []
         elif name == "rect":
             x, y, w, h = (float(shape.get(key, "0")) for key in ("x", "y", "width", "height"))
             points += [(x, y), (x + w, y + h)]
@@ -56,7 +60,7 @@ def read(svg: str) -> Picture:
             points += [(x - r, y - r), (x + r, y + r)]
             ring = [(x + r * math.cos(a * math.pi / 12), y + r * math.sin(a * math.pi / 12)) for a in range(25)]
             segments += [(*a, *b) for a, b in itertools.pairwise(ring)]
-    return Picture(wide, high, texts, segments, points)
+    return Picture(wide, high, texts, lines, segments, points)
 
 
 def _text_box(shape: ET.Element) -> Box:
@@ -81,6 +85,18 @@ def faults(svg: str) -> list[str]:
     for text, box in picture.texts:
         found += [f"line through {text}: {segment}" for segment in picture.segments if _crosses(segment, box)]
     return found
+
+
+def crossings(svg: str) -> list[tuple[Segment, Segment]]:
+    """Return the level and upright lines that cross each other, beyond where they only touch."""
+    lines = [tuple(s) for s in read(svg).lines]
+    level = [s for s in lines if s[1] == s[3]]
+    upright = [s for s in lines if s[0] == s[2]]
+    return [
+        (a, b) for a in level for b in upright
+        if min(a[0], a[2]) + SLACK_MM < b[0] < max(a[0], a[2]) - SLACK_MM
+        and min(b[1], b[3]) + SLACK_MM < a[1] < max(b[1], b[3]) - SLACK_MM
+    ]  # fmt: skip
 
 
 def _is_inside(box: Box, picture: Picture) -> bool:

@@ -3,7 +3,9 @@
 from __future__ import annotations
 
 import datetime
+import math
 import os
+import re
 import subprocess
 import sys
 from collections.abc import Iterator
@@ -13,18 +15,21 @@ from pathlib import Path
 import pytest
 
 from checker import pipeline
+from checker.boat.hull import Boat
 from checker.boat.parts import Load, Overcurrent
 from checker.cli import main
 from checker.errors import UsageError
 from checker.finding import Outcome
 from checker.network.studies import Studies
+from checker.output.drawing import mermaid
+from checker.output.drawing.feed_tree import feed_trees
 from checker.output.drawing.files import drawing_files
 from checker.output.drawing.lettering import shortened, text_width
 from checker.output.drawing.one_line import one_line
-from checker.output.drawing.tree import feed_trees
+from checker.output.drawing.tree import Kind, Node
 from tests.benchmark import write_large_hull
 from tests.make_drawings import FOLDER, drawings, flawed_yard
-from tests.output.svg_geometry import faults, read
+from tests.output.svg_geometry import crossings, faults, read
 from tests.small_yard import HULL, SOUND, Yard
 
 ROOT = Path(__file__).resolve().parents[2]
@@ -43,6 +48,10 @@ def example() -> list[Opened]:
         assert studies is not None
         found.append((subject.id, studies, (*studied.news, *studied.passes)))
     return found
+
+
+def small_boat() -> Boat:
+    return example()[0][1].boat
 
 
 def texts(svg: str) -> list[str]:
@@ -64,7 +73,14 @@ def drawn(yard: Yard, folder: Path) -> dict[str, str]:
 
 def test_the_one_line_drawing_of_every_hull_and_option_set_can_be_read() -> None:
     assert len(example()) > 12
-    assert {name: found for name, studies, outcomes in example() if (found := faults(one_line(studies, outcomes, name)))} == {}
+    assert {
+        name: found for name, studies, outcomes in example() if (found := faults(one_line(studies, outcomes, name)))
+    } == {}
+
+
+def test_no_line_crosses_another() -> None:
+    for name, studies, outcomes in example():
+        assert crossings(one_line(studies, outcomes, name)) == [], name
 
 
 def test_no_device_and_no_load_is_left_out() -> None:
@@ -78,7 +94,9 @@ def test_no_device_and_no_load_is_left_out() -> None:
 @pytest.mark.parametrize("hull", ["TND-036", "TND-038"])
 def test_the_plots_of_every_circuit_can_be_read(hull: str) -> None:
     name, studies, outcomes = next(row for row in example() if row[0] == hull)
-    plots = {n: svg for n, svg in drawing_files(studies, outcomes, name).items() if "-line" not in n and n.endswith("svg")}
+    plots = {
+        n: svg for n, svg in drawing_files(studies, outcomes, name).items() if "-line" not in n and n.endswith("svg")
+    }
     assert len(plots) > 100
     assert {n: found for n, svg in plots.items() if (found := faults(svg))} == {}
 
@@ -88,6 +106,7 @@ def test_the_drawings_of_a_large_hull_can_be_read(tmp_path: Path) -> None:
     hull = pipeline.open_hull(tmp_path, "TND-0001", today=TODAY)
     svg = one_line(hull.studies, hull.result.outcomes, "TND-0001")
     assert faults(svg) == []
+    assert crossings(svg) == []
     assert len(hull.studies.boat.conductors) > 350
     assert {circuit for circuit, row in hull.studies.boat.circuits.items() if row.load} - set(texts(svg)) == set()
 
@@ -141,7 +160,7 @@ def test_names_are_escaped_and_cut_to_their_room(tmp_path: Path, name: str) -> N
 
 
 def test_long_ids_are_cut_to_their_room(tmp_path: Path) -> None:
-    files = {name: text for name, text in SOUND.files.items()}
+    files = dict(SOUND.files)
     for short in ("F-MAIN", "BUS-P", "PLOTTER", "M1", "PANEL-N", "SW-H"):
         long = (short + "-" + "WIDE" * 10)[:40]
         files = {name: text.replace(f"{short}:", f"{long}:").replace(f"{short}.", f"{long}.").replace(f"{short},", f"{long},")
@@ -173,7 +192,17 @@ def test_the_bytes_do_not_depend_on_the_hash_seed(tmp_path: Path) -> None:
 
 
 def test_the_command_writes_the_plots_asked_for(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
-    words = ["draw", "TND-031", str(EXAMPLE), "--to", str(tmp_path / "new"), "--circuit", "P14", "--today", "2026-12-01"]
+    words = [
+        "draw",
+        "TND-031",
+        str(EXAMPLE),
+        "--to",
+        str(tmp_path / "new"),
+        "--circuit",
+        "P14",
+        "--today",
+        "2026-12-01",
+    ]
     assert main(words) == 0
     assert sorted(path.name for path in (tmp_path / "new").iterdir()) == [
         "coordination-P14.svg", "one-line.svg", "trunk.md", "voltage-P14.svg",
@@ -189,6 +218,48 @@ def test_what_is_not_aboard_is_told(
 ) -> None:
     assert main(["draw", hull, str(EXAMPLE), "--to", str(tmp_path), "--circuit", circuit, "--today", "2026-12-01"]) == 2
     assert told in capsys.readouterr().err
+
+
+def test_the_plots_are_left_out_where_the_batteries_have_no_figures(tmp_path: Path) -> None:
+    text = SOUND.files["parts/parts.yaml"]
+    for name in ("emf_full", "emf_low", "resistance_full", "resistance_low"):
+        text = re.sub(rf"\s*{name}: [^,}}\n]*(, |,\n|\n)", " " if "{" in text.splitlines()[1] else "\n", text)
+    files = drawn(Yard({**SOUND.files, "parts/parts.yaml": text}), tmp_path)
+    assert [name for name in files if name.startswith("voltage")] == []
+    assert "one-line.svg" in files and "coordination-LIGHTS.svg" in files
+    assert not any("largest" in text for text in texts(files["coordination-LIGHTS.svg"]))
+
+
+def test_the_band_of_a_device_stands_at_its_rating(tmp_path: Path) -> None:
+    """A 10 A breaker that begins to open at 1.2 times its rating: its label stands at 12 A."""
+    picture = read(drawn(SOUND, tmp_path)["coordination-LIGHTS.svg"])
+    place = dict(sorted(picture.texts, key=lambda row: row[1][1]))  # the lower axis last
+    decade_a, next_a = ((place[words][0] + place[words][2]) / 2 for words in ("10", "100"))
+    (label,) = [box for text, box in picture.texts if text.startswith("P2 10 A")]
+    assert label[0] - 1 == pytest.approx(decade_a + math.log10(1.2) * (next_a - decade_a), abs=0.02)
+
+
+def test_a_diagram_too_large_for_a_forge_is_split() -> None:
+    tree = Node(Kind.BANK, "B", children=[
+        Node(Kind.FUSE, f"F{i}", children=[Node(Kind.LOAD, f"L{i}-{j}") for j in range(30)]) for i in range(30)
+    ])  # fmt: skip
+    parts = list(mermaid._split(small_boat(), [tree]))
+    diagrams = ["\n".join(mermaid._diagram(small_boat(), part)) for part in parts]
+    assert len(parts) == 3
+    assert max(text.count(" --- ") for text in diagrams) <= mermaid.MOST_EDGES
+    assert sum(text.count('"L') for text in diagrams) == 900
+    assert all('"bank B"' in text for text in diagrams)
+
+
+def test_nothing_in_a_label_is_syntax() -> None:
+    tree = Node(Kind.BANK, 'a"b;c#d<e>f`g', children=[Node(Kind.FUSE, 'x"]; click n1 "javascript:y')])
+    lines = mermaid._diagram(small_boat(), [tree])
+    assert lines == [
+        "flowchart LR",
+        '  n1[["bank a#quot;b#59;c#35;d&lt;e&gt;f\'g"]]',
+        '  n2["fuse x#quot;]#59; click n1 #quot;javascript:y"]',
+        "  n1 --- n2",
+    ]
 
 
 def test_a_hull_that_cannot_be_built_is_told(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:

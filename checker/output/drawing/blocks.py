@@ -2,14 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 
 from checker.boat.hull import Boat
 from checker.boat.parts import Load, Overcurrent
 from checker.finding import Level, Verdict
 from checker.output.drawing.canvas import BAR, THIN, Canvas
-from checker.output.drawing.lettering import wrapped
+from checker.output.drawing.lettering import legible, text_width, wrapped
 from checker.output.drawing.marks import Mark
 from checker.output.drawing.symbols import HALF, MARK, mark, symbol
 from checker.output.drawing.tree import Kind, Node, Row
@@ -18,51 +18,66 @@ WIDE = 122.0
 GAP = 6.0
 _SIZE, _LINE = 2.1, 3.55
 _HEAD = 2.2
-_COLUMNS = (("position", 23.0), ("circuit", 10.0), ("load", 40.0), ("size", 14.0), ("length", 12.0), ("current", 11.5))
-_MARKS_X = sum(width for _, width in _COLUMNS)
+_HEADS = ("position", "circuit", "load", "size", "length", "current")
+_LOAD = 2
+_WIDEST = (34.0, 24.0, 0.0, 20.0, 14.0, 14.0)
+"""How wide each column may become, mm; that of the load takes what is left."""
 _MOST_MARKS = 2
+_MARKS_WIDE = _MOST_MARKS * MARK
 
 
 @dataclass(frozen=True, slots=True)
 class Block:
-    """Hold something of a known height that is drawn at a corner. `panel` is the panel of a table."""
+    """Hold something of a known height, and how it is drawn at a corner."""
 
     high: float
-    panel: Node | None = None
-    marks: tuple[Mark, ...] = ()
-    notes: tuple[str, ...] = ()
+    draw: Callable[[Canvas, float, float], None]
 
 
-def panel_block(panel: Node) -> Block:
-    """Return the table of a panel."""
-    return Block((len(panel.rows) + 2) * _LINE + 1.5, panel=panel)
+def panel_block(boat: Boat, panel: Node, marks: Mapping[str, list[Mark]]) -> Block:
+    """Return a panel as a table: its bar down the left side, and a row for each branch."""
+
+    def draw(canvas: Canvas, x: float, y: float) -> None:
+        _draw_panel(canvas, boat, panel, marks, x, y)
+
+    return Block((len(panel.rows) + 2) * _LINE + 1.5, draw)
 
 
-def draw_panel(canvas: Canvas, boat: Boat, panel: Node, marks: Mapping[str, list[Mark]], x: float, y: float) -> None:
-    """Draw a panel as a table: its bar down the left side, and a row for each branch."""
+def _draw_panel(canvas: Canvas, boat: Boat, panel: Node, marks: Mapping[str, list[Mark]], x: float, y: float) -> None:
     own = [mark for name in panel.stands_for for mark in marks.get(name, ())][:_MOST_MARKS]
     canvas.text(x + 1.5, y + 2.6, f"panel {panel.name}  {panel.told}", _HEAD, within=WIDE - 20, is_bold=True)
-    _draw_marks(canvas, own, x + WIDE - MARK * 1.5, y + 1.8)
-    left = x + 1.5
+    _draw_marks(canvas, own, x + WIDE - _MARKS_WIDE + MARK / 2, y + 1.8)
+    befores = [(), *(row.devices for row in panel.rows)]
+    cells = [_cells(boat, row, before) for row, before in zip(panel.rows, befores, strict=False)]
+    widths = _widths(cells)
     y += _LINE
-    for words, width in _COLUMNS:
-        canvas.text(left, y + 2.6, words, 1.9, within=width - 1)
-        left += width
+    _draw_cells(canvas, _HEADS, widths, x + 1.5, y + 2.6)
     y += _LINE
     top = y
-    before: tuple[str, ...] = ()
-    for row in panel.rows:
+    for row, words in zip(panel.rows, cells, strict=True):
         canvas.line([(x, y), (x + WIDE, y)], width=THIN)
-        left = x + 1.5
-        for (_, width), words in zip(_COLUMNS, _cells(boat, row, before), strict=True):
-            canvas.text(left, y + 2.6, words, _SIZE, within=width - 1)
-            left += width
+        _draw_cells(canvas, words, widths, x + 1.5, y + 2.6)
         found = list(dict.fromkeys(m for name in row.stands_for if name for m in marks.get(name, ())))
-        _draw_marks(canvas, found[:_MOST_MARKS], x + _MARKS_X + 1.5 + MARK / 2, y + _LINE / 2)
-        before = row.devices
+        _draw_marks(canvas, found[:_MOST_MARKS], x + WIDE - _MARKS_WIDE + MARK / 2, y + _LINE / 2)
         y += _LINE
     canvas.line([(x, y), (x + WIDE, y)], width=THIN)
     canvas.line([(x, top - _LINE * 2), (x, y)], width=BAR)
+
+
+def _widths(cells: Sequence[Sequence[str]]) -> list[float]:
+    """Return how wide each column is: what its texts need up to its bound, and the rest for the load."""
+    widths = [
+        min(widest, max(text_width(legible(row[column]), _SIZE) for row in (_HEADS, *cells)) + 2.0)
+        for column, widest in enumerate(_WIDEST)
+    ]
+    widths[_LOAD] = WIDE - 1.5 - _MARKS_WIDE - sum(widths[:_LOAD] + widths[_LOAD + 1 :])
+    return widths
+
+
+def _draw_cells(canvas: Canvas, cells: Sequence[str], widths: Sequence[float], x: float, y: float) -> None:
+    for words, width in zip(cells, widths, strict=True):
+        canvas.text(x, y, words, _SIZE, within=width - 1.5)
+        x += width
 
 
 def _draw_marks(canvas: Canvas, marks: Sequence[Mark], x: float, y: float) -> None:
@@ -107,7 +122,11 @@ def findings_block(marks: Sequence[Mark], left_out: int, not_assessed: int) -> B
     if not_assessed:
         notes.append(f"{not_assessed} places were not assessed: the report names them")
     lines = sum(len(_lines(found)) for found in marks) + len(notes) + (0 if marks else 1)
-    return Block(_LINE * (lines + 1) + 2.0, marks=tuple(marks), notes=tuple(notes))
+
+    def draw(canvas: Canvas, x: float, y: float) -> None:
+        _draw_findings(canvas, marks, notes, x, y)
+
+    return Block(_LINE * (lines + 1) + 2.0, draw)
 
 
 def _lines(found: Mark) -> list[str]:
@@ -118,25 +137,25 @@ def _lines(found: Mark) -> list[str]:
     return wrapped(f"{word}{where}: {subject}: {outcome.fault} [{outcome.check}]", _SIZE, WIDE - 8, 3)
 
 
-def draw_findings(canvas: Canvas, block: Block, x: float, y: float) -> None:
-    """Draw the list of findings."""
+def _draw_findings(canvas: Canvas, marks: Sequence[Mark], notes: Sequence[str], x: float, y: float) -> None:
     canvas.text(x, y + 2.6, "findings", _HEAD, is_bold=True)
     y += _LINE + 1.0
-    if not block.marks:
+    if not marks:
         canvas.text(x, y + 2.6, "none", _SIZE)
         y += _LINE
-    for found in block.marks:
+    for found in marks:
         mark(canvas, x + 2.2, y + 1.9, found.number, found.outcome.verdict, found.outcome.level)
         for line in _lines(found):
             canvas.text(x + 6, y + 2.6, line, _SIZE)
             y += _LINE
-    for note in block.notes:
+    for note in notes:
         canvas.text(x, y + 2.6, note, _SIZE, within=WIDE)
         y += _LINE
 
 
 _LEGEND = (
-    (Kind.FUSE, "fuse"), (Kind.BREAKER, "circuit breaker"), (Kind.CLOSED, "switch, closed"), (Kind.OPEN, "switch, open"),
+    (Kind.FUSE, "fuse"), (Kind.BREAKER, "circuit breaker"),
+    (Kind.CLOSED, "switch, closed"), (Kind.OPEN, "switch, open"),
     (Kind.SHUNT, "shunt of the monitor"), (Kind.BANK, "battery bank"), (Kind.SOURCE, "source"),
     (Kind.CONVERTER, "charger, converter"), (Kind.LOAD, "load"), (Kind.DIODE, "diode, one way"),
     (Kind.TIE, "goes on elsewhere"), (Kind.END, "end"),
@@ -150,13 +169,12 @@ _LEGEND_LINE = 5.4
 
 
 def legend_block() -> Block:
-    """Return the legend."""
+    """Return the legend: symbols, and the marks of findings."""
     lines = -(-len(_LEGEND) // _PER_LINE) + 1
-    return Block(_LINE + lines * _LEGEND_LINE + 1.0)
+    return Block(_LINE + lines * _LEGEND_LINE + 1.0, _draw_legend)
 
 
-def draw_legend(canvas: Canvas, x: float, y: float) -> None:
-    """Draw the legend: symbols, and the marks of findings."""
+def _draw_legend(canvas: Canvas, x: float, y: float) -> None:
     canvas.text(x, y + 2.6, "symbols", _HEAD, is_bold=True)
     y += _LINE
     step = WIDE / _PER_LINE

@@ -78,14 +78,15 @@ class Canvas:
     def svg(self, wide: float, high: float, title: str, description: Iterable[str], *, zoom: float = 1.0) -> str:
         """Return the picture, in mm at a zoom, with a title and a description for who cannot see it."""
         told = " ".join(legible(part) for part in description)
-        size = f'width="{number(wide * zoom)}mm" height="{number(high * zoom)}mm" viewBox="0 0 {number(wide)} {number(high)}"'
+        box = f'viewBox="0 0 {number(wide)} {number(high)}"'
+        size = f'width="{number(wide * zoom)}mm" height="{number(high * zoom)}mm" {box}'
         name = escape(legible(title))
         return "\n".join([
             f'<svg xmlns="http://www.w3.org/2000/svg" {size} role="img" aria-label="{name}">',
             f"<title>{name}</title>",
             f"<desc>{escape(told)}</desc>",
             f'<rect x="0" y="0" width="{number(wide)}" height="{number(high)}" fill="white" stroke="none"/>',
-            f'<g fill="none" stroke="black" stroke-linejoin="round">',
+            '<g fill="none" stroke="black" stroke-linejoin="round">',
             *(shape for shape in self._shapes if not shape.startswith("<text")),
             "</g>",
             f'<g fill="black" stroke="none" font-family="{FACES}">',

@@ -57,7 +57,7 @@ def coordination_plot(studies: Studies, circuit: Circuit, way: Way, hull: str) -
     faults = _faults(studies, way)
     across = _current_axis(list(known.values()), faults)
     bands = [_band(studies, name, curve, across.high) for name, curve in known.items()]
-    up = Axis(_shortest(bands), _LONGEST_S, True)
+    up = Axis(_shortest(list(known.values()), across.high), _LONGEST_S, True)
     conductor = _thinnest(studies, way)
     labels = len(bands) + (1 if conductor is not None else 0)
     top = _TITLE + labels * LANE + 3
@@ -107,7 +107,7 @@ def _faults(studies: Studies, way: Way) -> list[_Fault]:
 
 
 def _current_axis(curves: Sequence[Curve], faults: Sequence[_Fault]) -> Axis:
-    least = min(curve.corners_a()[0] for curve in curves)
+    least = min([curve.corners_a()[0] for curve in curves] + [fault.current_a for fault in faults])
     most = max([curve.corners_a()[0] * 10 for curve in curves] + [fault.current_a for fault in faults])
     low, high = math.floor(math.log10(least * 0.9)), math.ceil(math.log10(most * 1.05))
     return Axis(10.0**low, 10.0 ** max(high, low + 1), True)
@@ -128,9 +128,10 @@ def _edge(points: Sequence[tuple[float, float]], rating_a: float, highest_a: flo
     return ((finite[0][0], _LONGEST_S * 10), *finite, (max(highest_a, finite[-1][0]) * 1.01, finite[-1][1]))
 
 
-def _shortest(bands: Sequence[_Band]) -> float:
-    times = [seconds for band in bands for _, seconds in (*band.early, *band.late) if seconds > 0]
-    return max(_SHORTEST_S, 10.0 ** math.floor(math.log10(min(times, default=0.01))))
+def _shortest(curves: Sequence[Curve], highest_a: float) -> float:
+    """Return the decade under the shortest time that is shown."""
+    times = [seconds for curve in curves if 0 < (seconds := curve.earliest_s(highest_a)) < math.inf]
+    return min(0.1, max(_SHORTEST_S, 10.0 ** math.floor(math.log10(min(times, default=0.01)))))
 
 
 def _fill(canvas: Canvas, frame: Frame, bands: Sequence[_Band]) -> None:

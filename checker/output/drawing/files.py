@@ -20,13 +20,13 @@ ONE_LINE, TRUNK = "one-line.svg", "trunk.md"
 _DROP_CHECKS = ("voltage-drop", "voltage-drop-from-bank")
 
 
-def drop_limits(outcomes: Sequence[Outcome], circuit: str) -> dict[str, float]:
-    """Return the share of the voltage that a circuit may lose, by limit set, as its checks found it."""
-    return {
-        outcome.limit_set: outcome.measure.limit
-        for outcome in outcomes
-        if outcome.check in _DROP_CHECKS and outcome.part == circuit and outcome.measure is not None
-    }
+def drop_limits(outcomes: Sequence[Outcome]) -> dict[str, dict[str, float]]:
+    """Return the share of the voltage that each circuit may lose, by limit set, as the checks of the drop judged it."""
+    found: dict[str, dict[str, float]] = {}
+    for outcome in outcomes:
+        if outcome.check in _DROP_CHECKS and outcome.measure is not None:
+            found.setdefault(outcome.part, {})[outcome.limit_set] = outcome.measure.limit
+    return found
 
 
 def drawing_files(
@@ -43,9 +43,11 @@ def drawing_files(
     for name in circuits:
         if name not in known:
             meant = nearest(name, known)
-            raise UsageError(f"there is no circuit {shown(name)} on {hull}" + (f"; did you mean {meant}?" if meant else ""))
+            raise UsageError(
+                f"there is no circuit {shown(name)} on {hull}" + (f"; did you mean {meant}?" if meant else "")
+            )
     files = {ONE_LINE: one_line(studies, outcomes, hull), TRUNK: trunk_markdown(studies, hull)}
-    ways = Ways(studies)
+    ways, limits = Ways(studies), drop_limits(outcomes)
     for circuit in known.values():
         if circuits and circuit.id not in circuits:
             continue
@@ -54,7 +56,7 @@ def drawing_files(
             continue
         plots = {
             "coordination": coordination_plot(studies, circuit, way, hull),
-            "voltage": voltage_plot(studies, circuit, way, hull, drop_limits(outcomes, circuit.id)),
+            "voltage": voltage_plot(studies, circuit, way, hull, limits.get(circuit.id)),
         }
         files |= {f"{kind}-{_file_word(circuit.id)}.svg": svg for kind, svg in plots.items() if svg is not None}
     return files

@@ -100,9 +100,9 @@ class Layout:
             self.columns.append(Column())
         column = self.columns[level]
         if node.wires:
-            above, below = wire_words(self._boat, node.wires)
-            width = text_width(above, TOLD) + MARK * len(self._marks_at(node.wires))
-            column.wires = max(column.wires, min(_WIDEST_LABEL, max(width, text_width(below, TOLD)) + 2.5))
+            over, under = (text_width(words, TOLD) for words in wire_words(self._boat, node.wires))
+            over += MARK * len(self._marks_at(node.wires))
+            column.wires = max(column.wires, min(_WIDEST_LABEL, max(over, under) + 2.5))
         if not self._is_leaf(node) and node.kind is not Kind.PANEL:
             width = text_width(node.name, NAME, is_bold=True) + MARK * len(self._marks_at(node.stands_for))
             below = max(text_width(words, TOLD) for words in (node.told, node.note))
@@ -250,5 +250,3 @@ class Layout:
         for found in marks:
             mark(canvas, x, y, found.number, found.outcome.verdict, found.outcome.level)
             x += MARK
-
-

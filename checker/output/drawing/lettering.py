@@ -14,7 +14,7 @@ from checker.reading.words import flat
 FACES = "Arial, Helvetica, Liberation Sans, DejaVu Sans, sans-serif"
 ASCENT, DESCENT = 0.80, 0.24
 """How far letters reach above and below their line, in sizes of the letters."""
-BOLD = 1.1
+BOLD = 1.13
 _WIDE, _WIDEST = 1.05, 12.0
 _LIGATURES = range(0xFDF0, 0xFE00)  # one sign that is drawn as a sentence
 _MOST_MARKS = 2
@@ -22,12 +22,12 @@ _WIDTHS = {
     character: width
     for width, characters in {
         0.30: "Iijl ",
-        0.35: ",./:;\\f|·‘’'",
+        0.35: ",./:;\\f|·\u2018\u2019'",
         0.40: "!()-[]rt²",
         0.45: '"',
         0.50: "*`°",
         0.55: "Jcszç“”",
-        0.60: "?L_aekovxy–äöéèà",
+        0.60: "?L_aekovxy\u2013äöéèà",
         0.65: "$0123456789FTbdghnpqu{}µüßñ",
         0.70: "ABEKPSVXYZÄÉ",
         0.75: "CDHNRUÜ",
@@ -55,6 +55,8 @@ def _character(character: str) -> float:
 
 def legible(text: str) -> str:
     """Return text on one line and with no more marks stacked on a letter than a language does."""
+    if text.isascii() and text.isprintable():
+        return text
     kept: list[str] = []
     marks = 0
     for character in flat(unicodedata.normalize("NFC", text)):

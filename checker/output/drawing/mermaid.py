@@ -9,8 +9,9 @@ from collections.abc import Iterator, Sequence
 
 from checker.boat.hull import Boat
 from checker.network.studies import Studies
+from checker.output.drawing.feed_tree import feed_trees
 from checker.output.drawing.lettering import legible
-from checker.output.drawing.tree import Kind, Node, feed_trees
+from checker.output.drawing.tree import Kind, Node
 
 MOST_EDGES, MOST_CHARACTERS = 400, 40_000
 _LONGEST = 60

@@ -6,23 +6,23 @@ import itertools
 from collections.abc import Sequence
 from dataclasses import dataclass
 
+from checker.boat.parts import Switch
 from checker.finding import Outcome, Verdict
 from checker.network.studies import Studies
 from checker.output.drawing.blocks import (
     GAP,
     WIDE,
     Block,
-    draw_findings,
-    draw_legend,
-    draw_panel,
     findings_block,
     legend_block,
     panel_block,
 )
 from checker.output.drawing.canvas import THIN, Canvas
+from checker.output.drawing.feed_tree import feed_trees
 from checker.output.drawing.layout import NAME, Layout, Spot
-from checker.output.drawing.marks import Mark, by_place, numbered
-from checker.output.drawing.tree import Node, feed_trees, return_tree
+from checker.output.drawing.marks import by_place, numbered
+from checker.output.drawing.return_tree import return_tree
+from checker.output.drawing.tree import Node
 
 SHEETS = ((297.0, 210.0), (420.0, 297.0), (594.0, 420.0), (841.0, 594.0), (1189.0, 841.0))
 """A4 to A0, on their side, mm. Citation: ISO 216."""
@@ -32,8 +32,8 @@ MARGIN = 7.0
 _TITLE, _FOOT = 11.0, 6.0
 _CHANNEL = 2.0
 _CAUTION = (
-    "Drawn from the yard's data; it certifies nothing. Local codes, the licensed edition of a standard and the surveyor "
-    "decide. Disconnect before working; batteries are for qualified people."
+    "Drawn from the yard's data; it certifies nothing. Local codes, the licensed edition of a standard and the "
+    "surveyor decide. Disconnect before working; batteries are for qualified people."
 )
 
 
@@ -67,7 +67,7 @@ def one_line(studies: Studies, outcomes: Sequence[Outcome], hull: str) -> str:
     y = MARGIN + _TITLE
     feed = Layout(studies.boat, feeds, places, MARGIN + 2, y + 5)
     returns = Layout(studies.boat, [back], places, MARGIN + 2, feed.bottom + 11)
-    blocks = [panel_block(spot.node) for spot in feed.panels]
+    blocks = [panel_block(studies.boat, spot.node, places) for spot in feed.panels]
     blocks += [findings_block(marks, left_out, not_assessed), legend_block()]
     sheet = _sheet(max(feed.right, returns.right), returns.bottom, blocks, len(feed.panels))
     canvas = Canvas()
@@ -80,7 +80,7 @@ def one_line(studies: Studies, outcomes: Sequence[Outcome], hull: str) -> str:
     for x, start_y, table_x, end_y in entries.values():
         canvas.line([(x, start_y), (x, end_y), (table_x, end_y)])
     for block, (x, top) in zip(blocks, sheet.corners, strict=True):
-        _draw_block(canvas, studies, block, places, x, top)
+        block.draw(canvas, x, top)
     told = (
         f"Hull {hull}, class {studies.boat.class_name}: {len(feeds)} banks or sources, {len(feed.panels)} panels,",
         f"{len(studies.boat.circuits)} circuits, {len(marks) + left_out} findings.",
@@ -98,25 +98,13 @@ def _frame(canvas: Canvas, sheet: _Sheet, studies: Studies, hull: str) -> None:
     width = sheet.wide - 2 * MARGIN
     canvas.rect(MARGIN, MARGIN, width, sheet.high - 2 * MARGIN)
     canvas.line([(MARGIN, MARGIN + _TITLE), (sheet.wide - MARGIN, MARGIN + _TITLE)], width=THIN)
-    canvas.text(MARGIN + 2, MARGIN + 4.6, f"One-line drawing of {hull}: {boat.class_name}, revision {boat.revision}", 3.4,
-                within=width - 4, is_bold=True)  # fmt: skip
-    words = (
-        f"Drawn in state {state.id}: {state.words}; relays and contactors closed. Lengths are one way. "
-        f"Reference: {boat.reference}."
-    )
+    title = f"One-line drawing of {hull}: {boat.class_name}, revision {boat.revision}"
+    canvas.text(MARGIN + 2, MARGIN + 4.6, title, 3.4, within=width - 4, is_bold=True)
+    relays = [d.id for d in boat.devices.values() if isinstance(d.part, Switch) and not d.part.by_hand]
+    closed = "; relays and contactors closed" if relays else ""
+    words = f"Drawn in state {state.id}: {state.words}{closed}. Lengths are one way. Reference: {boat.reference}."
     canvas.text(MARGIN + 2, MARGIN + 9, words, NAME, within=width - 4)
     canvas.text(MARGIN + 2, sheet.high - MARGIN - 1.6, _CAUTION, NAME, within=width - 4)
-
-
-def _draw_block(
-    canvas: Canvas, studies: Studies, block: Block, places: dict[str, list[Mark]], x: float, y: float
-) -> None:
-    if block.panel is not None:
-        draw_panel(canvas, studies.boat, block.panel, places, x, y)
-    elif block.marks or block.notes or block.high == findings_block((), 0, 0).high:
-        draw_findings(canvas, block, x, y)
-    else:
-        draw_legend(canvas, x, y)
 
 
 def _sheet(trees_right: float, trees_bottom: float, blocks: Sequence[Block], panels: int) -> _Sheet:

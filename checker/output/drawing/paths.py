@@ -53,7 +53,9 @@ class Ways:
         self._outward = shortest_tree(self._feed, tops, weights)
         self._homeward: dict[str, ShortestTree] = {
             bank: shortest_tree(
-                self._back, [p for p in sorted(self._bank_of) if self._bank_of[p] == bank and usual.is_return(p)], weights
+                self._back,
+                [p for p in sorted(self._bank_of) if self._bank_of[p] == bank and usual.is_return(p)],
+                weights,
             )
             for bank in sorted(set(self._bank_of.values()))
         }
@@ -67,7 +69,9 @@ class Ways:
     def way(self, circuit: Circuit) -> Way | None:
         """Return the way of a circuit, or None where no bank reaches it in the first normal state."""
         own = self._own_posts(circuit)
-        tie = next((tie for tie in _ties(self._studies.network) if tie[0] in own and tie[0] in self._outward.cost), None)
+        tie = next(
+            (tie for tie in _ties(self._studies.network) if tie[0] in own and tie[0] in self._outward.cost), None
+        )
         far = tie[0] if tie is not None else _farthest(self._outward, own)
         if far is None:
             return None
@@ -125,5 +129,3 @@ def _walked(start: int, path: list[Edge]) -> tuple[tuple[Edge, int], ...]:
         start = edge.other(start)
         found.append((edge, start))
     return tuple(found)
-
-

@@ -7,6 +7,7 @@ passes through another label.
 
 from __future__ import annotations
 
+import itertools
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
@@ -80,7 +81,7 @@ class Frame:
         """Draw a line through values, cut at the frame."""
         places = [self.at(*point) for point in points]
         run: list[Point] = []
-        for start, end in zip(places, places[1:], strict=False):
+        for start, end in itertools.pairwise(places):
             piece = _cut(start, end, (self.x, self.y, self.right, self.bottom))
             if piece is None:
                 continue

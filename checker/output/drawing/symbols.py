@@ -77,7 +77,8 @@ def _shunt(canvas: Canvas, x: float, y: float) -> None:
 
 
 def _diode(canvas: Canvas, x: float, y: float) -> None:
-    canvas.line([(x - HALF, y), (x + HALF, y)])
+    canvas.line([(x - HALF, y), (x + 1.4, y)])
+    canvas.line([(x + 1.4, y), (x + HALF, y)])
     canvas.polygon([(x - 1.4, y - 1.6), (x - 1.4, y + 1.6), (x + 1.4, y)])
     canvas.line([(x + 1.4, y - 1.6), (x + 1.4, y + 1.6)])
 
@@ -126,14 +127,16 @@ def bar(canvas: Canvas, x: float, top: float, bottom: float, *, is_bus: bool) ->
 
 
 def mark(canvas: Canvas, x: float, y: float, number: int, verdict: Verdict, level: Level) -> None:
-    """Draw the numbered mark of a finding, its centre at x and y: black disc, triangle, circle, or square if accepted."""
+    """Draw the numbered mark of a finding, its centre at x and y: disc, hexagon, circle, or square if accepted."""
     is_error = level is Level.ERROR and verdict is Verdict.FINDING
     if verdict is Verdict.ACCEPTED:
         canvas.rect(x - 1.6, y - 1.45, 3.2, 2.9, fill="white")
     elif is_error:
         canvas.circle(x, y, 1.6, fill="black")
     elif level is Level.WARNING:
-        canvas.polygon([(x - 1.9, y), (x - 0.9, y - 1.6), (x + 0.9, y - 1.6), (x + 1.9, y), (x + 0.9, y + 1.6), (x - 0.9, y + 1.6)])
+        canvas.polygon(
+            [(x - 1.9, y), (x - 0.9, y - 1.6), (x + 0.9, y - 1.6), (x + 1.9, y), (x + 0.9, y + 1.6), (x - 0.9, y + 1.6)]
+        )
     else:
         canvas.circle(x, y, 1.6)
     colour = "white" if is_error else "black"

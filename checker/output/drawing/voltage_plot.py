@@ -12,7 +12,17 @@ from checker.network.graph import EdgeKind
 from checker.network.studies import Studies
 from checker.output.drawing.canvas import LINE, THICK, Canvas
 from checker.output.drawing.paths import Way
-from checker.output.drawing.plot import DASHES, LANE, LETTERS, TICKS, Axis, Frame, labels_above, labels_below, round_step
+from checker.output.drawing.plot import (
+    DASHES,
+    LANE,
+    LETTERS,
+    TICKS,
+    Axis,
+    Frame,
+    labels_above,
+    labels_below,
+    round_step,
+)
 
 WIDE = 190.0
 _LEFT, _FRAME_WIDE = 56.0, 82.0
@@ -45,11 +55,14 @@ def voltage_plot(
         hull: The hull's id.
         limits: The share of the nominal voltage that may be lost from the bank, by what asks for it.
     """
+    if studies.conditions.missing:
+        return None  # without a battery's figures nothing here would be true
     profiles = [
         _profile(solved.full, solved.operation.condition.id, way)
         for solved in studies.conditions.solved
         if isinstance(solved.full, Flow) and _carries(solved.full, way)
     ]
+    profiles = [profile for profile in profiles if max(map(abs, profile.lost_v)) >= _SAME_V]
     if not profiles:
         return None
     rows = list(_rows(studies, way))
@@ -89,12 +102,12 @@ def _title(canvas: Canvas, studies: Studies, circuit: Circuit, way: Way, hull: s
     words = f"from {studies.network.posts[way.bank_post]} of bank {way.bank} to {studies.network.posts[way.far_post]}"
     back = " and back" if way.back else "; its way back is not known"
     canvas.text(3, 9.5, f"{words}{back}; batteries full", LETTERS, within=WIDE - 6)
-    canvas.text(3, 13.2, "each row is a post, with the part that leads to it; conditions are named at the foot", LETTERS,
-                within=WIDE - 6)  # fmt: skip
+    note = "each row is a post, with the part that leads to it; conditions are named at the foot"
+    canvas.text(3, 13.2, note, LETTERS, within=WIDE - 6)
 
 
 def _steps(way: Way) -> Iterator[tuple[str, int, bool]]:
-    """Yield each part on the way that is drawn, the post that it leads to, and whether the current is on its way back."""
+    """Yield each part on the way that is drawn, the post that it leads to, and whether that is on the way back."""
     for steps, is_back in ((way.out, False), (way.back, True)):
         for edge, post in steps:
             if edge.kind in _DRAWN:
@@ -155,7 +168,9 @@ def _allowed_v(
     found: dict[float, list[str]] = {}
     for name, fraction in sorted(limits.items()):
         found.setdefault(round(sign * fraction * nominal_v, 4), []).append(f"{name}, {fraction * 100:g} %")
-    return {volts: f"limit {abs(volts):.3f} V of {nominal_v:g} V ({'; '.join(names)})" for volts, names in found.items()}
+    return {
+        volts: f"limit {abs(volts):.3f} V of {nominal_v:g} V ({'; '.join(names)})" for volts, names in found.items()
+    }
 
 
 def _draw_limit(canvas: Canvas, frame: Frame, volts: float, words: str) -> tuple[float, str]:
