@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Collection, Sequence
 from pathlib import Path
 
@@ -58,13 +57,8 @@ def drawing_files(
             "coordination": coordination_plot(studies, circuit, way, hull),
             "voltage": voltage_plot(studies, circuit, way, hull, limits.get(circuit.id)),
         }
-        files |= {f"{kind}-{_file_word(circuit.id)}.svg": svg for kind, svg in plots.items() if svg is not None}
+        files |= {f"{kind}-{circuit.id}.svg": svg for kind, svg in plots.items() if svg is not None}
     return files
-
-
-def _file_word(name: str) -> str:
-    """Return an id as part of a file name: what a file system may take for a path or a device is spelled."""
-    return re.sub(r"[^A-Za-z0-9._-]", lambda found: f"={ord(found.group()):x}=", name)
 
 
 def write_drawings(files: dict[str, str], folder: Path) -> None:
