@@ -136,6 +136,62 @@ def test_an_open_switch_is_told_as_open() -> None:
     assert (nodes["SW-P"].told, nodes["SW-H"].told) == ("open", "closed")
 
 
+RING = """
+devices:
+  FA: {part: bolt-fuse, zone: CABIN, rating: 60 A}
+  FB: {part: bolt-fuse, zone: CABIN, rating: 60 A}
+  ISL: {part: isolator, zone: CABIN}
+  X: {part: bus-100, zone: CABIN}
+  CHO: {part: change-over, zone: CABIN}
+  LONE: {part: plotter, zone: CABIN}
+circuits:
+  RING:
+    name: two fuses side by side, an isolator, a change-over switch
+    service: general
+    current: 1 A
+    conductors:
+      Z0: {from: BUS-P, to: FA.line, size: 10 AWG, length: 0.1 m}
+      Z1: {from: BUS-P, to: FB.line, size: 10 AWG, length: 0.1 m}
+      Z2: {from: FA.load, to: X, size: 10 AWG, length: 0.1 m}
+      Z3: {from: FB.load, to: X, size: 10 AWG, length: 0.1 m}
+      Z6: {from: X, to: ISL.in, size: 10 AWG, length: 0.1 m}
+      Z7: {from: ISL.o1, to: BAT-S.pos, size: 10 AWG, length: 0.1 m}
+      Z8: {from: X, to: CHO.a, size: 10 AWG, length: 0.1 m}
+      Z9: {from: CHO.out, to: ISL.o2, size: 10 AWG, length: 0.1 m}
+      ZA: {from: X, to: CHO.b, size: 10 AWG, length: 0.1 m}
+"""
+RING_PARTS = """
+isolator: {kind: diode, posts: [in, o1, o2], passes: [[in, o1], [in, o2]], drop: 0.4 V, resistance: 1 mohm}
+change-over: {kind: switch, posts: [a, b, out], states: {one: [[a, out]], two: [[b, out]]}}
+"""
+
+
+def test_rings_diodes_and_change_overs_are_drawn_once_and_named_at_both_ends(tmp_path: Path) -> None:
+    hull = opened(SOUND.also(RING).also_parts(RING_PARTS), tmp_path)
+    svg = one_line(hull.studies, hull.result.outcomes, HULL)
+    assert faults(svg) == []
+    assert crossings(svg) == []
+    house, start, alone = feed_trees(hull.studies)
+    assert (house.name, start.name, alone.name, alone.note) == ("HOUSE", "START", "LONE.pos", "no bank")
+    kinds = [
+        (node.name, node.kind) for tree in (house, start) for node in tree.walk() if node.name in ("FA", "FB", "ISL")
+    ]
+    assert kinds == [("FA", Kind.FUSE), ("ISL", Kind.DIODE), ("FB", Kind.FUSE), ("ISL", Kind.DIODE_BACK)]
+    states = {n.name: n.told for n in house.walk() if n.name.startswith("CHO ")}
+    assert states == {"CHO a-out": "closed", "CHO b-out": "open"}
+
+
+def test_a_chain_of_hundreds_of_splices_ends_with_a_word(tmp_path: Path) -> None:
+    count = 300
+    splices = "".join(f"  SP{i}: {{part: bus-100, zone: CABIN}}\n" for i in range(count))
+    links = "".join(f"  Y{i}: {{from: SP{i}, to: SP{i + 1}, size: 10 AWG, length: 0.1 m}}\n" for i in range(count - 1))
+    first = "  Y-FIRST: {from: BUS-P, to: SP0, size: 10 AWG, length: 0.1 m}\n"
+    hull = opened(SOUND.also(f"devices:\n{splices}conductors:\n{first}{links}"), tmp_path)
+    svg = one_line(hull.studies, hull.result.outcomes, HULL)
+    assert faults(svg) == []
+    assert any(text.startswith("more than 40 parts") for text in texts(svg))
+
+
 HOSTILE = [
     "<script>alert(1)</script>", "x" * 400, "W" * 200, "]]> & \\\" ' --> ${x}", "\u202egnp.exe", "e" + "\u0301" * 60,
     "漢字" * 80, "::error::x", "| `a` @b #c ; end", "\u200f\u05d0\u05d1\u05d2", "\ufdfd" * 9,

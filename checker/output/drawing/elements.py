@@ -27,8 +27,8 @@ def bus_node(side: Side, buses: list[str], children: list[Node]) -> Node:
     return node
 
 
-def element_node(side: Side, edge: Edge) -> Node:
-    """Return the node of a device, shunt, diode or contact."""
+def element_node(side: Side, edge: Edge, place: int) -> Node:
+    """Return the node of a device, shunt, diode or contact that is drawn from a place on."""
     device = side.boat.devices[edge.part]
     part = device.part
     if isinstance(part, Overcurrent):
@@ -37,7 +37,8 @@ def element_node(side: Side, edge: Edge) -> Node:
     if isinstance(part, Shunt):
         return Node(Kind.SHUNT, device.id, told=f"{part.rating_a:g} A shunt", stands_for=(device.id,))
     if edge.kind is EdgeKind.DIODE:
-        return Node(Kind.DIODE, device.id, told="one way", stands_for=(device.id,))
+        kind = Kind.DIODE if side.place[edge.a] == place else Kind.DIODE_BACK
+        return Node(kind, device.id, told="one way", stands_for=(device.id,))
     is_closed = edge.index in side.closed
     posts = getattr(part, "posts", ())
     ends = "" if len(posts) < 3 else " " + "-".join(side.network.posts[p].rpartition(".")[2] for p in (edge.a, edge.b))
@@ -60,7 +61,7 @@ def tie_nodes(side: Side, place: int) -> list[Node]:
         elif edge.kind in CONDUCTING:
             tie.wires = (edge.part,)
         else:
-            element = element_node(side, edge)
+            element = element_node(side, edge, place)
             element.children = [tie]
             tie = element
         found.append(tie)

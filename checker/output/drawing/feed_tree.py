@@ -91,7 +91,7 @@ class _Feed:
             return [too_deep(edge.part)]
         if edge.kind in CONDUCTING:
             return [self._arrive(far, tuple(e.part for e in self._side.beside(edge)))]
-        node = element_node(self._side, edge)
+        node = element_node(self._side, edge, place)
         node.children = self._onward(far)
         return [node]
 

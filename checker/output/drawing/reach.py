@@ -62,14 +62,17 @@ class Side:
         self.came_through: dict[int, str] = {}
 
     def reach(self, starts: Sequence[tuple[int, str]], level: int = 0) -> None:
-        """Reach what can be reached from some places, over closed contacts first, then over open ones."""
+        """Reach what can be reached from some places, as current flows, then over open contacts and against diodes."""
         waiting: deque[int] = deque()
         for place, owner in starts:
             self._enter(place, owner, level)
             waiting.append(place)
         self._spread(waiting)
         while True:
-            opened = [e for e in self.edges if e.index not in self.closed and self._is_frontier(e)]
+            opened = [
+                e for e in self.edges
+                if (e.index not in self.closed or e.kind is EdgeKind.DIODE) and self._is_frontier(e)
+            ]  # fmt: skip
             if not opened:
                 return
             self._spread(deque(self._cross(opened[0])))
@@ -114,7 +117,8 @@ class Side:
             near = waiting.popleft()
             for edge in self.at.get(near, ()):
                 far = self.beyond(near, edge)
-                if edge.index in self.closed and far not in self.owner:
+                is_against = edge.kind is EdgeKind.DIODE and self.place[edge.a] != near
+                if edge.index in self.closed and far not in self.owner and not is_against:
                     self._enter(far, self.owner[near], self.level[near] + 1)
                     self._take(near, far, edge)
                     waiting.append(far)

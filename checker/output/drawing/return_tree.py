@@ -44,7 +44,7 @@ class _Return:
             elif edge.kind in CONDUCTING:
                 node = self._return(far, tuple(e.part for e in self._side.beside(edge)), is_measured=is_measured)
             else:
-                node = element_node(self._side, edge)
+                node = element_node(self._side, edge, place)
                 beyond = self._return(far, (), is_measured=is_measured or edge.kind is EdgeKind.SHUNT)
                 alone = beyond.kind is Kind.JUNCTION and not beyond.wires
                 node.children = beyond.children if alone else [beyond]

@@ -79,8 +79,15 @@ def _shunt(canvas: Canvas, x: float, y: float) -> None:
 def _diode(canvas: Canvas, x: float, y: float) -> None:
     canvas.line([(x - HALF, y), (x + 1.4, y)])
     canvas.line([(x + 1.4, y), (x + HALF, y)])
-    canvas.polygon([(x - 1.4, y - 1.6), (x - 1.4, y + 1.6), (x + 1.4, y)])
-    canvas.line([(x + 1.4, y - 1.6), (x + 1.4, y + 1.6)])
+    canvas.polygon([(x - 1.4, y - 1.3), (x - 1.4, y + 1.3), (x + 1.4, y)])
+    canvas.line([(x + 1.4, y - 1.3), (x + 1.4, y + 1.3)])
+
+
+def _diode_back(canvas: Canvas, x: float, y: float) -> None:
+    canvas.line([(x - HALF, y), (x - 1.4, y)])
+    canvas.line([(x - 1.4, y), (x + HALF, y)])
+    canvas.polygon([(x + 1.4, y - 1.3), (x + 1.4, y + 1.3), (x - 1.4, y)])
+    canvas.line([(x - 1.4, y - 1.3), (x - 1.4, y + 1.3)])
 
 
 def _load(canvas: Canvas, x: float, y: float) -> None:
@@ -112,7 +119,8 @@ def _end(canvas: Canvas, x: float, y: float) -> None:
 
 _SYMBOLS = {
     Kind.BANK: _bank, Kind.FUSE: _fuse, Kind.BREAKER: _breaker, Kind.CLOSED: _closed, Kind.OPEN: _open,
-    Kind.SHUNT: _shunt, Kind.DIODE: _diode, Kind.LOAD: _load, Kind.SOURCE: _source, Kind.CONVERTER: _converter,
+    Kind.SHUNT: _shunt, Kind.DIODE: _diode, Kind.DIODE_BACK: _diode_back,
+    Kind.LOAD: _load, Kind.SOURCE: _source, Kind.CONVERTER: _converter,
     Kind.TIE: _tie, Kind.END: _end,
 }  # fmt: skip
 

@@ -11,7 +11,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass, field
 from enum import Enum
 
-MOST_LEVELS = 60
+MOST_LEVELS = 40
 """Parts in series beyond this many are told, not drawn."""
 
 
@@ -27,6 +27,7 @@ class Kind(Enum):
     OPEN = "open switch"
     SHUNT = "shunt"
     DIODE = "diode"
+    DIODE_BACK = "diode towards the left"
     LOAD = "load"
     SOURCE = "source"
     CONVERTER = "converter"
