@@ -20,6 +20,7 @@ from checker.boat.parts import Load, Overcurrent
 from checker.cli import main
 from checker.errors import UsageError
 from checker.finding import Outcome
+from checker.network.flow import Flow
 from checker.network.studies import Studies
 from checker.output.drawing import mermaid
 from checker.output.drawing.feed_tree import feed_trees
@@ -293,6 +294,28 @@ def test_the_band_of_a_device_stands_at_its_rating(tmp_path: Path) -> None:
     decade_a, next_a = ((place[words][0] + place[words][2]) / 2 for words in ("10", "100"))
     (label,) = [box for text, box in picture.texts if text.startswith("P2 10 A")]
     assert label[0] - 1 == pytest.approx(decade_a + math.log10(1.2) * (next_a - decade_a), abs=0.02)
+
+
+def test_the_plots_tell_what_the_ladder_and_the_solved_network_tell() -> None:
+    name, studies, outcomes = next(row for row in example() if row[0] == "TND-038")
+    files = drawing_files(studies, outcomes, name, ["P14"])
+    rungs = {rung.device: rung for rung in studies.ladder}
+    told = texts(files["coordination-P14.svg"])
+    for device in ("F-H", "F-PNL", "CB-PM", "PNL-13"):
+        assert f"{rungs[device].prospective_a:.0f} A, the largest at {device}" in told
+    assert f"{rungs['PNL-13'].far_a:.0f} A, the smallest at the far end, P14.load.pos" in told
+    index = studies.network.index
+    (hotel,) = [solved.full for solved in studies.conditions.solved if solved.operation.condition.id == "hotel"]
+    assert isinstance(hotel, Flow)
+    bank_v = hotel.across(index["BAT-H1A.pos"], index["BAT-H1B.neg"])
+    lost_v = bank_v - hotel.across(index["P14.load.pos"], index["P14.load.neg"])
+    assert f"{lost_v:.3f} V lost: hotel" in texts(files["voltage-P14.svg"])
+
+
+def test_a_limit_stands_in_the_plot_at_its_share_of_the_nominal_voltage(tmp_path: Path) -> None:
+    told = texts(drawn(SOUND, tmp_path)["voltage-LIGHTS.svg"])
+    assert "limit 1.200 V" in told
+    assert any(text.endswith("limit: 10 % of 12 V by voluntary-dc") for text in told)
 
 
 def test_a_diagram_too_large_for_a_forge_is_split() -> None:

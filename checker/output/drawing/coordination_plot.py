@@ -131,7 +131,7 @@ def _edge(points: Sequence[tuple[float, float]], rating_a: float, highest_a: flo
 def _shortest(curves: Sequence[Curve], highest_a: float) -> float:
     """Return the decade under the shortest time that is shown."""
     times = [seconds for curve in curves if 0 < (seconds := curve.earliest_s(highest_a)) < math.inf]
-    return min(0.1, max(_SHORTEST_S, 10.0 ** math.floor(math.log10(min(times, default=0.01)))))
+    return min(0.1, max(_SHORTEST_S, 10.0 ** math.floor(math.log10(min(times, default=0.01)) + 1e-9)))
 
 
 def _fill(canvas: Canvas, frame: Frame, bands: Sequence[_Band]) -> None:

@@ -56,7 +56,8 @@ def tie_nodes(side: Side, place: int) -> list[Node]:
         tie = Node(Kind.TIE, f"to {side.place_name(far)}", f"drawn at {side.owner[far]}")
         is_drawn_here = side.order[place] < side.order[far]
         if not is_drawn_here:
-            tie.name = f"{edge.part}, drawn at {side.owner[far]}"
+            name = edge.part if edge.kind in CONDUCTING else element_node(side, edge, place).name
+            tie.name = f"{name}, drawn at {side.owner[far]}"
             tie.note = f"it leads to {side.place_name(far)}"
         elif edge.kind in CONDUCTING:
             tie.wires = (edge.part,)

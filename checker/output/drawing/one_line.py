@@ -98,7 +98,7 @@ def _frame(canvas: Canvas, sheet: _Sheet, studies: Studies, hull: str) -> None:
     width = sheet.wide - 2 * MARGIN
     canvas.rect(MARGIN, MARGIN, width, sheet.high - 2 * MARGIN)
     canvas.line([(MARGIN, MARGIN + _TITLE), (sheet.wide - MARGIN, MARGIN + _TITLE)], width=THIN)
-    title = f"One-line drawing of {hull}: {boat.class_name}, revision {boat.revision}"
+    title = f"One-line drawing of {hull}: {boat.class_name}, class revision {boat.revision}"
     canvas.text(MARGIN + 2, MARGIN + 4.6, title, 3.4, within=width - 4, is_bold=True)
     relays = [d.id for d in boat.devices.values() if isinstance(d.part, Switch) and not d.part.by_hand]
     closed = "; relays and contactors closed" if relays else ""

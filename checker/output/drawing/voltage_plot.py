@@ -66,13 +66,17 @@ def voltage_plot(
     if not profiles:
         return None
     rows = list(_rows(studies, way))
-    allowed = _allowed_v(studies, circuit, way, profiles, limits or {})
+    limits, nominal_v = limits or {}, _nominal_v(studies, circuit, way)
+    allowed = _allowed_v(profiles, limits, nominal_v)
     curves = _alike(profiles)
     top = _TITLE + LANE * len(allowed) + 3
     axis = _axis([v for profile in profiles for v in profile.lost_v] + list(allowed))
     frame = Frame(_LEFT, top, _FRAME_WIDE, _ROW * (len(rows) - 1), axis, Axis(0, len(rows) - 1, False))
     canvas = Canvas()
     _title(canvas, studies, circuit, way, hull)
+    asked = [f"{fraction * 100:g} % of {nominal_v:g} V by {name}" for name, fraction in sorted(limits.items())]
+    note = "each row is a post, with the part that leads to it" + "".join(f"; limit: {words}" for words in asked)
+    canvas.text(3, 13.2, note, LETTERS, within=WIDE - 6)
     frame.draw_across(canvas, "V lost")
     for number, words in enumerate(rows):
         canvas.text(_LEFT - 2, frame.y + number * _ROW + 0.8, words, LETTERS, within=_LEFT - 5, anchor="end")
@@ -85,7 +89,7 @@ def voltage_plot(
     labels_below(canvas, [_label(frame, curve, len(rows)) for curve in curves], frame.bottom + TICKS, WIDE - 3)
     told = [f"Voltage lost from bank {way.bank} along {circuit.name} and back."]
     told += [f"{words}." for _, words in (_label(frame, curve, len(rows)) for curve in curves)]
-    told += [f"{words}." for words in allowed.values()]
+    told += [f"Limit: {words}." for words in asked]
     high = frame.bottom + TICKS + LANE * (len(curves) + 1)
     return canvas.svg(WIDE, high, f"Voltage along {circuit.id} on {hull}", told)
 
@@ -102,8 +106,6 @@ def _title(canvas: Canvas, studies: Studies, circuit: Circuit, way: Way, hull: s
     words = f"from {studies.network.posts[way.bank_post]} of bank {way.bank} to {studies.network.posts[way.far_post]}"
     back = " and back" if way.back else "; its way back is not known"
     canvas.text(3, 9.5, f"{words}{back}; batteries full", LETTERS, within=WIDE - 6)
-    note = "each row is a post, with the part that leads to it; conditions are named at the foot"
-    canvas.text(3, 13.2, note, LETTERS, within=WIDE - 6)
 
 
 def _steps(way: Way) -> Iterator[tuple[str, int, bool]]:
@@ -156,21 +158,20 @@ def _axis(volts: Sequence[float]) -> Axis:
     return Axis(step * min(first, 0), step * max(last, 1), False)
 
 
-def _allowed_v(
-    studies: Studies, circuit: Circuit, way: Way, profiles: Sequence[_Profile], limits: Mapping[str, float]
-) -> dict[float, str]:
+def _nominal_v(studies: Studies, circuit: Circuit, way: Way) -> float:
+    """Return a circuit's nominal voltage: as written, else its load's, else the boat's."""
+    if circuit.voltage_v is not None:
+        return circuit.voltage_v
+    loads = studies.network.loads
+    return next((tie.voltage_v for tie in loads if tie.feed == way.far_post), studies.boat.system_voltage_v)
+
+
+def _allowed_v(profiles: Sequence[_Profile], limits: Mapping[str, float], nominal_v: float) -> dict[float, str]:
     """Return the limits in volts with their words; on the side of zero on which the circuit's lines are."""
-    nominal_v = circuit.voltage_v or next(
-        (tie.voltage_v for tie in studies.network.loads if tie.feed == way.far_post), studies.boat.system_voltage_v
-    )
     most = max((profile.lost_v[-1] for profile in profiles), key=abs)
     sign = -1.0 if most < 0 else 1.0
-    found: dict[float, list[str]] = {}
-    for name, fraction in sorted(limits.items()):
-        found.setdefault(round(sign * fraction * nominal_v, 4), []).append(f"{name}, {fraction * 100:g} %")
-    return {
-        volts: f"limit {abs(volts):.3f} V of {nominal_v:g} V ({'; '.join(names)})" for volts, names in found.items()
-    }
+    allowed = dict.fromkeys(round(sign * fraction * nominal_v, 4) for fraction in limits.values())
+    return {volts: f"limit {abs(volts):.3f} V" for volts in allowed}
 
 
 def _draw_limit(canvas: Canvas, frame: Frame, volts: float, words: str) -> tuple[float, str]:
