@@ -2,15 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable
 from pathlib import Path
-from typing import Any
 
 from checker.boat.assemble import Assembly, assemble
 from checker.boat.build import build_boat
 from checker.boat.catalogue import read_catalogue
 from checker.errors import UsageError
-from checker.output.aboard import Aboard
+from checker.output.aboard import Aboard, named_aboard
 from checker.reading.document import Fault
 from checker.reading.words import flat, nearest
 from checker.reading.yard_files import YardFiles, read_yard
@@ -36,10 +35,7 @@ def hull_aboard(folder: Path, hull: str) -> Aboard:
     boat, boat_faults = build_boat(source, subject.class_id, catalogue)
     if boat is None or part_faults:
         raise _faulty(hull, [*faults, *part_faults, *boat_faults])
-    parts = {name: row for document in files.parts for name, row in _rows(document.data, "parts").items()}
-    return Aboard(
-        hull=hull, boat=boat, device_names=_names(_rows(source.data, "devices")), part_names=_names(parts)
-    )  # fmt: skip
+    return named_aboard(hull, boat, source.data, (document.data for document in files.parts))
 
 
 def _not_there(hull: str, files: YardFiles, assembly: Assembly, faults: Iterable[Fault]) -> UsageError:
@@ -56,12 +52,3 @@ def _faulty(hull: str, faults: Iterable[Fault]) -> UsageError:
     if len(told) > MOST_FAULTS:
         lines.append(f"  - and {len(told) - MOST_FAULTS} more: see `fairloom check`")
     return UsageError("\n".join([f"hull {flat(hull)} cannot be assembled; mend first:", *lines]))
-
-
-def _rows(data: Any, section: str) -> Mapping[str, Any]:
-    rows = data.get(section) if isinstance(data, dict) else None
-    return rows if isinstance(rows, dict) else {}
-
-
-def _names(rows: Mapping[str, Any]) -> dict[str, str]:
-    return {name: str(row["name"]) for name, row in rows.items() if isinstance(row, dict) and "name" in row}

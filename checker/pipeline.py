@@ -8,6 +8,7 @@ import gc
 from collections.abc import Callable, Collection, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from pathlib import Path
+from typing import Any
 
 from checker.boat.aboard import Aboard, aboard_of
 from checker.boat.assemble import Assembly, Subject, assemble
@@ -34,6 +35,8 @@ from checker.limits.limit_set import (
 from checker.limits.marks import Marks, table_marks
 from checker.network.flow import Copper
 from checker.network.studies import Coppers, Studies
+from checker.output.aboard import Aboard as NamedAboard
+from checker.output.aboard import named_aboard
 from checker.reading.cards import FILE_CARDS
 from checker.reading.document import Fault
 from checker.reading.words import nearest
@@ -42,7 +45,7 @@ from checker.result.cards import RESULT_CARDS
 from checker.result.fleet import Gatherer
 from checker.result.gather import news_order, pass_order, tightest
 from checker.result.measured import MEASURED_CARDS
-from checker.result.model import EnteredTable, FleetResult, SetUse
+from checker.result.model import EnteredTable, FleetResult, SetUse, SubjectResult
 from checker.result.sheet import plan
 from checker.result.sheet_file import Sheet, read_sheets
 from checker.result.signing import content_mark, tables_mark
@@ -117,14 +120,7 @@ def check_files(
         studied = dict(zip(keys, _study_all(fleet, keys, workers, progress, store, lists_passes), strict=True))
         if store is not None and not only:
             store.tidy()
-        tables = {
-            key: tables_mark(fleet.marks, study.sets, fleet.rules.house.changes) for key, study in studied.items()
-        }
-        result = Gatherer(
-            files, fleet.assembly, subjects, studied, fleet.faults, today, only, fleet.rules.house,
-            fleet.sheets, tables, all_cards(), fleet.bench.as_fitted,
-        ).result()  # fmt: skip
-        return replace(result, marks=fleet.marks, sizes=_sizes(files))
+        return _gathered(fleet, subjects, studied, today, only)
 
 
 def study_part(
@@ -142,6 +138,65 @@ def study_part(
         keys = fleet.keys(fleet.assembly.subjects)[part - 1 :: of]
         _study_all(fleet, keys, workers, progress, store, lists_passes=False)
         return len(keys)
+
+
+@dataclass(frozen=True, slots=True)
+class OpenHull:
+    """Hold one hull with its studies, for what shows more than a result holds; passes are in `result`.
+
+    `limits` are the sets that it is judged by, `written` is the data of its own file.
+    """
+
+    studies: Studies
+    result: SubjectResult
+    fleet: FleetResult
+    limits: tuple[LimitSet, ...]
+    aboard: NamedAboard
+    written: Mapping[str, Any]
+
+
+def open_hull(folder: Path, hull: str, *, today: datetime.date, plans_tests: bool = False) -> OpenHull:
+    """Check one hull, and return its boat and studies beside what was found.
+
+    Args:
+        folder: The yard's repository.
+        hull: The hull's id.
+        today: The day on which waivers are judged.
+        plans_tests: Whether its test is planned even if it has no sheet and no signature.
+
+    Raises:
+        FleetNotFoundError: If the folder holds no yard.
+        UsageError: If there is no such hull, or it cannot be studied.
+    """
+    with _collector_off():
+        files = read_yard(folder)
+        fleet = _assembled(files, lists_passes=True, plans_tests=plans_tests)
+        subjects = _chosen(fleet.assembly, files, [hull])
+        keys = fleet.keys(subjects)
+        studies, studied = fleet.bench.open(keys[0]) if keys else (None, Studied())
+        found = _gathered(fleet, subjects, dict.fromkeys(keys, studied), today, [hull])
+        if studies is None:
+            first = next(iter(found.file_outcomes), None)
+            told = f" ({first.at}: {first.fault})" if first is not None else ""
+            raise UsageError(f"{hull} cannot be studied: mend the faults of its files first{told}")
+        source = fleet.assembly.content[keys[0]].data
+        aboard = named_aboard(hull, studies.boat, source, [document.data for document in files.parts])
+        written = next(d.data for d in files.hulls if isinstance(d.data, dict) and d.data.get("hull") == hull)
+        limits = tuple(fleet.bench.limit_set(use.id) for use in studied.sets)
+        return OpenHull(studies, found.subjects[0], found, limits, aboard, written)
+
+
+def _gathered(
+    fleet: _Fleet, subjects: list[Subject], studied: dict[StudyKey, Studied], today: datetime.date,
+    only: Collection[str],
+) -> FleetResult:  # fmt: skip
+    """Bring the studies of some subjects together with waivers, sheets and the faults of files."""
+    tables = {key: tables_mark(fleet.marks, study.sets, fleet.rules.house.changes) for key, study in studied.items()}
+    result = Gatherer(
+        fleet.files, fleet.assembly, subjects, studied, fleet.faults, today, only, fleet.rules.house,
+        fleet.sheets, tables, all_cards(), fleet.bench.as_fitted,
+    ).result()  # fmt: skip
+    return replace(result, marks=fleet.marks, sizes=_sizes(fleet.files))
 
 
 @dataclass(frozen=True, slots=True)
@@ -283,11 +338,19 @@ class _Bench:
         """Tell whether the test of a boat is planned with its study."""
         return key in self._planned
 
+    def limit_set(self, name: str) -> LimitSet:
+        """Return a limit set, with the tables that the yard enters and under the yard's own rules."""
+        return self._sets[name]
+
     def study(self, key: StudyKey) -> Studied:
         """Build one boat, study it, and hold it against every limit set that it is judged by."""
+        return self.open(key)[1]
+
+    def open(self, key: StudyKey) -> tuple[Studies | None, Studied]:
+        """Study one boat, and return its studies too; None where it could not be built."""
         boat, faults = build_boat(self._content[key], self._class_of[key], self._catalogue)
         if boat is None:
-            return Studied(faults=tuple(faults))
+            return None, Studied(faults=tuple(faults))
         sets = _judged_by(boat, self._adopted, self._sets)
         limits = tuple(self._sets[use.id] for use in sets)
         studies = study_boat(boat)
@@ -296,7 +359,7 @@ class _Bench:
         ladder = studies.ladder
         is_planned = self.is_planned(key)
         aboard = aboard_of(boat) if self._lists_passes or is_planned else Aboard()
-        return Studied(
+        return studies, Studied(
             news=news_order(outcomes),
             passes=pass_order(passed) if self._lists_passes else (),
             passed=len(passed),

@@ -28,6 +28,12 @@ def all_off_state(boat: Boat) -> SwitchState:
 
 def live_loads(network: Network, potentials: Potentials) -> frozenset[str]:
     """Return the loads and converter inputs that a battery feeds in a state, over live converters too."""
+    reached = live_nets(network, potentials)
+    return frozenset(load.device for load in network.loads if potentials.net[load.feed] in reached)
+
+
+def live_nets(network: Network, potentials: Potentials) -> frozenset[int]:
+    """Return the nets that a battery holds at a voltage in a state, over live converters too."""
     net = potentials.net
     reached = {net[b.pos] for b in network.batteries if not potentials.is_return(b.pos)}
     while True:
@@ -35,7 +41,7 @@ def live_loads(network: Network, potentials: Potentials) -> frozenset[str]:
         running = {tie.device for tie in network.loads if tie.is_input and net[tie.feed] in reached}
         fed = {net[source.out] for source in network.sources if source.device in running} - reached
         if not fed:
-            return frozenset(load.device for load in network.loads if net[load.feed] in reached)
+            return frozenset(reached)
         reached |= fed
 
 

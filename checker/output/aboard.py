@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections import Counter
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
+from typing import Any
 
 from checker.boat.hull import Boat, Conductor
 from checker.units import foot_from_metre
@@ -38,3 +39,18 @@ class Aboard:
         """Return the name of the circuit that a conductor belongs to."""
         circuit = self.boat.circuits.get(conductor.circuit)
         return circuit.name if circuit else ""
+
+
+def named_aboard(hull: str, boat: Boat, data: Any, parts: Iterable[Any]) -> Aboard:
+    """Return a hull's boat with the names that its assembled data and the data of the files of parts give."""
+    rows = {name: row for document in parts for name, row in _rows(document, "parts").items()}
+    return Aboard(hull=hull, boat=boat, device_names=_names(_rows(data, "devices")), part_names=_names(rows))
+
+
+def _rows(data: Any, section: str) -> Mapping[str, Any]:
+    rows = data.get(section) if isinstance(data, dict) else None
+    return rows if isinstance(rows, dict) else {}
+
+
+def _names(rows: Mapping[str, Any]) -> dict[str, str]:
+    return {name: str(row["name"]) for name, row in rows.items() if isinstance(row, dict) and "name" in row}

@@ -23,21 +23,26 @@ def gate_page(gate: Gate, cards: Cards) -> str:
 
 def gate_line(gate: Gate) -> str:
     """Tell in one line whether a hull is ready, and what speaks against it."""
+    return f"{gate.subject.id}: {gate_words(gate)}"
+
+
+def gate_words(gate: Gate) -> str:
+    """Tell whether a hull is ready, and what speaks against it, without its name."""
     if gate.is_ready:
         extras = [count(len(gate.accepted), "accepted deviation")] if gate.accepted else []
-        extras += [_signed(gate)]
-        return f"{gate.subject.id}: READY; {', '.join(extras)}"
-    return f"{gate.subject.id}: NOT READY: {'; '.join(_against(gate))}"
+        extras += [signed_words(gate)]
+        return f"READY; {', '.join(extras)}"
+    return f"NOT READY: {'; '.join(against(gate))}"
 
 
-def _against(gate: Gate) -> Iterator[str]:
+def against(gate: Gate) -> Iterator[str]:
     """Count what speaks against a hull."""
     for some, word in (
         (gate.errors, "open error"), (gate.not_assessed, "place not assessed"),
         (gate.failed, "test finding"),
     ):  # fmt: skip
         if some:
-            yield count(len(_blocks(some)), word)
+            yield count(len(blocks(some)), word)
     if gate.missing:
         is_all = len(gate.missing) == len(gate.handover.steps)
         yield "no step of the test is done" if is_all else f"{count(len(gate.missing), 'step')} of the test not done"
@@ -49,12 +54,13 @@ def _against(gate: Gate) -> Iterator[str]:
         yield f"{count(len(gate.files), 'fault')} in the yard's files"
 
 
-def _signed(gate: Gate) -> str:
+def signed_words(gate: Gate) -> str:
+    """Tell who signed a hull and when, or that nobody did."""
     signed = gate.handover.signed
     return f"signed {flat(signed.date)} by {flat(signed.role)}" if signed else "not signed yet"
 
 
-def _blocks(outcomes: Sequence[Outcome]) -> list[list[Outcome]]:
+def blocks(outcomes: Sequence[Outcome]) -> list[list[Outcome]]:
     """Put the same fault under several limit sets together."""
     found: dict[tuple[object, ...], list[Outcome]] = {}
     for outcome in outcomes:
@@ -68,7 +74,7 @@ def _lines(gate: Gate, cards: Cards) -> Iterator[str]:
     options = ", ".join(subject.options) or "no options"
     revision = f"revision {subject.revision} of {subject.class_revision}"
     yield f"{subject.class_id} ({flat(subject.class_name)}), {revision}, {options}; status {subject.status}"
-    yield f"wiring {gate.handover.content}, limit tables {gate.handover.tables}; {_signed(gate)}"
+    yield f"wiring {gate.handover.content}, limit tables {gate.handover.tables}; {signed_words(gate)}"
     for use in subject.sets:
         yield f"judged by {use.id}: {use.why}"
     for some, heading in (
@@ -89,7 +95,7 @@ def _section(outcomes: Sequence[Outcome], heading: str, cards: Cards, gate: Gate
         yield from ("", f"{heading}: none")
         return
     yield from ("", heading)
-    for block in _blocks(outcomes):
+    for block in blocks(outcomes):
         yield from finding_lines(block, cards[block[0].check], "", gate.subject.accepted)
 
 

@@ -92,27 +92,41 @@ def _what(rung: Rung, tightest: Mapping[str, Outcome]) -> Iterator[str]:
 
 
 def _rung_facts(rung: Rung) -> Iterator[str]:
-    if rung.prospective_a:
-        breaks = "capacity not written" if rung.interrupting_a is None else f"breaks {ampere(rung.interrupting_a)}"
-        yield f"{ampere(round(rung.prospective_a))} can flow, {breaks}"
-    if rung.far_post:
-        far = f"short at {rung.far_post} draws {ampere(round(rung.far_a))}"
-        opens = (
-            "no band" if rung.opens_s is None
-            else "may never open" if math.isinf(rung.opens_s)
-            else f"opens within {seconds(rung.opens_s)}"
-        )  # fmt: skip
-        yield f"{far}, {opens}"
+    yield from filter(None, (flow_words(rung), far_words(rung), selective_words(rung)))
+
+
+def flow_words(rung: Rung) -> str:
+    """Tell what can flow at a device, and what it can break; empty where that is not known."""
+    if not rung.prospective_a:
+        return ""
+    breaks = "capacity not written" if rung.interrupting_a is None else f"breaks {ampere(rung.interrupting_a)}"
+    return f"{ampere(round(rung.prospective_a))} can flow, {breaks}"
+
+
+def far_words(rung: Rung) -> str:
+    """Tell what a short circuit at the far end behind a device draws, and when the device opens."""
+    if not rung.far_post:
+        return ""
+    opens = (
+        "no band" if rung.opens_s is None
+        else "may never open" if math.isinf(rung.opens_s)
+        else f"opens within {seconds(rung.opens_s)}"
+    )  # fmt: skip
+    return f"short at {rung.far_post} draws {ampere(round(rung.far_a))}, {opens}"
+
+
+def selective_words(rung: Rung) -> str:
+    """Tell whether a device opens before the one above it; empty where nothing is asked or known."""
     if rung.is_alone:
-        yield f"in series with {rung.above}"
-    elif rung.selective_up_to_a is not None:
-        if rung.selective_up_to_a >= rung.behind_a * (1 - EQUAL_FRACTION):
-            yield f"selective under {rung.above} in full"
-        elif rung.selective_up_to_a > 0:
-            up_to, behind = ampere(round(rung.selective_up_to_a)), ampere(round(rung.behind_a))
-            yield f"selective under {rung.above} up to {up_to} of {behind}"
-        else:
-            yield f"not selective under {rung.above}"
+        return f"in series with {rung.above}"
+    if rung.selective_up_to_a is None:
+        return ""
+    if rung.selective_up_to_a >= rung.behind_a * (1 - EQUAL_FRACTION):
+        return f"selective under {rung.above} in full"
+    if rung.selective_up_to_a > 0:
+        up_to, behind = ampere(round(rung.selective_up_to_a)), ampere(round(rung.behind_a))
+        return f"selective under {rung.above} up to {up_to} of {behind}"
+    return f"not selective under {rung.above}"
 
 
 def _head(subject: SubjectResult) -> Iterator[str]:
