@@ -11,10 +11,10 @@ from collections.abc import Sequence
 from typing import NoReturn
 
 from checker import __version__
-from checker.commands import check, compare, explain, handover, lists, pages, waiver
+from checker.commands import check, compare, draw, explain, handover, lists, pages, waiver
 from checker.commands.common import NOT_DONE
 
-COMMANDS = (check, compare, waiver, handover, pages, lists, explain)
+COMMANDS = (check, compare, waiver, handover, pages, draw, lists, explain)
 
 
 def run() -> NoReturn:

@@ -8,14 +8,14 @@ from collections.abc import Callable, Collection, Mapping, Sequence
 from checker import __version__
 from checker.boat.assemble import Assembly, ClassDesign, Signature, Subject
 from checker.checks.check import House, HouseChange
-from checker.finding import NOWHERE, Card, Level, Outcome, Verdict
+from checker.finding import NOWHERE, Card, Level, Outcome, Span, Verdict
 from checker.limits.measuring_rule import measuring_rule
 from checker.reading.cards import FILE_CARDS
-from checker.reading.document import Fault
+from checker.reading.document import Document, Fault
 from checker.reading.yard_files import YardFiles
 from checker.result.cards import CLASS_REVISION, NOT_STUDIED, SIGNED_CONTENT, SIGNED_TABLES
 from checker.result.gather import news_order
-from checker.result.measured import far_from_sisters, judge_sheet, missing_outcome, with_as_fitted
+from checker.result.measured import OLD_SHEET, far_from_sisters, judge_sheet, missing_outcome, with_as_fitted
 from checker.result.model import FleetResult, Handover, SetUse, Study, SubjectResult
 from checker.result.sheet_file import Sheet
 from checker.result.sisters import far_lengths
@@ -62,6 +62,7 @@ class Gatherer:
         self._subjects = [s for s in subjects if s.key in studied and not studied[s.key].faults]
         self._lost = [s for s in subjects if s not in self._subjects]
         self._cards = {card.id: card for card in FILE_CARDS}
+        self._documents = {document.file: document for document in files.hulls}
 
     def result(self) -> FleetResult:
         """Return the result of the run."""
@@ -81,7 +82,7 @@ class Gatherer:
             mine = [w for w in waivers if w.concerns(subject.id, subject.class_id)]
             handover = handovers.get(subject.id)
             found = [*_measured(subject, handover), *far_drops.get(subject.id, ())]
-            waived = apply_waivers([*study.news, *found], mine, self._today)
+            waived = apply_waivers([*self._in_own_file(subject, study.news), *found], mine, self._today)
             matched |= waived.matched
             own = [*waived.outcomes[len(study.news) :], *waived.extra, *hull_files.get(subject.id, ())]
             own += [*_behind(subject, design), *far.get(subject.id, ()), *_signed(handover)]
@@ -139,6 +140,21 @@ class Gatherer:
         """Return the yard's own rules that bear on a boat judged by these sets."""
         judged_by = {"", *(use.id for use in sets)}
         return tuple(change for change in self._house.changes if change.limit_set in judged_by)
+
+    def _in_own_file(self, subject: Subject, news: Sequence[Outcome]) -> Sequence[Outcome]:
+        """Return a study's outcomes with the places of the hull's own file.
+
+        Hulls of the same content are studied once, by the file of the first; a person who was
+        sent there would edit another boat.
+        """
+        first = self._assembly.written_in.get(subject.key, "")
+        if not subject.is_hull or subject.at.file == first or not any(_points_at(o, first) for o in news):
+            return news
+        places = _same_places(self._documents[first], self._documents[subject.at.file])
+        return [
+            o._replace(at=places.get(o.at, o.at), also_at=tuple(places.get(span, span) for span in o.also_at))
+            for o in news
+        ]
 
     def _handover(self, subject: Subject) -> Handover | None:
         """Return what belongs to the hand-over of a hull, where its test was planned."""
@@ -266,11 +282,32 @@ def _behind(subject: Subject, design: ClassDesign) -> list[Outcome]:
     return [outcome._replace(note="" if level is Level.ERROR else "nothing electrical changed")]
 
 
+def _points_at(outcome: Outcome, file: str) -> bool:
+    return bool(file) and (outcome.at.file == file or any(span.file == file for span in outcome.also_at))
+
+
+def _same_places(first: Document, other: Document) -> dict[Span, Span]:
+    """Return where another hull's file says what the first one says: its changes are alike, in the same order."""
+    changes = [list(document.data.get("changes", {})) for document in (first, other)]
+    names = dict(zip(*changes, strict=False))
+    found: dict[Span, Span] = {}
+    for path, spans in first.places.items():
+        is_change = path[:1] == ("changes",) and len(path) > 1
+        there = (path[0], names.get(path[1], path[1]), *path[2:]) if is_change else path
+        if there in other.places:
+            found.update(zip(spans, other.places[there], strict=True))
+    return found
+
+
 def _measured(subject: Subject, handover: Handover | None) -> list[Outcome]:
-    """Return what a hull's sheet brought up; what is missing is told of a hull that is signed off."""
+    """Return what a hull's sheet brought up; what is missing is told of a hull that is signed off.
+
+    That the sheet was printed for other wiring is left to the gate: each change of a class would
+    bring it up on every hull that was tested.
+    """
     if handover is None or handover.judged is None or handover.sheet is None:
         return []
-    found = [outcome for outcome in handover.judged.outcomes if outcome.verdict is Verdict.FINDING]
+    found = [o for o in handover.judged.outcomes if o.verdict is Verdict.FINDING and o.check != OLD_SHEET.id]
     if handover.judged.missing and subject.status in SIGNED_OFF:
         found.append(missing_outcome(handover.judged.missing, handover.sheet.at))
     return found

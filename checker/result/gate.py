@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 from checker.finding import Level, Outcome, Verdict
 from checker.result.cards import CLASS_REVISION, SIGNED_CONTENT
-from checker.result.measured import MEASURED_CARDS, MISSING
+from checker.result.measured import MEASURED_CARDS, MISSING, OLD_SHEET
 from checker.result.model import FleetResult, Handover, SubjectResult
 from checker.result.sheet import Step
 
@@ -55,7 +55,8 @@ def gate(result: FleetResult, hull: str) -> Gate | None:
         handover=subject.handover,
         errors=tuple(o for o in open_ones if o.level is Level.ERROR and o.check not in apart),
         not_assessed=tuple(o for o in subject.news if o.verdict is Verdict.NOT_ASSESSED),
-        failed=tuple(o for o in open_ones if o.check in _OF_THE_TEST and o.check != MISSING.id),
+        failed=(*_old_sheet(subject.handover),
+                *(o for o in open_ones if o.check in _OF_THE_TEST and o.check != MISSING.id)),
         missing=missing,
         changed=tuple(o for o in open_ones if o.check == SIGNED_CONTENT.id),
         behind=tuple(o for o in open_ones if o.check == CLASS_REVISION.id and o.level is Level.ERROR),
@@ -67,6 +68,12 @@ def gate(result: FleetResult, hull: str) -> Gate | None:
             or (o.check == CLASS_REVISION.id and o.level is not Level.ERROR)
         ),
     )  # fmt: skip
+
+
+def _old_sheet(handover: Handover) -> tuple[Outcome, ...]:
+    """Return that the sheet was printed for other wiring, if it was."""
+    outcomes = () if handover.judged is None else handover.judged.outcomes
+    return tuple(o for o in outcomes if o.check == OLD_SHEET.id and o.verdict is Verdict.FINDING)
 
 
 def _missing(handover: Handover) -> tuple[Step, ...]:

@@ -131,7 +131,7 @@ OLD_SHEET = _card(
     "sheet-content", "The sheet was printed for the wiring as it is", Level.WARNING,
     "what was tested is not what is written now",
     "A sheet bears the mark of the wiring that it was printed for. The wiring data have changed since: print the "
-    "sheet anew, and repeat what the change touches.",
+    "sheet anew, and repeat what the change touches. Told by the command `ready` alone.",
     "", "COM-05",
 )  # fmt: skip
 

@@ -115,13 +115,6 @@ def signed_without_its_test(design: Design) -> Iterator[Plant]:
         yield Plant({}, finds=[("measurement-missing", "test sheet")], line="sheet: FLEET-1", files=files)
 
 
-@fault("COM-05")
-def sheet_of_other_wiring(design: Design) -> Iterator[Plant]:
-    """A sheet that was printed before the wiring changed."""
-    yield Plant({}, finds=[("sheet-content", "test sheet")], line="content:",
-                files=sheet(design, {"content": "0123456789ab"}))  # fmt: skip
-
-
 @fault("COM-06")
 def measured_with_a_small_load(design: Design) -> Iterator[Plant]:
     """A third of the circuit's current flowed."""

@@ -11,6 +11,7 @@ from checker.result.gather import fingerprint
 from checker.result.waivers import Waiver, apply_waivers
 from tests.small_yard import (
     BOTH,
+    HULL_FILE,
     HULL_YAML,
     LAW,
     NEITHER,
@@ -241,3 +242,21 @@ def test_a_fingerprint_of_neither_accepts_neither() -> None:
     (told,) = waived.extra
     assert told.check == "waiver-inputs-changed"
     assert f"{fingerprint(first)} or {fingerprint(second)}" in told.remedy
+
+
+def test_a_hull_of_the_same_content_is_told_at_its_own_file() -> None:
+    """Both are studied once; whoever mends the second must not be sent to the first one's file."""
+    change = """\
+changes:
+  {name}:
+    what: longer
+    set: {{circuits: {{PLOTTER: {{protect: 10 A}}}}}}
+"""
+    first = HULL_YAML + change.format(name="D-1")
+    second = "# a line more\n" + HULL_YAML.replace("SKIFF-1", "SKIFF-2") + change.format(name="OTHER")
+    yard = Yard({**SOUND.files, HULL_FILE: first}).with_file("hulls/skiff-2.yaml", second)
+    found = {s.id: [o.at for o in s.news] for s in check_yard(yard).subjects if s.is_hull}
+    (one,), (other,) = found["SKIFF-1"], found["SKIFF-2"]
+    assert (one.file, other.file) == (HULL_FILE, "hulls/skiff-2.yaml")
+    assert (other.line, other.column) == (one.line + 1, one.column)
+    assert yard.line(other.file, other.line).startswith("set: {circuits: {PLOTTER: {protect: 10 A")

@@ -244,7 +244,8 @@ def test_a_slip_in_a_table_is_told_at_its_line_and_the_table_counts_as_not_enter
          "limits/iso-13297/?)"),
         ("limits/ampacity.yaml",
          "limits/ampacity.yaml:1:1 unreadable-file: no kind of document is kept at this place (a yard keeps yard.yaml, "
-         "waivers.yaml, parts/*.yaml, classes/ID/*.yaml, classes/ID/options/*.yaml, hulls/*.yaml, limits/SET/*.yaml)"),
+         "waivers.yaml, parts/*.yaml, classes/ID/*.yaml, classes/ID/options/*.yaml, hulls/*.yaml, limits/SET/*.yaml, "
+         "sheets/*.yaml, sheets/*.csv)"),
     ],
 )  # fmt: skip
 def test_a_table_at_a_place_where_nobody_would_read_it_is_told(file: str, fault: str) -> None:

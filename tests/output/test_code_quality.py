@@ -19,7 +19,7 @@ def test_each_open_finding_is_a_row_with_a_fingerprint_of_its_own() -> None:
     text = code_quality_report(example(), CARDS, "fleet_example")
     rows = json.loads(text)
     assert not text.startswith("\ufeff")
-    assert len({row["fingerprint"] for row in rows}) == len(rows) == len(alerts(example(), Verdict.FINDING)) == 11
+    assert len({row["fingerprint"] for row in rows}) == len(rows) == len(alerts(example(), Verdict.FINDING)) == 13
     assert set(SEVERITIES) == set(Level)
     for row in rows:
         assert list(row) == ["description", "check_name", "fingerprint", "severity", "location"]

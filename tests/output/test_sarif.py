@@ -87,7 +87,7 @@ def test_every_result_has_one_place_counted_from_one_and_a_fingerprint_of_its_ow
         assert location["logicalLocations"][0]["fullyQualifiedName"].startswith(("tindral-36/", "WVR", "TND"))
         assert row["partialFingerprints"]["fairloom/v1"] == row["partialFingerprints"]["primaryLocationLineHash"]
         marks.add(row["partialFingerprints"]["fairloom/v1"])
-    assert len(marks) == len(run["results"]) == 12
+    assert len(marks) == len(run["results"]) == 14
 
 
 def test_what_was_accepted_is_suppressed_in_the_one_and_left_out_of_the_other(result: FleetResult) -> None:

@@ -65,7 +65,7 @@ def test_the_example_reads_as_tables_of_open_and_accepted_findings() -> None:
         "error", "PNL-29 of P30: 30 A stands ahead of wash, whose maker allows 15 A; 30 A of 15 A, headroom -100.0 % (maker-device)",
         "TND-037", "fleet_example/hulls/tnd-037.yaml:21:24", "fit 15 A or less",
     ] in found  # fmt: skip
-    assert len(found) == 1 + 11 + 1 + 1
+    assert len(found) == 1 + 13 + 1 + 1
     assert found[-1][1:4] == ["TND-034", "electrical lead and QA", "2028-05-29"]
     assert "- hull TND-031 (delivered, no options)" in text
 

@@ -329,7 +329,7 @@ def kind_of(name: str) -> str:
         return "option"
     return {
         "yard.yaml": "yard", "waivers.yaml": "waivers", "parts": "parts", "classes": "class", "hulls": "hull",
-        "limits": "limits",
+        "limits": "limits", "sheets": "sheet",
     }[name.split("/", maxsplit=1)[0]]  # fmt: skip
 
 

@@ -23,7 +23,7 @@ SCHEMAS = {
     for path in sorted((ROOT / "schemas").glob("*.json"))
     if path.name != "result.json"
 }
-KINDS = ["yard", "parts", "class", "option", "hull", "waivers", "limits", "changes"]
+KINDS = ["yard", "parts", "class", "option", "hull", "waivers", "limits", "changes", "sheet"]
 DERIVATION = runpy.run_path(str(ROOT / "tests" / "derive_changes_schema.py"))
 REGISTRY: Registry[Any] = Registry().with_resources(
     [(schema["$id"], Resource.from_contents(schema)) for schema in SCHEMAS.values()]

@@ -17,7 +17,7 @@ from tests.dory_yard import DORY, HULL, checked, edited, place, told, write
 
 PLACES = (
     "a yard keeps yard.yaml, waivers.yaml, parts/*.yaml, classes/ID/*.yaml, classes/ID/options/*.yaml, hulls/*.yaml, "
-    "limits/SET/*.yaml"
+    "limits/SET/*.yaml, sheets/*.yaml, sheets/*.csv"
 )
 ROOT = Path(__file__).resolve().parents[2]
 
