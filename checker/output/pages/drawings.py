@@ -5,11 +5,14 @@ from __future__ import annotations
 import re
 from collections.abc import Sequence
 from dataclasses import dataclass
-from importlib import import_module
-from importlib.util import find_spec
 
 from checker.finding import Outcome
 from checker.network.studies import Studies
+from checker.output.drawing.coordination_plot import coordination_plot
+from checker.output.drawing.files import drop_limits
+from checker.output.drawing.one_line import one_line
+from checker.output.drawing.paths import Ways
+from checker.output.drawing.voltage_plot import voltage_plot
 from checker.output.pages.html import Markup
 
 _NAMESPACE = ' xmlns="http://www.w3.org/2000/svg"'
@@ -33,27 +36,27 @@ class Picture:
 
 @dataclass(frozen=True, slots=True)
 class Drawn:
-    """Hold the drawings for a page: the one-line drawing, and plots with their titles; nothing where none were made."""
+    """Hold the drawings for a page: the one-line drawing, and plots with their titles."""
 
-    one_line: Picture | None = None
-    plots: tuple[tuple[str, Markup], ...] = ()
+    one_line: Picture
+    plots: tuple[tuple[str, Markup], ...]
 
 
 def drawn(studies: Studies, outcomes: Sequence[Outcome], hull: str, circuits: Sequence[str]) -> Drawn:
     """Return the one-line drawing of a hull, and the coordination and voltage plots of some circuits."""
-    if find_spec("checker.output.drawing") is None:
-        return Drawn()
-    files: dict[str, str] = import_module("checker.output.drawing.files").drawing_files(
-        studies, outcomes, hull, circuits
-    )
+    ways, limits = Ways(studies), drop_limits(outcomes)
     plots: list[tuple[str, Markup]] = []
-    for circuit in circuits:
-        for kind in ("coordination", "voltage"):
-            svg = files.get(f"{kind}-{circuit}.svg")
+    for circuit in (studies.boat.circuits[name] for name in circuits):
+        way = ways.way(circuit)
+        if way is None:
+            continue
+        for kind, svg in (
+            ("coordination", coordination_plot(studies, circuit, way, hull)),
+            ("voltage", voltage_plot(studies, circuit, way, hull, limits.get(circuit.id))),
+        ):
             if svg is not None:
-                name = studies.boat.circuits[circuit].name
-                plots.append((f"{circuit} {name}: {kind}", _inline(svg)))
-    return Drawn(_picture(files["one-line.svg"]), tuple(plots))
+                plots.append((f"{circuit.id} {circuit.name}: {kind}", _inline(svg)))
+    return Drawn(_picture(one_line(studies, outcomes, hull)), tuple(plots))
 
 
 def _picture(svg: str) -> Picture:

@@ -50,19 +50,16 @@ def _rung_row(rung: Rung, dossier: Dossier) -> tuple[TableCell, ...]:
     )  # fmt: skip
 
 
-def one_line(drawn: Drawn) -> Iterator[Section]:
-    """Show the one-line drawing, if there is one."""
-    if drawn.one_line is not None:
-        picture = drawn.one_line
-        name = "drawing one-line in-pieces" if picture.pieces else "drawing one-line"
-        told: list[Content] = [
-            tag("figure", tag("div", picture.whole, class_=name, tabindex="0", role="group",
-                              aria_label="One-line drawing")),
-        ]  # fmt: skip
-        if picture.pieces:
-            words = f"The drawing takes {len(picture.pieces)} sheets: lay them side by side, row by row."
-            told += [paragraph(words, class_="on-paper"), *(tag("div", one, class_="piece") for one in picture.pieces)]
-        yield Section("one-line", "One-line drawing", tuple(told), is_wide=picture.is_wide)
+def one_line(drawn: Drawn) -> Section:
+    """Show the one-line drawing."""
+    picture = drawn.one_line
+    name = "drawing one-line in-pieces" if picture.pieces else "drawing one-line"
+    frame = tag("div", picture.whole, class_=name, tabindex="0", role="group", aria_label="One-line drawing")
+    told: list[Content] = [tag("figure", frame)]
+    if picture.pieces:
+        words = f"The drawing takes {len(picture.pieces)} sheets: lay them side by side, row by row."
+        told += [paragraph(words, class_="on-paper"), *(tag("div", one, class_="piece") for one in picture.pieces)]
+    return Section("one-line", "One-line drawing", tuple(told), is_wide=picture.is_wide)
 
 
 def circuits(dossier: Dossier) -> Section:
