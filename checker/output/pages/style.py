@@ -43,6 +43,7 @@ caption {{ font-weight: bold; padding: .25rem 0; text-align: left; }}
 th, td {{ border: 1px solid {RULE}; padding: .25rem .45rem; text-align: left; vertical-align: top; }}
 thead th, .over {{ background: {SHADE}; }}
 tbody th {{ font-weight: 600; }}
+.word {{ white-space: nowrap; }}
 .long {{ overflow-wrap: anywhere; }}
 .number {{ font-variant-numeric: tabular-nums; text-align: right; white-space: nowrap; }}
 figure {{ margin: 1rem 0 2rem; }}
@@ -51,6 +52,12 @@ figure {{ margin: 1rem 0 2rem; }}
 .one-line svg {{ min-width: 120rem; }}
 .piece, .on-paper {{ display: none; }}
 .plot svg {{ max-width: 60rem; min-width: 40rem; }}
+"""
+_NARROW = """\
+@media screen and (max-width: 48rem) {
+table:not(.narrow) { min-width: 44rem; }
+dl div { display: block; padding: .2rem 0; }
+}
 """
 _DEEPEST = 12
 _DEEP = ", ".join(f".deep{n}" for n in range(1, _DEEPEST + 1)) + " { display: block; white-space: nowrap; }\n"
@@ -106,4 +113,4 @@ def css(foot: str) -> str:
 @bottom-right {{ content: counter(page) " of " counter(pages); font: 7.5pt sans-serif; }}
 }}
 """
-    return _SCREEN + _DEEP + _DEPTHS + _PRINT + feet
+    return _SCREEN + _DEEP + _DEPTHS + _NARROW + _PRINT + feet
