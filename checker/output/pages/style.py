@@ -56,6 +56,7 @@ figure {{ margin: 1rem 0 2rem; }}
 _NARROW = """\
 @media screen and (max-width: 48rem) {
 table:not(.narrow) { min-width: 44rem; }
+caption span { display: inline-block; left: 0; max-width: calc(100vw - 2rem); position: sticky; }
 dl div { display: block; padding: .2rem 0; }
 }
 """
