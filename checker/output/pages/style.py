@@ -93,7 +93,7 @@ p, li { orphans: 3; widows: 3; }
 .piece { break-after: page; }
 .piece svg { display: block; height: 236mm; margin: 0 auto; max-width: 100%; }
 .wide .piece svg { height: 160mm; }
-.plot svg { max-width: 165mm; }
+.plot svg { max-width: 148mm; }
 figure { margin: 3mm 0; }
 }
 """
