@@ -26,6 +26,8 @@ class Markup:
 Content = str | Markup
 LONG_WORD = 22
 """Signs from which on a word in a table may be broken."""
+SHORT = 9
+"""Signs up to which a cell stays on its line: 4/0 AWG, 0.104 V."""
 _BLOCKS = frozenset(
     ("article", "caption", "dd", "div", "dl", "figure", "footer", "h1", "h2", "h3", "h4", "header", "li", "main", "nav",
      "ol", "p", "section", "table", "tbody", "thead", "tr", "ul")
@@ -139,7 +141,8 @@ def _cells(row: Sequence[TableCell]) -> Iterator[Markup]:
         if place == 0:
             yield tag("th", content, scope="row", class_="word" if is_word else "")
         else:
-            yield tag("td", content, class_="number" if is_number else "")
+            is_short = isinstance(content, str) and 0 < len(content) <= SHORT
+            yield tag("td", content, class_="number" if is_number else "word" if is_short else "")
 
 
 def _breakable(words: str) -> Content:
