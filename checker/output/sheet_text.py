@@ -19,7 +19,7 @@ from checker.result.sheet_file import Reading
 
 GROUPS: Mapping[str, tuple[str, str]] = {
     FITTED: ("Devices as fitted", "Read the rating on each fuse and breaker. Everything is dead."),
-    POLARITY: ("Polarity", "At each load: ok, reversed or open."),
+    POLARITY: ("Polarity and continuity", "At each load: ok, reversed, or open where no connection is found."),
     BONDING: ("Bonding", "With everything dead: ok, none or several."),
     LEAKAGE: ("Leakage", "A milliammeter from DC positive to the bonding system; loads off."),
     ALL_OFF: ("Everything off", "All switches open. The current at each bank's post, and what stays live."),
