@@ -26,6 +26,9 @@ ALL_OFF, FUNCTION, DROP, CHARGING = "all-off", "function", "drop", "charging"
 KINDS = (FITTED, POLARITY, BONDING, LEAKAGE, ALL_OFF, FUNCTION, DROP, CHARGING)
 """The kinds of steps in the order of the work: dead first, then live with all off, then under load."""
 
+SMALL_A = 0.1
+"""Currents below are printed in milliamperes."""
+
 
 class Step(NamedTuple):
     """Hold one step of the test.
@@ -91,9 +94,14 @@ def _all_off(case: Case) -> Iterator[Step]:
         # All of them: who works aboard must know each one.
         live = {boat.device_of(post) for post in network.posts if net[network.index[post]] in tops}
         stays = ", ".join(sorted(device.id for device in live if device is not None))
-        expected = "" if current_a is None else ampere(round(current_a, 3))
+        expected = "" if current_a is None else standby_words(current_a)
         where = f"the battery post of {bank.id}, all switches open"
         yield Step(ALL_OFF, bank.id, f"stays live: {stays}", where, expected, current_a=current_a)
+
+
+def standby_words(current_a: float) -> str:
+    """Print a current that may be small."""
+    return f"{current_a * 1000:.3g} mA" if abs(current_a) < SMALL_A else ampere(round(current_a, 3))
 
 
 def _functions(case: Case) -> Iterator[Step]:
