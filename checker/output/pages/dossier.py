@@ -8,6 +8,7 @@ from functools import cached_property
 from typing import Any
 
 from checker.boat.hull import Boat, Device
+from checker.boat.parts import Load, Source
 from checker.finding import Card, Outcome
 from checker.limits.limit_set import LimitSet
 from checker.network.studies import Studies
@@ -57,17 +58,27 @@ class Dossier:
     def named(self, name: str) -> str:
         """Name a device: by its own name, or by the circuits that it is for."""
         device = self.boat.devices[name]
-        told = self.aboard.device_names.get(name, "") or " + ".join(self._circuits(device))
+        told = self.aboard.device_names.get(name, "") or " + ".join(self._circuits(device) or self._ends.get(name, ()))
         return f"{name} {told}".strip()
 
     def served(self, device: Device) -> str:
         """Tell what a device serves."""
         return ", ".join(self._circuits(device))
 
-    def _circuits(self, device: Device) -> Iterator[str]:
-        for name in device.served or (device.circuit,):
-            if name in self.boat.circuits:
-                yield self.boat.circuits[name].name or name
+    def _circuits(self, device: Device) -> list[str]:
+        known = self.boat.circuits
+        return [known[name].name or name for name in device.served or (device.circuit,) if name in known]
+
+    @cached_property
+    def _ends(self) -> Mapping[str, tuple[str, ...]]:
+        """Return the names of the circuits that end at each load or source."""
+        found: dict[str, dict[str, None]] = {}
+        for wire in self.boat.conductors.values():
+            for post in (wire.start, wire.end):
+                device = self.boat.device_of(post)
+                if wire.circuit in self.boat.circuits and device and isinstance(device.part, (Load, Source)):
+                    found.setdefault(device.id, {})[self.boat.circuits[wire.circuit].name or wire.circuit] = None
+        return {name: tuple(circuits) for name, circuits in found.items()}
 
 
 def article(lines: Iterable[str], class_: str = "") -> Markup:

@@ -2,42 +2,84 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
 from dataclasses import dataclass
-from importlib import import_module
-from importlib.util import find_spec
 
 from checker.finding import Outcome
 from checker.network.studies import Studies
+from checker.output.drawing.coordination_plot import coordination_plot
+from checker.output.drawing.files import drop_limits
+from checker.output.drawing.one_line import one_line
+from checker.output.drawing.paths import Ways
+from checker.output.drawing.voltage_plot import voltage_plot
 from checker.output.pages.html import Markup
 
 _NAMESPACE = ' xmlns="http://www.w3.org/2000/svg"'
 """Needed in a file, not in a page: the page then names no address at all."""
 
 
+PICTURE = "one-line-picture"
+_PIECES = {297: (1, 1), 420: (2, 1), 594: (2, 2), 841: (4, 2), 1189: (4, 4)}
+"""Into how many sheets of A4, across and down, a sheet is cut, by its width, mm. Citation: ISO 216."""
+_SIZE = re.compile(r'<svg width="([0-9.]+)mm" height="[0-9.]+mm" viewBox="0 0 ([0-9.]+) ([0-9.]+)"')
+
+
+@dataclass(frozen=True, slots=True)
+class Picture:
+    """Hold a drawing for the screen, and the same in pieces of A4 for the printer; `is_wide` where these lie."""
+
+    whole: Markup
+    pieces: tuple[Markup, ...]
+    is_wide: bool
+
+
 @dataclass(frozen=True, slots=True)
 class Drawn:
-    """Hold the drawings for a page: the one-line drawing, and plots with their titles; nothing where none were made."""
+    """Hold the drawings for a page: the one-line drawing, and plots with their titles."""
 
-    one_line: Markup | None = None
-    plots: tuple[tuple[str, Markup], ...] = ()
+    one_line: Picture
+    plots: tuple[tuple[str, Markup], ...]
 
 
 def drawn(studies: Studies, outcomes: Sequence[Outcome], hull: str, circuits: Sequence[str]) -> Drawn:
     """Return the one-line drawing of a hull, and the coordination and voltage plots of some circuits."""
-    if find_spec("checker.output.drawing") is None:
-        return Drawn()
-    files: dict[str, str] = import_module("checker.output.drawing.files").drawing_files(
-        studies, outcomes, hull, circuits
-    )
+    ways, limits = Ways(studies), drop_limits(outcomes)
     plots: list[tuple[str, Markup]] = []
-    for circuit in circuits:
-        for kind in ("coordination", "voltage"):
-            svg = files.get(f"{kind}-{circuit}.svg")
+    for circuit in (studies.boat.circuits[name] for name in circuits):
+        way = ways.way(circuit)
+        if way is None:
+            continue
+        for kind, svg in (
+            ("coordination", coordination_plot(studies, circuit, way, hull)),
+            ("voltage", voltage_plot(studies, circuit, way, hull, limits.get(circuit.id))),
+        ):
             if svg is not None:
-                name = studies.boat.circuits[circuit].name
-                plots.append((f"{circuit} {name}: {kind}", _inline(svg)))
-    return Drawn(_inline(files["one-line.svg"]), tuple(plots))
+                plots.append((f"{circuit.id} {circuit.name}: {kind}", _inline(svg)))
+    return Drawn(_picture(one_line(studies, outcomes, hull)), tuple(plots))
+
+
+def _picture(svg: str) -> Picture:
+    """Cut a drawing for A4: the printer's pieces are windows on the one on the page, which is there once."""
+    whole = _inline(svg)
+    size = _SIZE.match(whole.text)
+    paper, wide, high = (float(size[1]), float(size[2]), float(size[3])) if size else (0.0, 0.0, 0.0)
+    across, down = _PIECES.get(round(paper), (1, 1))
+    whole = Markup(whole.text.replace("<svg ", f'<svg id="{PICTURE}" ', 1))
+    pieces = tuple(
+        _window(wide, high, (wide / across * column, high / down * row, wide / across, high / down))
+        for row in range(down)
+        for column in range(across)
+        if across * down > 1
+    )
+    return Picture(whole, pieces, is_wide=across == down)
+
+
+def _window(wide: float, high: float, part: tuple[float, float, float, float]) -> Markup:
+    box = " ".join(f"{value:g}" for value in part)
+    return Markup(
+        f'<svg viewBox="{box}" aria-hidden="true"><use href="#{PICTURE}" width="{wide:g}" height="{high:g}"/></svg>\n'
+    )
 
 
 def _inline(svg: str) -> Markup:

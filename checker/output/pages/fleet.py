@@ -7,7 +7,7 @@ from collections.abc import Iterator
 from checker.finding import Verdict
 from checker.output.fleet_text import check_words, ready_words, retrofit_words, standing, tightest_words
 from checker.output.lines import house_lines
-from checker.output.pages.html import Content, Section, bullets, contents, page, paragraph, table, tag
+from checker.output.pages.html import Content, Section, bullets, contents, lines, page, paragraph, table, tag
 from checker.output.pages.style import css
 from checker.output.pages.verdicts import PRACTICE
 from checker.output.text import CAUTION, count, fleet_verdict
@@ -93,5 +93,5 @@ def _rules(view: FleetView) -> Section:
         table("sets", "Limit sets", ("limit set", "title", "why it applies"), uses)
         if uses else paragraph("No limit set applies: nothing was judged."),
         tag("h3", "The yard's own rules"),
-        bullets(line.strip() for line in house_lines(view.result.house)),
+        *lines(house_lines(view.result.house)),
     ))  # fmt: skip

@@ -19,7 +19,7 @@ def handover_page(dossier: Dossier) -> str:
     pictures = drawn(dossier.studies, subject.outcomes, subject.id, worst_circuits(dossier))
     sections = [
         identity(dossier), findings(dossier), not_assessed(dossier), deviations(dossier), isolation(dossier),
-        standby(dossier), spares(dossier), ladder(dossier), *one_line(pictures), circuits(dossier), *plots(pictures),
+        standby(dossier), spares(dossier), ladder(dossier), one_line(pictures), circuits(dossier), *plots(pictures),
         devices(dossier), tested(dossier), wires(dossier), landings(dossier),
     ]  # fmt: skip
     title = f"Hand-over file of {subject.id}"

@@ -94,6 +94,11 @@ def facts(rows: Iterable[tuple[str, Content]]) -> Markup:
     return tag("dl", *(tag("div", tag("dt", name), tag("dd", told)) for name, told in rows))
 
 
+def lines(rows: Iterable[str]) -> Iterator[Markup]:
+    """Return lines of text as paragraphs; those that stand in from the left do so here."""
+    yield from (paragraph(row.strip(), class_="indented" if row.startswith(" ") else "") for row in rows)
+
+
 TableCell = Cell | Markup
 
 
@@ -128,10 +133,11 @@ def _cells(row: Sequence[TableCell]) -> Iterator[Markup]:
     for place, cell in enumerate(row):
         is_number = isinstance(cell, (int, float))
         content: Content = "" if cell is None else printed(cell) if isinstance(cell, (int, float)) else cell
+        is_word = isinstance(content, str) and len(content) < LONG_WORD and " " not in content
         if isinstance(content, str):
             content = _breakable(content)
         if place == 0:
-            yield tag("th", content, scope="row")
+            yield tag("th", content, scope="row", class_="word" if is_word else "")
         else:
             yield tag("td", content, class_="number" if is_number else "")
 

@@ -4,10 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 
-from checker.checks.words import ampere
+from checker.checks.words import ampere, measured
 from checker.finding import Outcome
 from checker.network.isolation import hand_switches, stays_live
-from checker.output.lines import measure_words
 from checker.output.pages.dossier import Dossier
 from checker.output.pages.html import Content, Section, bullets, paragraph, table, tag
 from checker.result.gather import natural
@@ -34,7 +33,8 @@ def isolation(dossier: Dossier) -> Section:
         ),
         table("switches", "Hand switches: what each one alone makes dead",
               ("switch", "place", "in use", "isolates when", "makes dead"), _switches(dossier)),
-        table("live", "With every switch off, these loads stay live", ("load", "bank", "take out", "why it may"), loads)
+        table("live", "With every switch off, these loads stay live",
+              ("load", "bank", "take out or open", "why it may"), loads)
         if loads else paragraph("With every switch off no load stays live."),
         tag("h3", "Live metal with every switch off"),
         bullets(_by_zone(dossier, live.devices)),
@@ -86,9 +86,10 @@ def standby(dossier: Dossier) -> Section:
         outcome = next((o for o in dossier.by_part.get(bank.id, ()) if o.check == _STANDBY), None)
         current_a = currents_a.get(bank.id)
         draws = "not known" if current_a is None else ampere(round(current_a, 3))
-        days = "not assessed" if outcome is None or outcome.measure is None else measure_words(outcome)
-        rows.append((bank.id, f"{bank.capacity_ah:g} Ah", draws, days))
-    headings = ("bank", "capacity", "current with every switch off", "lasts, down to the share that may be used")
+        days, asked = ("not assessed", "") if outcome is None or outcome.measure is None else measured(outcome.measure)
+        rows.append((bank.id, f"{bank.capacity_ah:g} Ah", draws, days, asked))
+    headings = ("bank", "capacity", "current with every switch off", "lasts, down to the share that may be used",
+                "asked for, at least")  # fmt: skip
     return Section("standby", "Standby days", (
         table("standby-days", "How long what stays live may be left alone", headings, rows, narrow=True)
         if rows else paragraph("No bank is aboard."),

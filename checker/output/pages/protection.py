@@ -50,12 +50,16 @@ def _rung_row(rung: Rung, dossier: Dossier) -> tuple[TableCell, ...]:
     )  # fmt: skip
 
 
-def one_line(drawn: Drawn) -> Iterator[Section]:
-    """Show the one-line drawing, if there is one."""
-    if drawn.one_line is not None:
-        figure = tag("figure", tag("div", drawn.one_line, class_="drawing one-line", tabindex="0", role="group",
-                                   aria_label="One-line drawing"))  # fmt: skip
-        yield Section("one-line", "One-line drawing", (figure,), is_wide=True)
+def one_line(drawn: Drawn) -> Section:
+    """Show the one-line drawing."""
+    picture = drawn.one_line
+    name = "drawing one-line in-pieces" if picture.pieces else "drawing one-line"
+    frame = tag("div", picture.whole, class_=name, tabindex="0", role="group", aria_label="One-line drawing")
+    told: list[Content] = [tag("figure", frame)]
+    if picture.pieces:
+        words = f"The drawing takes {len(picture.pieces)} sheets: lay them side by side, row by row."
+        told += [paragraph(words, class_="on-paper"), *(tag("div", one, class_="piece") for one in picture.pieces)]
+    return Section("one-line", "One-line drawing", tuple(told), is_wide=picture.is_wide)
 
 
 def circuits(dossier: Dossier) -> Section:
@@ -92,9 +96,8 @@ def _circuit_row(dossier: Dossier, circuit: Circuit) -> tuple[str, ...]:
 
 def _of_circuit(dossier: Dossier, circuit: Circuit) -> list[Outcome]:
     """Return what was held against a limit in a circuit and has headroom to tell."""
-    return [
-        o for o in dossier.subject.outcomes if circuit.id in (o.circuit, o.part) and headroom_fraction(o) is not None
-    ]
+    own = (o for o in dossier.subject.outcomes if circuit.id in (o.circuit, o.part))
+    return [o for o in own if headroom_fraction(o) is not None]
 
 
 def headroom(outcome: Outcome) -> float:
@@ -122,11 +125,9 @@ def worst_circuits(dossier: Dossier) -> list[str]:
     """Return the circuits that lose most of what they may lose, the worst first."""
     found: list[tuple[float, Circuit]] = []
     for circuit in _in_order(dossier):
-        drops = [
-            o for o in dossier.by_part.get(circuit.id, ()) if o.check in _DROPS and headroom_fraction(o) is not None
-        ]
-        if drops:
-            found.append((min(map(headroom, drops)), circuit))
+        drops = [headroom(o) for o in dossier.by_part.get(circuit.id, ()) if o.check in _DROPS]
+        if drops and min(drops) < math.inf:
+            found.append((min(drops), circuit))
     found.sort(key=lambda row: (row[0], natural(row[1].id)))
     return [circuit.id for _, circuit in found[:MOST_PLOTTED]]
 

@@ -21,6 +21,7 @@ a {{ color: {LINK}; }}
 :focus-visible {{ outline: .2rem solid {LINK}; outline-offset: .1rem; }}
 .skip {{ background: {PAPER}; left: .5rem; padding: .5rem; position: absolute; top: -5rem; }}
 .skip:focus {{ top: .5rem; }}
+.indented {{ margin-left: 1.5rem; }}
 .quiet {{ color: {QUIET}; }}
 .answer {{ border: .2rem solid {INK}; margin: 1rem 0; padding: .75rem 1rem; }}
 .answer p {{ margin: .25rem 0; }}
@@ -42,16 +43,25 @@ caption {{ font-weight: bold; padding: .25rem 0; text-align: left; }}
 th, td {{ border: 1px solid {RULE}; padding: .25rem .45rem; text-align: left; vertical-align: top; }}
 thead th, .over {{ background: {SHADE}; }}
 tbody th {{ font-weight: 600; }}
+.word {{ white-space: nowrap; }}
 .long {{ overflow-wrap: anywhere; }}
 .number {{ font-variant-numeric: tabular-nums; text-align: right; white-space: nowrap; }}
 figure {{ margin: 1rem 0 2rem; }}
 .drawing {{ border: 1px solid {RULE}; overflow: auto; }}
 .drawing svg {{ display: block; height: auto; width: 100%; }}
-.one-line svg {{ min-width: 75rem; }}
+.one-line svg {{ min-width: 120rem; }}
+.piece, .on-paper {{ display: none; }}
 .plot svg {{ max-width: 60rem; min-width: 40rem; }}
 """
+_NARROW = """\
+@media screen and (max-width: 48rem) {
+table:not(.narrow) { min-width: 44rem; }
+dl div { display: block; padding: .2rem 0; }
+}
+"""
 _DEEPEST = 12
-_DEPTHS = "".join(f".deep{n} {{ padding-left: {n * 0.9:g}rem; }}\n" for n in range(1, _DEEPEST + 1))
+_DEEP = ", ".join(f".deep{n}" for n in range(1, _DEEPEST + 1)) + " { display: block; white-space: nowrap; }\n"
+_DEPTHS = "".join(f".deep{n} {{ margin-left: {(n - 1) * 0.7:g}rem; }}\n" for n in range(1, _DEEPEST + 1))
 
 _PRINT = """\
 @page { margin: 13mm 12mm 15mm; size: A4; }
@@ -77,6 +87,11 @@ p, li { orphans: 3; widows: 3; }
 .drawing { border: 0; }
 .drawing svg { max-width: 100%; min-width: 0; }
 .one-line svg { max-height: 168mm; }
+.in-pieces { display: none; }
+.piece, .on-paper { display: block; }
+.piece { break-after: page; }
+.piece svg { display: block; height: 236mm; margin: 0 auto; max-width: 100%; }
+.wide .piece svg { height: 160mm; }
 .plot svg { max-width: 165mm; }
 figure { margin: 3mm 0; }
 }
@@ -98,4 +113,4 @@ def css(foot: str) -> str:
 @bottom-right {{ content: counter(page) " of " counter(pages); font: 7.5pt sans-serif; }}
 }}
 """
-    return _SCREEN + _DEPTHS + _PRINT + feet
+    return _SCREEN + _DEEP + _DEPTHS + _NARROW + _PRINT + feet

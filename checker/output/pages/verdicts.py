@@ -9,7 +9,7 @@ from checker.finding import Level, Outcome, Verdict
 from checker.output.gate_text import against, blocks, signed_words
 from checker.output.lines import house_lines, measure_words
 from checker.output.pages.dossier import Dossier, articles
-from checker.output.pages.html import Content, Markup, Section, bullets, facts, paragraph, table, tag
+from checker.output.pages.html import Content, Markup, Section, bullets, facts, lines, paragraph, table, tag
 from checker.output.sheet_text import SAFETY
 from checker.output.text import CAUTION, count
 from checker.result.gather import fingerprint, natural
@@ -68,7 +68,7 @@ def identity(dossier: Dossier) -> Section:
         table("sets", "Limit sets", headings, sets) if sets else paragraph("No limit set applies: nothing was judged."),
         *(paragraph(tag("strong", f"{use.id}: "), use.caution) for use in subject.sets if use.caution),
         tag("h3", "The yard's own rules"),
-        bullets(line.strip() for line in house_lines(subject.house)),
+        *lines(house_lines(subject.house)),
     ))  # fmt: skip
 
 
