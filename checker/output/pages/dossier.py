@@ -56,9 +56,11 @@ class Dossier:
         return {part: tuple(rows) for part, rows in found.items()}
 
     def named(self, name: str) -> str:
-        """Name a device: by its own name, or by the circuits that it is for."""
+        """Name a device: by its own name, by the circuits that it is for, or by its part."""
         device = self.boat.devices[name]
-        told = self.aboard.device_names.get(name, "") or " + ".join(self._circuits(device) or self._ends.get(name, ()))
+        ends = self._ends.get(name, ())
+        told = self.aboard.device_names.get(name, "") or " + ".join(self._circuits(device))
+        told = told or (ends[0] if len(ends) == 1 else self.aboard.part_names.get(device.part.id, ""))
         return f"{name} {told}".strip()
 
     def served(self, device: Device) -> str:

@@ -22,6 +22,8 @@ _NAMESPACE = ' xmlns="http://www.w3.org/2000/svg"'
 PICTURE = "one-line-picture"
 _PIECES = {297: (1, 1), 420: (2, 1), 594: (2, 2), 841: (4, 2), 1189: (4, 4)}
 """Into how many sheets of A4, across and down, a sheet is cut, by its width, mm. Citation: ISO 216."""
+OVERLAP = 30.0
+"""What two pieces side by side both show, in the drawing's mm."""
 _SIZE = re.compile(r'<svg width="([0-9.]+)mm" height="[0-9.]+mm" viewBox="0 0 ([0-9.]+) ([0-9.]+)"')
 
 
@@ -67,7 +69,7 @@ def _picture(svg: str) -> Picture:
     across, down = _PIECES.get(round(paper), (1, 1))
     whole = Markup(whole.text.replace("<svg ", f'<svg id="{PICTURE}" ', 1))
     pieces = tuple(
-        _window(wide, high, (wide / across * column, high / down * row, wide / across, high / down))
+        _window(wide, high, (*_span(wide, column, across), *_span(high, row, down)))
         for row in range(down)
         for column in range(across)
         if across * down > 1
@@ -75,8 +77,15 @@ def _picture(svg: str) -> Picture:
     return Picture(whole, pieces, is_wide=across == down)
 
 
-def _window(wide: float, high: float, part: tuple[float, float, float, float]) -> Markup:
-    box = " ".join(f"{value:g}" for value in part)
+def _span(length: float, number: int, of: int) -> tuple[float, float]:
+    """Return start and length of one of some equal pieces, longer towards its neighbours so that no word is lost."""
+    start = max(0.0, length / of * number - OVERLAP / 2)
+    return start, min(length, length / of * (number + 1) + OVERLAP / 2) - start
+
+
+def _window(wide: float, high: float, span: tuple[float, float, float, float]) -> Markup:
+    left, across, top, down = span
+    box = f"{left:g} {top:g} {across:g} {down:g}"
     return Markup(
         f'<svg viewBox="{box}" aria-hidden="true"><use href="#{PICTURE}" width="{wide:g}" height="{high:g}"/></svg>\n'
     )

@@ -41,7 +41,7 @@ def _hulls(view: FleetView) -> Section:
         table(f"hulls-{status}", f"{_TITLES[status]}: {len(hulls)}", _HULL, map(_hull_row, hulls))
         for status, hulls in view.by_status
     )
-    return Section("hulls", "Hulls by status", tuple(tables) or (paragraph("No hull was studied."),), is_wide=True)
+    return Section("hulls", "Hulls by status", tuple(tables) or (paragraph("No hull was studied."),))
 
 
 def _hull_row(hull: HullView) -> tuple[Content | int, ...]:

@@ -119,7 +119,7 @@ def grouped_table(
     """Return a table whose rows stand in groups, each under its title where it has one."""
     head = tag("thead", tag("tr", *(tag("th", heading, scope="col") for heading in headings)))
     bodies = (_body(title, rows, len(headings)) for title, rows in groups)
-    whole = tag("table", tag("caption", caption, id=f"{anchor}-caption"), head, *bodies,
+    whole = tag("table", tag("caption", tag("span", caption), id=f"{anchor}-caption"), head, *bodies,
                 class_="narrow" if narrow else "")  # fmt: skip
     return tag("div", whole, id=anchor, class_="frame", role="group", tabindex="0", aria_labelledby=f"{anchor}-caption")
 

@@ -57,7 +57,7 @@ def one_line(drawn: Drawn) -> Section:
     frame = tag("div", picture.whole, class_=name, tabindex="0", role="group", aria_label="One-line drawing")
     told: list[Content] = [tag("figure", frame)]
     if picture.pieces:
-        words = f"The drawing takes {len(picture.pieces)} sheets: lay them side by side, row by row."
+        words = f"It takes {len(picture.pieces)} sheets, row by row: lay them so that what two of them show meets."
         told += [paragraph(words, class_="on-paper"), *(tag("div", one, class_="piece") for one in picture.pieces)]
     return Section("one-line", "One-line drawing", tuple(told), is_wide=picture.is_wide)
 

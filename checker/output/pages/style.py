@@ -56,6 +56,7 @@ figure {{ margin: 1rem 0 2rem; }}
 _NARROW = """\
 @media screen and (max-width: 48rem) {
 table:not(.narrow) { min-width: 44rem; }
+caption span { display: inline-block; left: 0; max-width: calc(100vw - 2rem); position: sticky; }
 dl div { display: block; padding: .2rem 0; }
 }
 """
@@ -92,7 +93,7 @@ p, li { orphans: 3; widows: 3; }
 .piece { break-after: page; }
 .piece svg { display: block; height: 236mm; margin: 0 auto; max-width: 100%; }
 .wide .piece svg { height: 160mm; }
-.plot svg { max-width: 165mm; }
+.plot svg { max-width: 148mm; }
 figure { margin: 3mm 0; }
 }
 """

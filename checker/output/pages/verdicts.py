@@ -120,7 +120,7 @@ def not_assessed(dossier: Dossier) -> Section:
     gate = dossier.gate
     told: list[Content] = []
     if gate.not_assessed:
-        told += articles(blocks(gate.not_assessed), dossier)
+        told += [tag("h3", "Places not assessed"), *articles(blocks(gate.not_assessed), dossier)]
     else:
         told.append(paragraph("Every place that the checks ask for was assessed."))
     return Section("not-assessed", "What was not assessed", (
