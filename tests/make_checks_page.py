@@ -18,6 +18,7 @@ from checker.output.explain import examples, markdown_page
 from checker.output.lines import finding_lines
 from checker.pipeline import all_cards
 from checker.result.gather import fingerprint
+from checker.result.measured import OLD_SHEET
 from tests.campaign.planting import DESIGNS
 from tests.campaign.tally import first_crops
 from tests.metric_yard import METRIC
@@ -118,6 +119,11 @@ def _of_files() -> Iterator[Outcome]:
     ]
     for yard in (*yards, *_others()):
         yield from _findings(yard)
+    sheet = SOUND.with_file("sheets/skiff-1.yaml", "sheet: SKIFF-1\ncontent: 0123456789ab\n")
+    (hull,) = (s for s in check_yard(sheet).subjects if s.is_hull)
+    assert hull.handover is not None
+    assert hull.handover.judged is not None
+    yield from (o for o in hull.handover.judged.outcomes if o.check == OLD_SHEET.id)
 
 
 OPTION = """\

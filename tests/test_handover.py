@@ -197,6 +197,15 @@ def test_a_step_of_no_part_aboard_is_a_fault_of_the_sheet(tmp_path: Path) -> Non
     assert not found.is_ready
 
 
+def test_a_bad_sheet_of_another_hull_does_not_keep_this_one_back(tested: Path) -> None:
+    twin = SOUND.files[HULL_FILE].replace("SKIFF-1", "SKIFF-2")
+    (tested / "hulls" / "skiff-2.yaml").write_text(twin, encoding="utf-8")
+    bad = tested / "sheets" / "skiff-2.yaml"
+    bad.write_text("sheet: SKIFF-2\npolarity: {PLOTTER: fine}\n", encoding="utf-8")
+    assert gate_of(tested).is_ready
+    assert [o.at.file for o in gate_of(tested, "SKIFF-2").files] == ["sheets/skiff-2.yaml"]
+
+
 # --- the example
 
 

@@ -90,7 +90,7 @@ def test_every_excerpt_of_the_output_is_printed_for_the_example_fleet(
 ) -> None:
     assert main(["check", str(ROOT / "fleet_example"), *TODAY]) == 1
     printed = set(capsys.readouterr().out.splitlines())
-    assert len(SHOWN) == 17
+    assert len(SHOWN) == 22
     assert [line for line in SHOWN if line not in printed] == []
 
 

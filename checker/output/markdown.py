@@ -9,7 +9,7 @@ from checker.reading.words import flat
 BUDGET = 900_000
 """Bytes of UTF-8; a step summary of more than 1 MiB is not shown at all."""
 
-_SIGNS = re.compile(r"[\\`*_\[\]<>&|~#@:!$]|^[-+=]|^[0-9](?=[0-9]*[.)](?: |$))")
+_SIGNS = re.compile(r"[\\`*_\[\]<>&|~#@!$]|:(?! |$)|^[-+=]|^[0-9](?=[0-9]*[.)](?: |$))")
 _LINKING = re.compile(r"(?i)@|#|:(?=//)|www(?=\.)")
 JOINER = "\u2060"
 """Breaks a word without a gap to see."""

@@ -14,12 +14,23 @@ from checker.output.csv_table import Cell, Table, csv_text
 from checker.output.text import CAUTION
 from checker.reading.sheet_csv import COLUMNS
 from checker.result.model import Handover, SubjectResult
-from checker.result.sheet import ALL_OFF, BONDING, CHARGING, DROP, FITTED, FUNCTION, LEAKAGE, POLARITY, Step
+from checker.result.sheet import (
+    ALL_OFF,
+    BONDING,
+    CHARGING,
+    DROP,
+    FITTED,
+    FUNCTION,
+    LEAKAGE,
+    POLARITY,
+    Step,
+    standby_words,
+)
 from checker.result.sheet_file import Reading
 
 GROUPS: Mapping[str, tuple[str, str]] = {
     FITTED: ("Devices as fitted", "Read the rating on each fuse and breaker. Everything is dead."),
-    POLARITY: ("Polarity", "At each load: ok, reversed or open."),
+    POLARITY: ("Polarity and continuity", "At each load: ok, reversed, or open where no connection is found."),
     BONDING: ("Bonding", "With everything dead: ok, none or several."),
     LEAKAGE: ("Leakage", "A milliammeter from DC positive to the bonding system; loads off."),
     ALL_OFF: ("Everything off", "All switches open. The current at each bank's post, and what stays live."),
@@ -92,7 +103,7 @@ def expectation(step: Step, rule: MeasuringRule) -> tuple[str, str, str]:
     if step.kind == LEAKAGE:
         return "", "", f"{plain(rule.leakage_a * 1000)} mA"
     if step.kind == ALL_OFF and step.current_a is not None:
-        return step.expected, "", ampere(round(step.current_a + rule.all_off_added_a, 3))
+        return step.expected, "", standby_words(step.current_a + rule.all_off_added_a)
     if step.kind == CHARGING:
         return "both alike", "", f"{rule.clamp_factor * 100:g} % + {ampere(rule.clamp_added_a)} apart"
     return step.expected, "", ""
@@ -110,7 +121,7 @@ def measured_words(step: Step, reading: Reading | None) -> str:
         return reading.word
     if step.kind == DROP:
         return _volts(reading.value)
-    return f"{plain(reading.value * 1000)} mA" if step.kind == LEAKAGE else ampere(round(reading.value, 3))
+    return standby_words(reading.value) if step.kind in (LEAKAGE, ALL_OFF) else ampere(round(reading.value, 3))
 
 
 def sheet_markdown(subject: SubjectResult) -> str:

@@ -228,7 +228,8 @@ class Gatherer:
         owner = self._hull_of_file()
         others = {document.file for document in self._files.hulls} if self._only else set()
         if self._only:
-            others |= {sheet.at.file for hull, sheet in self._sheets.items() if hull not in self._only}
+            sheets = (d for d in self._files.sheets if isinstance(d.data, dict))
+            others |= {d.file for d in sheets if d.data.get("sheet") not in self._only}
         asked = {d.file for d in self._files.hulls if isinstance(d.data, dict) and d.data.get("hull") in self._only}
         lost_files = {s.at.file for s in self._lost} | asked
         outcomes = [

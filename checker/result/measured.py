@@ -25,6 +25,7 @@ from checker.result.sheet import (
     LEAKAGE,
     POLARITY,
     Step,
+    standby_words,
 )
 from checker.result.sheet_file import Reading, Sheet
 
@@ -304,7 +305,7 @@ def _all_off(step: Step, reading: Reading, rule: MeasuringRule) -> Iterator[Outc
     value_a = reading.value or 0.0
     yield _judged(
         ALL_OFF_CURRENT, step, reading, Measure("current", value_a, step.current_a + rule.all_off_added_a, "A"),
-        f"{ampere(round(value_a, 3))} flow with everything off, where {ampere(round(step.current_a, 3))} are declared",
+        f"{standby_words(value_a)} flow with everything off, where {standby_words(step.current_a)} are declared",
         "pull the devices ahead of the switches one by one until it falls",
     )  # fmt: skip
 

@@ -15,7 +15,6 @@ from checker.checks.charging import output_name
 from checker.checks.check import Case
 from checker.checks.drops import drop_limit, nominal_v, own_pieces
 from checker.checks.heaviest import NEVER, heaviest
-from checker.checks.loads import few
 from checker.checks.losses import standby_a
 from checker.checks.words import ampere
 from checker.limits.measuring_rule import measuring_rule
@@ -26,6 +25,9 @@ FITTED, POLARITY, BONDING, LEAKAGE = "fitted", "polarity", "bonding", "leakage"
 ALL_OFF, FUNCTION, DROP, CHARGING = "all-off", "function", "drop", "charging"
 KINDS = (FITTED, POLARITY, BONDING, LEAKAGE, ALL_OFF, FUNCTION, DROP, CHARGING)
 """The kinds of steps in the order of the work: dead first, then live with all off, then under load."""
+
+SMALL_A = 0.1
+"""Currents below are printed in milliamperes."""
 
 
 class Step(NamedTuple):
@@ -85,15 +87,21 @@ def _once() -> Iterator[Step]:
 
 
 def _all_off(case: Case) -> Iterator[Step]:
-    net, batteries = case.studies.all_off.net, case.studies.network.batteries
+    boat, network, net = case.boat, case.studies.network, case.studies.all_off.net
     for bank in case.studies.banks:
         current_a = standby_a(case, bank.id)
-        tops = {net[b.pos] for b in batteries if b.bank == bank.id}
-        live = [load.device for load in case.studies.network.loads if net[load.feed] in tops]
-        stays = f"stays live: {few(tuple(sorted(live)))}" if live else "nothing stays live"
-        expected = "" if current_a is None else ampere(round(current_a, 3))
+        tops = {net[b.pos] for b in network.batteries if b.bank == bank.id}
+        # All of them: who works aboard must know each one.
+        live = {boat.device_of(post) for post in network.posts if net[network.index[post]] in tops}
+        stays = ", ".join(sorted(device.id for device in live if device is not None))
+        expected = "" if current_a is None else standby_words(current_a)
         where = f"the battery post of {bank.id}, all switches open"
-        yield Step(ALL_OFF, bank.id, stays, where, expected, current_a=current_a)
+        yield Step(ALL_OFF, bank.id, f"stays live: {stays}", where, expected, current_a=current_a)
+
+
+def standby_words(current_a: float) -> str:
+    """Print a current that may be small."""
+    return f"{current_a * 1000:.3g} mA" if abs(current_a) < SMALL_A else ampere(round(current_a, 3))
 
 
 def _functions(case: Case) -> Iterator[Step]:

@@ -16,7 +16,7 @@ from checker.output.compare_markdown import compare_markdown
 from checker.output.compare_sections import sections, verdict
 from checker.output.compare_text import MOST_ITEMS, compare_text
 from checker.output.compare_words import fact_words, figure_words, figures_words
-from checker.output.markdown import Budget, escaped
+from checker.output.markdown import Budget, plain
 from checker.result.claims import SAYS_LESS, Says
 from checker.result.compare import compared
 from checker.result.comparison import Comparison, FactChange, FigureChange
@@ -69,7 +69,7 @@ def test_text_from_data_is_no_markup_in_markdown(text: str) -> None:
 
 
 def test_markdown_says_what_plain_text_says() -> None:
-    assert escaped("P11: 6 AWG -> 8 AWG, 2.55 % (of 3 %)") == "P11: 6 AWG -&#62; 8 AWG, 2.55 % (of 3 %)"
+    assert plain("P11: 6 AWG -> 8 AWG, 2.55 % (of 3 %)") == "P11: 6 AWG -&#62; 8 AWG, 2.55 % (of 3 %)"
 
 
 @pytest.mark.parametrize("most", [3_000, 5_000, 20_000])

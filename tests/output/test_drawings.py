@@ -28,6 +28,7 @@ from checker.output.drawing.files import drawing_files
 from checker.output.drawing.lettering import shortened, text_width
 from checker.output.drawing.one_line import one_line
 from checker.output.drawing.tree import Kind, Node
+from checker.reading.yard_files import read_yard
 from tests.benchmark import write_large_hull
 from tests.make_drawings import FOLDER, drawings, flawed_yard
 from tests.output.svg_geometry import crossings, faults, read
@@ -42,7 +43,7 @@ Opened = tuple[str, Studies, tuple[Outcome, ...]]
 @cache
 def example() -> list[Opened]:
     """Return every hull and option set of the example with its studies and what was found."""
-    fleet = pipeline._read_fleet(EXAMPLE, lists_passes=True)
+    fleet = pipeline._assembled(read_yard(EXAMPLE), lists_passes=True)
     found: list[Opened] = []
     for subject in fleet.assembly.subjects:
         studies, studied = fleet.bench.open(subject.key)
