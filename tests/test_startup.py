@@ -37,7 +37,11 @@ def loaded(*words: str) -> tuple[int, set[str]]:
 
 @pytest.mark.parametrize(
     "words",
-    [["--version"], ["--help"], *([name, "--help"] for name in ("check", "compare", "explain", "lists", "waiver"))],
+    [
+        ["--version"],
+        ["--help"],
+        *([name, "--help"] for name in ("check", "compare", "explain", "fleet", "handover", "lists", "waiver")),
+    ],
 )
 def test_a_question_about_the_command_loads_nothing_slow(words: list[str]) -> None:
     status, modules = loaded(*words)
