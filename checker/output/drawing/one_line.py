@@ -72,7 +72,7 @@ def one_line(studies: Studies, outcomes: Sequence[Outcome], hull: str) -> str:
     sheet = _sheet(max(feed.right, returns.right), returns.bottom, blocks, len(feed.panels))
     canvas = Canvas()
     _frame(canvas, sheet, studies, hull)
-    canvas.text(MARGIN + 2, y + 2.2, "feed side, from each bank or source", NAME)
+    canvas.text(MARGIN + 2, y + 3.1, "feed side, from each bank or source", NAME)
     canvas.text(MARGIN + 2, feed.bottom + 8, "return side, from the reference: banks, shunt, buses", NAME)
     entries = _entries(feed.panels, blocks, sheet)
     feed.draw(canvas, lambda spot: entries[id(spot)][0] if id(spot) in entries else None)
