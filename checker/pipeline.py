@@ -44,7 +44,7 @@ from checker.reading.yard_files import YardFiles, read_yard
 from checker.result.cards import RESULT_CARDS
 from checker.result.fleet import Gatherer
 from checker.result.gather import news_order, pass_order, tightest
-from checker.result.measured import MEASURED_CARDS
+from checker.result.measured_cards import MEASURED_CARDS
 from checker.result.model import EnteredTable, FleetResult, SetUse, SubjectResult
 from checker.result.sheet import plan
 from checker.result.sheet_file import Sheet, read_sheets

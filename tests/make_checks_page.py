@@ -18,7 +18,7 @@ from checker.output.explain import examples, markdown_page
 from checker.output.lines import finding_lines
 from checker.pipeline import all_cards
 from checker.result.gather import fingerprint
-from checker.result.measured import OLD_SHEET
+from checker.result.measured_cards import OLD_SHEET
 from tests.campaign.planting import DESIGNS
 from tests.campaign.tally import first_crops
 from tests.metric_yard import METRIC

@@ -35,8 +35,7 @@ GROUPS: Mapping[str, tuple[str, str]] = {
     LEAKAGE: ("Leakage", "A milliammeter from DC positive to the bonding system; loads off."),
     ALL_OFF: ("Everything off", "All switches open. The current at each bank's post, and what stays live."),
     FUNCTION: ("Each load with its own device", "Switch the device off, or take the fuse out: dead or live."),
-    DROP: ("Drop under load", "Load the circuit; measure the volts between both pairs of points and add them. "
-           "Measured with less than half of the current it does not count."),
+    DROP: ("Drop under load", "Load the circuit; measure the volts between both pairs of points and add them."),
     CHARGING: ("Charging", "One source alone, everything else off: what the monitor shows, and a clamp around all "
                "cables at the bank's post."),
 }  # fmt: skip
@@ -156,7 +155,8 @@ def _tables(handover: Handover) -> Iterator[str]:
         steps = [step for step in handover.steps if step.kind == kind]
         if not steps:
             continue
-        yield from ("", f"## {title}", "", how, "")
+        least = f" With less than {handover.rule.least_current_factor * 100:g} % of the current it does not count."
+        yield from ("", f"## {title}", "", how + (least if kind == DROP else ""), "")
         yield "| step | what | where | expected | at least | at most | measured | with |"
         yield "| --- | --- | --- | --- | --- | --- | --- | --- |"
         for step in steps:

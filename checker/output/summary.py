@@ -11,12 +11,10 @@ from collections.abc import Mapping, Sequence
 from checker.finding import Card, Verdict
 from checker.output.alerts import Alert, alerts, at_from_root
 from checker.output.lines import loosened_words, measure_words
-from checker.output.markdown import plain
+from checker.output.markdown import BUDGET, plain
 from checker.output.text import CAUTION, count, fleet_verdict, summary_lines
 from checker.result.model import FleetResult
 
-BUDGET_BYTES = 900_000
-"""A summary of more than 1 MiB is refused; this leaves room for what else the job's step may write."""
 RESERVE_BYTES = 4_000
 LONGEST_CELL = 400
 
@@ -47,7 +45,7 @@ class _Page:
         return "\n".join([*self._parts, ""])
 
 
-def summary_report(result: FleetResult, cards: Mapping[str, Card], prefix: str, budget: int = BUDGET_BYTES) -> str:
+def summary_report(result: FleetResult, cards: Mapping[str, Card], prefix: str, budget: int = BUDGET) -> str:
     """Return the page: the verdict, open findings, accepted ones, places not assessed, each hull in a line.
 
     Args:

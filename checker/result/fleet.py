@@ -15,7 +15,8 @@ from checker.reading.document import Document, Fault
 from checker.reading.yard_files import YardFiles
 from checker.result.cards import CLASS_REVISION, NOT_STUDIED, SIGNED_CONTENT, SIGNED_TABLES
 from checker.result.gather import news_order
-from checker.result.measured import OLD_SHEET, far_from_sisters, judge_sheet, missing_outcome, with_as_fitted
+from checker.result.measured import far_from_sisters, judge_sheet, missing_outcome, with_as_fitted
+from checker.result.measured_cards import OLD_SHEET
 from checker.result.model import FleetResult, Handover, SetUse, Study, SubjectResult
 from checker.result.sheet_file import Sheet
 from checker.result.sisters import far_lengths

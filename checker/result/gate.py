@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 from checker.finding import Level, Outcome, Verdict
 from checker.result.cards import CLASS_REVISION, SIGNED_CONTENT
-from checker.result.measured import MEASURED_CARDS, MISSING, OLD_SHEET
+from checker.result.measured_cards import MEASURED_CARDS, MISSING, OLD_SHEET
 from checker.result.model import FleetResult, Handover, SubjectResult
 from checker.result.sheet import Step
 

@@ -13,8 +13,8 @@ from markdown_it.token import Token
 
 from checker.finding import Verdict
 from checker.output.alerts import alerts
-from checker.output.markdown import JOINER, plain
-from checker.output.summary import BUDGET_BYTES, summary_report
+from checker.output.markdown import BUDGET, JOINER, plain
+from checker.output.summary import summary_report
 from checker.pipeline import all_cards
 from checker.result.model import FleetResult
 from tests.dory_yard import DORY, HULL, checked, edited
@@ -52,7 +52,7 @@ def rows(text: str) -> list[list[str]]:
     return found
 
 
-def page(result: FleetResult, prefix: str = "", budget: int = BUDGET_BYTES) -> str:
+def page(result: FleetResult, prefix: str = "", budget: int = BUDGET) -> str:
     return summary_report(result, CARDS, prefix, budget)
 
 
